@@ -83,7 +83,7 @@ struct lxg_bvp_statistics {
 
 struct lxg_bvp; /* opaque: mesh, solution and workspace */
 
-/* Workspace for up to `capacity` intervals; n, m, stages fixed. NULL if out of memory or sizes beyond the limits. */
+/* Workspace for up to `capacity` intervals; n and stages fixed, m at most `parameters`. NULL if out of memory or sizes beyond the limits. */
 struct lxg_bvp *lxg_bvp_create(size_t unknowns, size_t parameters, size_t stages, size_t capacity);
 void lxg_bvp_destroy(struct lxg_bvp *bvp);
 

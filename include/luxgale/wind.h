@@ -15,6 +15,7 @@
 
 #include "luxgale/composition.h"
 #include "luxgale/opacity.h"
+#include "luxgale/porosity.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
 
@@ -26,6 +27,7 @@ struct lxg_wind_model {
   struct lxg_star star;
   struct lxg_composition composition;
   const struct lxg_opacity *opacity;
+  struct lxg_porosity porosity;
 };
 
 /* name of the quantity in a case, its unit here */

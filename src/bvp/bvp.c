@@ -42,6 +42,7 @@ struct lxg_bvp *lxg_bvp_create(size_t unknowns, size_t parameters, size_t stages
   }
   b->n = unknowns;
   b->m = parameters;
+  b->parameter_limit = parameters;
   b->capacity = capacity;
   lxg_bvp_tableau_init(&b->tableau, &b->samples, stages);
   const size_t nodes = capacity + 1, ns = unknowns * stages;
@@ -100,8 +101,8 @@ void lxg_bvp_destroy(struct lxg_bvp *b) {
 }
 
 enum lxg_status lxg_bvp_copy(struct lxg_bvp *to, const struct lxg_bvp *from) {
-  if (to->n != from->n || to->m != from->m || to->tableau.stages != from->tableau.stages ||
-      to->capacity < from->intervals) {
+  if (to->n != from->n || to->parameter_limit != from->parameter_limit ||
+      to->tableau.stages != from->tableau.stages || to->capacity < from->intervals) {
     return LXG_BUG;
   }
   to->pieces = from->pieces;
@@ -140,6 +141,10 @@ enum lxg_status lxg_bvp_guess(struct lxg_bvp *b, const double nodes[], size_t in
 enum lxg_status lxg_bvp_solve(struct lxg_bvp *b, const struct lxg_bvp_problem *problem,
                               const struct lxg_bvp_options *options, struct lxg_bvp_statistics *statistics) {
   *statistics = (struct lxg_bvp_statistics){.residual = NAN};
+  if (problem->unknowns != b->n || problem->parameters > b->parameter_limit || problem->pieces != b->pieces) {
+    return LXG_BUG;
+  }
+  b->m = problem->parameters;
   for (;;) {
     enum lxg_status status = lxg_bvp_newton(b, problem, options, statistics);
     statistics->meshes++;

@@ -54,6 +54,7 @@ struct bvp_step {
 
 struct lxg_bvp {
   size_t n, m, capacity;
+  size_t parameter_limit; /* m of a problem may be smaller */
   size_t pieces, intervals;
   struct bvp_tableau tableau;
   struct bvp_samples samples;

@@ -335,14 +335,17 @@ static enum lxg_status step_factor(struct bvp_step *step, size_t n, size_t width
   return LXG_OK;
 }
 
+/* The same operations on a right-hand side: all exchanges first, since the stored multipliers moved with their rows. */
 static void step_replay(const struct bvp_step *step, size_t n, size_t width, double rhs[]) {
   for (size_t j = 0; j < n; j++) {
     const size_t best = (size_t)step->swap[j];
     const double value = rhs[best];
     rhs[best] = rhs[j];
     rhs[j] = value;
+  }
+  for (size_t j = 0; j < n; j++) {
     for (size_t i = j + 1; i < step->rows; i++) {
-      rhs[i] -= step->matrix[i * width + j] * value;
+      rhs[i] -= step->matrix[i * width + j] * rhs[j];
     }
   }
 }

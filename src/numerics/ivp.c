@@ -37,8 +37,8 @@ struct lxg_ivp *lxg_ivp_create(size_t dimension, enum lxg_ivp_order order, doubl
     return NULL;
   }
   ivp->dimension = dimension;
-  ivp->step =
-      gsl_odeiv2_step_alloc(order == LXG_IVP_ORDER_8 ? gsl_odeiv2_step_rk8pd : gsl_odeiv2_step_rkf45, dimension);
+  ivp->step = gsl_odeiv2_step_alloc(order == LXG_IVP_ORDER_8 ? gsl_odeiv2_step_rk8pd : gsl_odeiv2_step_rkf45,
+                                    dimension);
   ivp->control = gsl_odeiv2_control_y_new(tolerance, tolerance);
   if (ivp->step == NULL || ivp->control == NULL) {
     lxg_ivp_destroy(ivp);
@@ -60,8 +60,8 @@ void lxg_ivp_destroy(struct lxg_ivp *ivp) {
 }
 
 /* One accepted step of at most h; on return *h is the next size. */
-static enum lxg_status accepted_step(struct lxg_ivp *ivp, const gsl_odeiv2_system *system, double *x, double *h,
-                                     double end, double y[]) {
+static enum lxg_status accepted_step(struct lxg_ivp *ivp, const gsl_odeiv2_system *system, double *x,
+                                     double *h, double end, double y[]) {
   double kept[IVP_MAX_DIMENSION], error[IVP_MAX_DIMENSION], slope[IVP_MAX_DIMENSION];
   memcpy(kept, y, ivp->dimension * sizeof(double));
   if (gsl_slope(*x, y, slope, ivp) != GSL_SUCCESS) {
@@ -80,8 +80,7 @@ static enum lxg_status accepted_step(struct lxg_ivp *ivp, const gsl_odeiv2_syste
       *h = 0.25 * size;
     } else {
       double next = size;
-      const int verdict =
-          gsl_odeiv2_control_hadjust(ivp->control, ivp->step, y, error, after, &next);
+      const int verdict = gsl_odeiv2_control_hadjust(ivp->control, ivp->step, y, error, after, &next);
       *h = next;
       if (verdict != GSL_ODEIV_HADJ_DEC) {
         *x = last ? end : *x + size;
@@ -95,9 +94,9 @@ static enum lxg_status accepted_step(struct lxg_ivp *ivp, const gsl_odeiv2_syste
   }
 }
 
-enum lxg_status lxg_ivp_march(struct lxg_ivp *ivp, lxg_ivp_slope *slope, const void *context, lxg_ivp_watch *watch,
-                              void *watcher, double *x, double end, double first_step, int step_limit, double y[],
-                              int *stopped) {
+enum lxg_status lxg_ivp_march(struct lxg_ivp *ivp, lxg_ivp_slope *slope, const void *context,
+                              lxg_ivp_watch *watch, void *watcher, double *x, double end, double first_step,
+                              int step_limit, double y[], int *stopped) {
   ivp->slope = slope;
   ivp->context = context;
   gsl_odeiv2_step_reset(ivp->step);

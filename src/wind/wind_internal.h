@@ -6,7 +6,10 @@
 #define LUXGALE_WIND_INTERNAL_H
 
 #include "luxgale/bvp.h"
+#include "luxgale/ivp.h"
 #include "luxgale/wind.h"
+
+#include <stdbool.h>
 
 #define WIND_LN_4PI 2.53102424696929079309 /* ln(4 pi) */
 
@@ -33,6 +36,7 @@ struct wind_local {
   double ln_rho; /* [g cm^-3] */
   double g;      /* G M/r [erg g^-1] */
   double w, c, h, kappa, mdot, lhat, gamma, phi, n;
+  double table_weight; /* share of the opacity that came from a table */
   double dlnk[WIND_ARGUMENTS], d_lhat[WIND_ARGUMENTS], d_gamma[WIND_ARGUMENTS], d_phi[WIND_ARGUMENTS],
       d_n[WIND_ARGUMENTS];
 };
@@ -42,6 +46,76 @@ void lxg_wind_constants_init(struct wind_constants *constants, const struct lxg_
 /* LXG_DOMAIN if the place is outside the physical or tabulated domain. */
 enum lxg_status lxg_wind_local(const struct wind_constants *constants, const struct wind_place *at,
                                struct wind_local *local);
+
+/* Parameters of the boundary-value problem. */
+enum { WIND_P_LNRC, WIND_P_LNMDOT, WIND_P_LAMBDA, WIND_P_LNRPH, WIND_P_LNMENV, WIND_P_COUNT };
+
+/* Kinds of held rows beyond the public ones. */
+enum { WIND_ROW_CRITICAL_TEMPERATURE = LXG_HELD_COUNT, WIND_ROW_ARC };
+
+/* One held row. Target: natural logarithm of the CGS value; for luminosities at the base and the energy rate the value
+ * over L_Edd; for the photospheric luminosity ln(L/(4 pi sigma)); for the arc the arc length. */
+struct wind_row {
+  int kind;
+  double target;
+  double direction[WIND_P_LNMENV], origin[WIND_P_LNMENV]; /* arc only */
+};
+
+/* Gas beyond the photosphere (wind_coast.c). */
+struct wind_coast;
+
+/* Everything the callbacks need. */
+struct wind_problem {
+  struct wind_constants constants;
+  struct wind_coast *coast;
+  struct wind_row row[2];
+  struct lxg_bvp_problem bvp;
+};
+
+/* Sets the two held rows and the sizes that follow from them. */
+void lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row row[2]);
+size_t lxg_wind_row_site(int kind);
+double lxg_wind_ln_r(const struct wind_constants *constants, double x, const double p[]);
+
+/* One point of the coasting gas. */
+struct wind_coast_point {
+  double ln_r, ln_v, ln_t;
+};
+
+/* NULL if out of memory. */
+struct wind_coast *lxg_wind_coast_create(const struct wind_constants *constants);
+void lxg_wind_coast_destroy(struct wind_coast *coast);
+
+/* ln v at 1000 R_ph and its partials against (ln v, ln T, ln R, ln Mdot, lambda) at the photosphere `from`.
+ * LXG_NO_SOLUTION when the flow falls back to the sound speed before. */
+enum lxg_status lxg_wind_coast_gradient(struct wind_coast *coast, const struct wind_place *from,
+                                        double *ln_speed, double gradient[WIND_ARGUMENTS]);
+
+/* The same march without partials, points recorded (up to `capacity`); *count is set. On LXG_NO_SOLUTION the last point is
+ * where the flow stalled. */
+enum lxg_status lxg_wind_coast_track(struct wind_coast *coast, const struct wind_place *from,
+                                     struct wind_coast_point point[], size_t capacity, size_t *count);
+
+/* A recorded march, from the critical point away. */
+enum { WIND_TRACK_POINTS = 2048 };
+struct wind_track {
+  size_t count;
+  double ln_r[WIND_TRACK_POINTS];
+  double y[WIND_TRACK_POINTS][2], dydr[WIND_TRACK_POINTS][2]; /* (ln v, ln T) and slopes against ln r */
+};
+
+/* Cubic Hermite interpolation in a track; beyond its last point the last slopes (bounded) go on. */
+void lxg_wind_track_at(const struct wind_track *track, double ln_r, double y[2], double dydr[2]);
+
+/* Approximate outer structure for a critical radius and temperature (wind_start.c); LXG_NO_SOLUTION when no rate separates
+ * the two kinds of march. */
+enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, struct lxg_ivp *ivp,
+                                     double ln_rc, double ln_tc, struct wind_track *track,
+                                     struct wind_track *scratch, double *ln_mdot, double *lambda);
+
+/* Inner structure for the same point and rate. */
+enum lxg_status lxg_wind_start_inner(const struct wind_constants *constants, struct lxg_ivp *ivp,
+                                     double ln_rc, double ln_tc, double ln_mdot, struct wind_track *track);
 
 /* dlnv/dlnr at the critical point (accelerating root); NaN if there is none. */
 double lxg_wind_critical_slope(const struct wind_local *local);

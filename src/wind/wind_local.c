@@ -27,17 +27,24 @@ void lxg_wind_constants_init(struct wind_constants *constants, const struct lxg_
 }
 
 /* Opacity with its slopes against ln v, ln T, ln r, ln Mdot. */
-static enum lxg_status local_opacity(const struct wind_constants *constants, struct wind_local *l, double ln_t,
-                                     double dlnk[WIND_ARGUMENTS]) {
-  struct lxg_opacity_value value;
-  const enum lxg_status status = lxg_opacity_at(constants->model.opacity, l->ln_rho, ln_t, &value);
+static enum lxg_status local_opacity(const struct wind_constants *constants, const struct wind_place *at,
+                                     struct wind_local *l, double dlnk[WIND_ARGUMENTS]) {
+  struct lxg_opacity_value gas;
+  enum lxg_status status = lxg_opacity_at(constants->model.opacity, l->ln_rho, at->ln_t, &gas);
   if (status != LXG_OK) {
     return status;
   }
-  l->kappa = value.kappa;
+  const struct lxg_porosity_gas scale = {.gm = constants->gm, .ct2_per_kelvin = constants->c_t2_per_k};
+  struct lxg_porosity_value value;
+  status = lxg_porosity_at(&constants->model.porosity, l->ln_rho, at->ln_t, at->ln_r, &gas, &scale, &value);
+  if (status != LXG_OK) {
+    return status;
+  }
+  l->kappa = value.kappa_eff;
+  l->table_weight = gas.table_weight;
   dlnk[WIND_LNV] = -value.dlnk_dlnrho;
   dlnk[WIND_LNT] = value.dlnk_dlnt;
-  dlnk[WIND_LNR] = -2.0 * value.dlnk_dlnrho;
+  dlnk[WIND_LNR] = value.dlnk_dlnr - 2.0 * value.dlnk_dlnrho;
   dlnk[WIND_LNMDOT] = value.dlnk_dlnrho;
   dlnk[WIND_LAMBDA] = 0.0;
   return LXG_OK;
@@ -56,7 +63,7 @@ enum lxg_status lxg_wind_local(const struct wind_constants *constants, const str
     return LXG_DOMAIN;
   }
   double dlnk[WIND_ARGUMENTS];
-  const enum lxg_status status = local_opacity(constants, l, at->ln_t, dlnk);
+  const enum lxg_status status = local_opacity(constants, at, l, dlnk);
   if (status != LXG_OK) {
     return status;
   }
