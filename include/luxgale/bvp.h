@@ -117,9 +117,9 @@ const double *lxg_bvp_nodes(const struct lxg_bvp *bvp);
 const double *lxg_bvp_node_values(const struct lxg_bvp *bvp);
 size_t lxg_bvp_stages(const struct lxg_bvp *bvp);
 
-/* Integral of q(x, y) dx over the solution from node `first` to node `last` by the collocation points' weights. */
-double lxg_bvp_integral(const struct lxg_bvp *bvp, size_t first, size_t last,
-                        double (*q)(const void *context, double x, const double y[], const double p[]),
-                        const void *context);
+/* Visits every collocation point in order of x with its quadrature weight (weights of a piece sum to 1). */
+void lxg_bvp_visit(const struct lxg_bvp *bvp,
+                   void (*visit)(void *context, size_t piece, double x, double weight, const double y[]),
+                   void *context);
 
 #endif

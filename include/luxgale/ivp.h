@@ -28,8 +28,8 @@ void lxg_ivp_destroy(struct lxg_ivp *ivp);
 /* Marches y from x to `end` (either direction). On return x and y are where the march stopped.
  * LXG_OK: reached the end or was stopped by the watcher (*stopped holds its answer). LXG_DOMAIN: the slope failed and no
  * shorter step helped. LXG_NOT_CONVERGED: more than `step_limit` steps. */
-enum lxg_status lxg_ivp_march(struct lxg_ivp *ivp, lxg_ivp_slope *slope, const void *context, lxg_ivp_watch *watch,
-                              void *watcher, double *x, double end, double first_step, int step_limit, double y[],
-                              int *stopped);
+enum lxg_status lxg_ivp_march(struct lxg_ivp *ivp, lxg_ivp_slope *slope, const void *context,
+                              lxg_ivp_watch *watch, void *watcher, double *x, double end, double first_step,
+                              int step_limit, double y[], int *stopped);
 
 #endif

@@ -226,12 +226,12 @@ size_t lxg_bvp_stages(const struct lxg_bvp *b) {
   return b->tableau.stages;
 }
 
-double lxg_bvp_integral(const struct lxg_bvp *b, size_t first, size_t last,
-                        double (*q)(const void *context, double x, const double y[], const double p[]),
-                        const void *context) {
+void lxg_bvp_visit(const struct lxg_bvp *b,
+                   void (*visit)(void *context, size_t piece, double x, double weight, const double y[]),
+                   void *context) {
   const size_t n = b->n, stages = b->tableau.stages;
-  double total = 0.0;
-  for (size_t i = first; i < last; i++) {
+  size_t piece = 0;
+  for (size_t i = 0; i < b->intervals; i++) {
     const double h = b->x[i + 1] - b->x[i];
     for (size_t j = 0; j < stages; j++) {
       double y[LXG_BVP_MAX_UNKNOWNS];
@@ -242,8 +242,10 @@ double lxg_bvp_integral(const struct lxg_bvp *b, size_t first, size_t last,
         }
         y[a] = b->y[i * n + a] + h * sum;
       }
-      total += h * b->tableau.b[j] * q(context, b->x[i] + h * b->tableau.c[j], y, b->p);
+      visit(context, piece, b->x[i] + h * b->tableau.c[j], h * b->tableau.b[j], y);
+    }
+    if (b->x[i + 1] >= (double)(piece + 1)) {
+      piece++;
     }
   }
-  return total;
 }

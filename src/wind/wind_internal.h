@@ -117,6 +117,42 @@ enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, str
 enum lxg_status lxg_wind_start_inner(const struct wind_constants *constants, struct lxg_ivp *ivp,
                                      double ln_rc, double ln_tc, double ln_mdot, struct wind_track *track);
 
+/* The solver's state (wind_solve.c); the other files read it. */
+struct lxg_wind_solver {
+  struct wind_problem problem;
+  struct lxg_wind_options options;
+  struct lxg_bvp *now;  /* being worked on */
+  struct lxg_bvp *kept; /* last wind solved */
+  struct lxg_ivp *ivp;
+  struct wind_track outer, inner, scratch;
+  bool have;        /* `kept` holds a wind */
+  int newton_steps; /* since the search began */
+  double residual;  /* of the kept wind */
+};
+
+/* Present value of a held kind in the units of a row's target, from the kept wind; NaN if it has none. */
+double lxg_wind_kept_value(const struct lxg_wind_solver *solver, int kind);
+
+/* Solves the global problem for two rows from the kept wind (or from `now` when `fresh`), on an adapted mesh; on LXG_OK
+ * the result is kept. `residual` is the tolerance off the mesh. */
+enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct wind_row row[2], double residual,
+                                bool fresh);
+
+/* Continuation from the kept wind to two rows, in as many steps as it takes. */
+enum lxg_status lxg_wind_walk(struct lxg_wind_solver *solver, const struct wind_row row[2]);
+
+/* Row of a held quantity. */
+struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold);
+
+/* A first wind for two held rows (wind_cold.c); it is kept. */
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, const struct wind_row row[2]);
+
+/* Every number of the kept wind (wind_result.c). */
+enum lxg_status lxg_wind_result(const struct lxg_wind_solver *solver, struct lxg_wind *wind);
+
+/* A result without a wind: all numbers NaN. */
+void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason);
+
 /* dlnv/dlnr at the critical point (accelerating root); NaN if there is none. */
 double lxg_wind_critical_slope(const struct wind_local *local);
 

@@ -1,0 +1,221 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * wind_solve.c - the solver's life, one Newton solve on an adapted mesh, and continuation between held values.
+ *
+ * A solve always works on a copy: the last wind stays kept until a better one is complete.
+ */
+#include "wind/wind_internal.h"
+
+#include "luxgale/constants.h"
+#include "luxgale/memory.h"
+
+#include <math.h>
+
+static const double walk_smallest =
+    1.0 / 512.0;                          /* smallest share of the way that a continuation step may have */
+static const double walk_residual = 1e-4; /* relative residual that is enough on the way */
+enum { NEWTON_LIMIT = 30, MESH_LIMIT = 14, WALK_LIMIT = 400 };
+static const double damping_floor = 1e-3;
+
+struct lxg_wind_options lxg_wind_options_default(void) {
+  const struct lxg_wind_options options = {
+      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-9, .residual_tolerance = 2e-7};
+  return options;
+}
+
+enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
+                                       const struct lxg_wind_options *options,
+                                       struct lxg_wind_solver **solver, struct lxg_error *error) {
+  *solver = NULL;
+  struct lxg_wind_solver *made = lxg_alloc(1, sizeof *made);
+  if (made == NULL) {
+    return lxg_error_set(error, LXG_MEMORY, "memory", "wind solver: out of memory");
+  }
+  made->options = options != NULL ? *options : lxg_wind_options_default();
+  lxg_wind_constants_init(&made->problem.constants, model);
+  made->problem.coast = lxg_wind_coast_create(&made->problem.constants);
+  made->now = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  made->kept = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  made->ivp = lxg_ivp_create(2, LXG_IVP_ORDER_5, 1e-5);
+  if (made->problem.coast == NULL || made->now == NULL || made->kept == NULL || made->ivp == NULL) {
+    lxg_wind_solver_destroy(made);
+    return lxg_error_set(error, LXG_MEMORY, "memory", "wind solver: out of memory");
+  }
+  *solver = made;
+  return LXG_OK;
+}
+
+void lxg_wind_solver_destroy(struct lxg_wind_solver *solver) {
+  if (solver != NULL) {
+    lxg_wind_coast_destroy(solver->problem.coast);
+    lxg_bvp_destroy(solver->now);
+    lxg_bvp_destroy(solver->kept);
+    lxg_ivp_destroy(solver->ivp);
+    lxg_free(solver);
+  }
+}
+
+const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver *solver) {
+  return &solver->problem.constants.model;
+}
+
+enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct wind_row row[2], double residual,
+                                bool fresh) {
+  if (!fresh) {
+    const enum lxg_status copied = lxg_bvp_copy(solver->now, solver->kept);
+    if (copied != LXG_OK) {
+      return copied;
+    }
+  }
+  lxg_wind_problem_set(&solver->problem, row);
+  if (solver->problem.bvp.integrals > 0 && solver->have) {
+    lxg_bvp_parameters(solver->now)[WIND_P_LNMENV] = lxg_wind_kept_value(solver, LXG_HELD_ENVELOPE_MASS);
+  }
+  const struct lxg_bvp_options options = {.newton_tolerance = solver->options.newton_tolerance,
+                                          .residual_tolerance = residual,
+                                          .newton_limit = NEWTON_LIMIT,
+                                          .mesh_limit = MESH_LIMIT,
+                                          .damping_floor = damping_floor};
+  struct lxg_bvp_statistics statistics;
+  const enum lxg_status status = lxg_bvp_solve(solver->now, &solver->problem.bvp, &options, &statistics);
+  solver->newton_steps += statistics.newton_steps;
+  if (status != LXG_OK) {
+    return status;
+  }
+  struct lxg_bvp *swap = solver->kept;
+  solver->kept = solver->now;
+  solver->now = swap;
+  solver->have = true;
+  solver->residual = statistics.residual;
+  return LXG_OK;
+}
+
+enum lxg_status lxg_wind_walk(struct lxg_wind_solver *solver, const struct wind_row row[2]) {
+  double from[2];
+  for (size_t i = 0; i < 2; i++) {
+    from[i] = lxg_wind_kept_value(solver, row[i].kind);
+    if (!isfinite(from[i])) {
+      return LXG_NOT_CONVERGED;
+    }
+  }
+  double done = 0.0, step = 1.0;
+  for (int i = 0; done < 1.0; i++) {
+    if (i >= WALK_LIMIT || step < walk_smallest) {
+      return LXG_NOT_CONVERGED;
+    }
+    const double next = fmin(1.0, done + step);
+    struct wind_row at[2] = {row[0], row[1]};
+    for (size_t j = 0; j < 2; j++) {
+      at[j].target = next >= 1.0 ? row[j].target : from[j] + next * (row[j].target - from[j]);
+    }
+    const double residual = next >= 1.0 ? solver->options.residual_tolerance : walk_residual;
+    const enum lxg_status status = lxg_wind_newton(solver, at, residual, false);
+    if (status == LXG_OK) {
+      done = next;
+      step *= 2.0;
+    } else if (status == LXG_BUG || status == LXG_MEMORY) {
+      return status;
+    } else {
+      step *= 0.5;
+    }
+  }
+  return LXG_OK;
+}
+
+struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold) {
+  const struct wind_constants *constants = &solver->problem.constants;
+  struct wind_row row = {.kind = (int)hold->quantity};
+  switch (hold->quantity) {
+  case LXG_HELD_BASE_LUMINOSITY:
+  case LXG_HELD_ENERGY_RATE:
+    row.target = hold->value / constants->l_edd;
+    break;
+  case LXG_HELD_PHOTOSPHERE_LUMINOSITY:
+    row.target = log(hold->value / (4.0 * LXG_PI * LXG_STEFAN_BOLTZMANN));
+    break;
+  default:
+    row.target = log(hold->value);
+    break;
+  }
+  return row;
+}
+
+static enum lxg_status holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                   struct lxg_error *error) {
+  for (size_t i = 0; i < 2; i++) {
+    const char *name = lxg_held_name(hold[i].quantity);
+    if (name == NULL) {
+      return lxg_error_set(error, LXG_INPUT, "hold-unknown", "held quantity %d does not exist",
+                           (int)hold[i].quantity);
+    }
+    const bool any_sign =
+        hold[i].quantity == LXG_HELD_ENERGY_RATE || hold[i].quantity == LXG_HELD_BASE_LUMINOSITY;
+    if (!isfinite(hold[i].value) || (!any_sign && !(hold[i].value > 0.0))) {
+      return lxg_error_set(error, LXG_INPUT, "hold-value", "%s = %.10g: a held value is a positive number",
+                           name, hold[i].value);
+    }
+    if (hold[i].quantity == LXG_HELD_LAUNCH_RADIUS &&
+        !(hold[i].value > solver->problem.constants.model.star.radius)) {
+      return lxg_error_set(error, LXG_INPUT, "hold-launch-radius",
+                           "launch_radius = %.10g cm: it lies outside the star's radius, %.10g cm",
+                           hold[i].value, solver->problem.constants.model.star.radius);
+    }
+  }
+  if (hold[0].quantity == hold[1].quantity) {
+    return lxg_error_set(error, LXG_INPUT, "hold-dependent",
+                         "%s is held twice: two different quantities select a wind",
+                         lxg_held_name(hold[0].quantity));
+  }
+  return LXG_OK;
+}
+
+static enum lxg_status finish(struct lxg_wind_solver *solver, enum lxg_status status, struct lxg_wind *wind,
+                              struct lxg_error *error) {
+  if (status == LXG_OK) {
+    status = lxg_wind_result(solver, wind);
+  }
+  if (status == LXG_OK) {
+    return LXG_OK;
+  }
+  if (status == LXG_BUG || status == LXG_MEMORY) {
+    return lxg_error_set(error, status, "wind-internal", "wind: %s", lxg_strerror(status));
+  }
+  if (wind->reason == LXG_WIND_SOLVED) {
+    lxg_wind_none(wind, status == LXG_NO_SOLUTION ? LXG_WIND_STAGNATES : LXG_WIND_NOT_FOUND);
+  }
+  return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(wind->reason), "%s",
+                       lxg_wind_reason_text(wind->reason));
+}
+
+enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                               struct lxg_wind *wind, struct lxg_error *error) {
+  lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
+  enum lxg_status status = holds_check(solver, hold, error);
+  if (status != LXG_OK) {
+    return status;
+  }
+  solver->have = false;
+  solver->newton_steps = 0;
+  const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
+  status = lxg_wind_cold(solver, row);
+  if (status == LXG_OK) {
+    status = lxg_wind_walk(solver, row);
+  }
+  return finish(solver, status, wind, error);
+}
+
+enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                struct lxg_wind *wind, struct lxg_error *error) {
+  lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
+  enum lxg_status status = holds_check(solver, hold, error);
+  if (status != LXG_OK) {
+    return status;
+  }
+  if (!solver->have) {
+    return lxg_error_set(error, LXG_NOT_CONVERGED, "wind-no-neighbour",
+                         "there is no wind yet to follow from");
+  }
+  solver->newton_steps = 0;
+  const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
+  return finish(solver, lxg_wind_walk(solver, row), wind, error);
+}
