@@ -153,6 +153,23 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
 enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                 struct lxg_wind *wind, struct lxg_error *error);
 
+/* Coordinates in which a family of winds is a smooth curve: ln r_c, ln Mdot, Lambda/L_Edd, ln R_ph. */
+enum { LXG_WIND_COORDINATES = 4 };
+
+/* Coordinates of the wind the solver keeps. */
+void lxg_wind_coordinates(const struct lxg_wind_solver *solver, double coordinates[LXG_WIND_COORDINATES]);
+
+/* One step of pseudo-arclength continuation: the wind with `hold` whose coordinates, projected on `direction`, lie `length`
+ * beyond those of the wind the solver keeps. Passes folds. Returns as lxg_wind_follow; a flow that stagnates beyond its
+ * photosphere returns LXG_NO_SOLUTION with its structure kept. */
+enum lxg_status lxg_wind_arc(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                             const double direction[LXG_WIND_COORDINATES], double length,
+                             struct lxg_wind *wind, struct lxg_error *error);
+
+/* Sets the kept wind aside, and takes it back. */
+enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver);
+enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver);
+
 /* One row of a wind's structure. */
 struct lxg_wind_row {
   double radius;        /* [cm] */

@@ -36,8 +36,10 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
   made->problem.coast = lxg_wind_coast_create(&made->problem.constants);
   made->now = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
   made->kept = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  made->marked = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
   made->ivp = lxg_ivp_create(2, LXG_IVP_ORDER_5, 1e-5);
-  if (made->problem.coast == NULL || made->now == NULL || made->kept == NULL || made->ivp == NULL) {
+  if (made->problem.coast == NULL || made->now == NULL || made->kept == NULL || made->marked == NULL ||
+      made->ivp == NULL) {
     lxg_wind_solver_destroy(made);
     return lxg_error_set(error, LXG_MEMORY, "memory", "wind solver: out of memory");
   }
@@ -50,6 +52,7 @@ void lxg_wind_solver_destroy(struct lxg_wind_solver *solver) {
     lxg_wind_coast_destroy(solver->problem.coast);
     lxg_bvp_destroy(solver->now);
     lxg_bvp_destroy(solver->kept);
+    lxg_bvp_destroy(solver->marked);
     lxg_ivp_destroy(solver->ivp);
     lxg_free(solver);
   }
@@ -218,4 +221,36 @@ enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg
   solver->newton_steps = 0;
   const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
   return finish(solver, lxg_wind_walk(solver, row), wind, error);
+}
+
+void lxg_wind_coordinates(const struct lxg_wind_solver *solver, double coordinates[LXG_WIND_COORDINATES]) {
+  const double *p = lxg_bvp_parameters_const(solver->kept);
+  for (size_t i = 0; i < LXG_WIND_COORDINATES; i++) {
+    coordinates[i] = p[i];
+  }
+}
+
+enum lxg_status lxg_wind_arc(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                             const double direction[LXG_WIND_COORDINATES], double length,
+                             struct lxg_wind *wind, struct lxg_error *error) {
+  lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
+  if (!solver->have) {
+    return lxg_error_set(error, LXG_NOT_CONVERGED, "wind-no-neighbour",
+                         "there is no wind yet to follow from");
+  }
+  struct wind_row row[2] = {lxg_wind_row_of(solver, hold), {.kind = WIND_ROW_ARC, .target = length}};
+  for (size_t i = 0; i < LXG_WIND_COORDINATES; i++) {
+    row[1].direction[i] = direction[i];
+  }
+  lxg_wind_coordinates(solver, row[1].origin);
+  solver->newton_steps = 0;
+  return finish(solver, lxg_wind_newton(solver, row, solver->options.residual_tolerance, false), wind, error);
+}
+
+enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver) {
+  return lxg_bvp_copy(solver->marked, solver->kept);
+}
+
+enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver) {
+  return lxg_bvp_copy(solver->kept, solver->marked);
 }

@@ -1,0 +1,109 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * family.h - the one-parameter sequence of winds that share one held quantity, from the thin end to the thick end.
+ *
+ * Traced by pseudo-arclength continuation, so folds are passed; dense enough that linear interpolation between
+ * neighbouring winds errs less than a stated tolerance in every quantity; read by cubic interpolation in the arc length.
+ * A value of a second quantity may be met more than once: every crossing is reported.
+ *
+ * Call order: lxg_family_trace -> lxg_family_find / lxg_family_at -> lxg_family_free. A traced family is read-only and may
+ * be shared by threads.
+ */
+#ifndef LUXGALE_FAMILY_H
+#define LUXGALE_FAMILY_H
+
+#include "luxgale/status.h"
+#include "luxgale/wind.h"
+
+#include <stddef.h>
+
+/* How a number is interpolated. */
+enum lxg_family_scale {
+  LXG_SCALE_LINEAR, /* of either sign, in units of L_Edd */
+  LXG_SCALE_LOG,    /* natural logarithm */
+  LXG_SCALE_SQUARE  /* square: the terminal speed goes to zero as a square root where a family stagnates */
+};
+
+/* Numbers interpolated along a family: name, key, member of struct lxg_wind, scale. */
+#define LXG_FAMILY_LIST(X)                                                                                   \
+  X(BASE_TEMPERATURE, base_temperature, value[LXG_HELD_BASE_TEMPERATURE], LXG_SCALE_LOG)                     \
+  X(BASE_LUMINOSITY, base_luminosity, value[LXG_HELD_BASE_LUMINOSITY], LXG_SCALE_LINEAR)                     \
+  X(LAUNCH_RADIUS, launch_radius, value[LXG_HELD_LAUNCH_RADIUS], LXG_SCALE_LOG)                              \
+  X(PHOTOSPHERE_LUMINOSITY, photosphere_luminosity, value[LXG_HELD_PHOTOSPHERE_LUMINOSITY], LXG_SCALE_LOG)   \
+  X(PHOTOSPHERE_TEMPERATURE, photosphere_temperature, value[LXG_HELD_PHOTOSPHERE_TEMPERATURE],               \
+    LXG_SCALE_LOG)                                                                                           \
+  X(PHOTOSPHERE_RADIUS, photosphere_radius, value[LXG_HELD_PHOTOSPHERE_RADIUS], LXG_SCALE_LOG)               \
+  X(TERMINAL_SPEED, terminal_speed, value[LXG_HELD_TERMINAL_SPEED], LXG_SCALE_SQUARE)                        \
+  X(MASS_LOSS_RATE, mass_loss_rate, value[LXG_HELD_MASS_LOSS_RATE], LXG_SCALE_LOG)                           \
+  X(ENERGY_RATE, energy_rate, value[LXG_HELD_ENERGY_RATE], LXG_SCALE_LINEAR)                                 \
+  X(ENVELOPE_MASS, envelope_mass, value[LXG_HELD_ENVELOPE_MASS], LXG_SCALE_LOG)                              \
+  X(CRITICAL_TEMPERATURE, critical_temperature, critical.temperature, LXG_SCALE_LOG)                         \
+  X(CRITICAL_DEPTH, critical_depth, critical.optical_depth, LXG_SCALE_LOG)                                   \
+  X(PHOTOSPHERE_SPEED, photosphere_speed, photosphere.speed, LXG_SCALE_LOG)                                  \
+  X(PHOTOSPHERE_OPACITY, photosphere_opacity, photosphere.opacity, LXG_SCALE_LOG)                            \
+  X(LUMINOSITY_INFINITY, luminosity_infinity, luminosity_infinity, LXG_SCALE_LINEAR)                         \
+  X(GAMMA_MAX, gamma_max, gamma_max, LXG_SCALE_LOG)                                                          \
+  X(FLOW_TIME, flow_time, flow_time, LXG_SCALE_LOG)                                                          \
+  X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)
+
+/* The first LXG_HELD_COUNT members stand in the order of enum lxg_held. */
+enum lxg_family_quantity {
+#define LXG_FAMILY_ENUM(name, key, member, scale) LXG_FAMILY_##name,
+  LXG_FAMILY_LIST(LXG_FAMILY_ENUM)
+#undef LXG_FAMILY_ENUM
+      LXG_FAMILY_COUNT
+};
+
+/* One place of a family: the numbers of LXG_FAMILY_LIST in CGS. */
+struct lxg_family_place {
+  double arc;
+  double value[LXG_FAMILY_COUNT];
+};
+
+/* A traced family: winds in order of arc length, from the thin end (index 0) to the thick end. */
+struct lxg_family {
+  struct lxg_wind_hold hold; /* what all members share */
+  size_t count;
+  struct lxg_wind *wind;         /* [count] */
+  double *arc;                   /* [count] increasing, arc[0] = 0 */
+  double *table;                 /* [count * LXG_FAMILY_COUNT] interpolated numbers, logarithms where so */
+  enum lxg_wind_reason thin_end; /* why the family ends there */
+  enum lxg_wind_reason thick_end;
+  double l_edd;     /* unit of the signed luminosities in the table [erg s^-1] */
+  int newton_steps; /* spent in all */
+};
+
+struct lxg_family_options {
+  double
+      tolerance; /* largest relative error of linear interpolation between neighbours (luminosities: of L_Edd;
+                         * terminal speeds below a tenth of the photospheric speed: of that tenth) */
+  double thin_depth;  /* the thin end: critical optical depth below which diffusion is no description */
+  double radius_most; /* the thick end at the latest: photospheric radius [cm] */
+  size_t count_most;  /* winds at most */
+};
+struct lxg_family_options lxg_family_options_default(void);
+
+/* Traces the family of `hold` from a start wind found with `start` as second held quantity (any member serves).
+ * LXG_NO_SOLUTION when not even one wind is found; the error carries the reason. */
+enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                                 const struct lxg_wind_hold *start, const struct lxg_family_options *options,
+                                 struct lxg_family *family, struct lxg_error *error);
+void lxg_family_free(struct lxg_family *family);
+
+/* Arc lengths at which a quantity takes a value [CGS], at most `capacity` of them, ascending (thin to thick); returns how
+ * many there are. */
+size_t lxg_family_find(const struct lxg_family *family, enum lxg_family_quantity quantity, double value,
+                       double arc[], size_t capacity);
+
+/* Why no member has that value: LXG_WIND_BELOW_THIN_END when the thin end lies nearer to it, the thick end's reason or
+ * LXG_WIND_ABOVE_FOLD otherwise. */
+enum lxg_wind_reason lxg_family_missing(const struct lxg_family *family, enum lxg_family_quantity quantity,
+                                        double value);
+
+/* Numbers at an arc length (clipped to the family). */
+void lxg_family_at(const struct lxg_family *family, double arc, struct lxg_family_place *place);
+
+/* Key of a quantity, e.g. "mass_loss_rate"; NULL beyond the list. */
+const char *lxg_family_key(enum lxg_family_quantity quantity);
+
+#endif
