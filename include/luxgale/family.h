@@ -6,7 +6,7 @@
  * neighbouring winds errs less than a stated tolerance in every quantity; read by cubic interpolation in the arc length.
  * A value of a second quantity may be met more than once: every crossing is reported.
  *
- * Call order: lxg_family_trace -> lxg_family_find / lxg_family_at -> lxg_family_free. A traced family is read-only and may
+ * Call order: lxg_family_trace -> lxg_family_index_create -> lxg_family_index_branch, lxg_family_at -> lxg_family_free. A traced family is read-only and may
  * be shared by threads.
  */
 #ifndef LUXGALE_FAMILY_H
@@ -90,10 +90,26 @@ enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lx
                                  struct lxg_family *family, struct lxg_error *error);
 void lxg_family_free(struct lxg_family *family);
 
-/* Arc lengths at which a quantity takes a value [CGS], at most `capacity` of them, ascending (thin to thick); returns how
- * many there are. */
-size_t lxg_family_find(const struct lxg_family *family, enum lxg_family_quantity quantity, double value,
-                       double arc[], size_t capacity);
+/* Which members have a given value of one quantity. Refers to the family, which must outlive it; read-only once made. */
+struct lxg_family_index;
+enum lxg_status lxg_family_index_create(const struct lxg_family *family, enum lxg_family_quantity quantity,
+                                        struct lxg_family_index **index, struct lxg_error *error);
+void lxg_family_index_destroy(struct lxg_family_index *index);
+
+/* Arc lengths at which the quantity takes a value [CGS], at most `capacity` of them, thin to thick; returns how many there
+ * are. */
+size_t lxg_family_index_find(const struct lxg_family_index *index, double value, double arc[],
+                             size_t capacity);
+
+/* Which of several members with the same value is meant. */
+enum lxg_branch {
+  LXG_BRANCH_THIN, /* the smallest mass-loss rate */
+  LXG_BRANCH_THICK /* the largest */
+};
+
+/* The member of the wanted branch; returns how many members have the value (0: `place` is untouched). */
+size_t lxg_family_index_branch(const struct lxg_family_index *index, double value, enum lxg_branch branch,
+                               struct lxg_family_place *place);
 
 /* Why no member has that value: LXG_WIND_BELOW_THIN_END when the thin end lies nearer to it, the thick end's reason or
  * LXG_WIND_ABOVE_FOLD otherwise. */

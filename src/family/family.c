@@ -1,11 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * family.c - reading a traced family: interpolation in arc length, crossings of a value, reasons for a missing one.
+ * family.c - reading a traced family: interpolation in arc length, and why a value is missing.
  *
  * Between neighbours every number follows a cubic Hermite polynomial in the arc length whose slopes are those of the parabola
- * through three neighbours; its error is far below that of the linear interpolant to which the family was refined. Crossings
- * of a value are searched interval by interval on the same cubic, extremes inside an interval included, so a fold yields
- * both members.
+ * through three neighbours; its error is far below that of the linear interpolant to which the family was refined.
  */
 #include "luxgale/family.h"
 
@@ -32,7 +30,7 @@ const char *lxg_family_key(enum lxg_family_quantity quantity) {
   return (int)quantity >= 0 && (int)quantity < (int)LXG_FAMILY_COUNT ? keys[quantity] : NULL;
 }
 
-static double to_number(size_t quantity, double value, double l_edd) {
+double lxg_family_number(size_t quantity, double value, double l_edd) {
   switch (scale_of[quantity]) {
   case LXG_SCALE_LOG:
     return log(value);
@@ -61,7 +59,7 @@ void lxg_family_numbers(const struct lxg_wind *wind, double l_edd, double number
 #undef FAMILY_VALUE
   };
   for (size_t i = 0; i < LXG_FAMILY_COUNT; i++) {
-    number[i] = to_number(i, value[i], l_edd);
+    number[i] = lxg_family_number(i, value[i], l_edd);
   }
 }
 
@@ -98,7 +96,7 @@ static double slope_at(const struct lxg_family *family, size_t i, size_t quantit
 }
 
 /* Cubic of one interval, q(t) = c0 + c1 t + c2 t^2 + c3 t^3, t in [0, 1]. */
-static void cubic(const struct lxg_family *family, size_t i, size_t quantity, double c[4]) {
+void lxg_family_cubic(const struct lxg_family *family, size_t i, size_t quantity, double c[4]) {
   const double h = family->arc[i + 1] - family->arc[i];
   const double q0 = number_at(family, i, quantity), q1 = number_at(family, i + 1, quantity);
   const double d0 = h * slope_at(family, i, quantity), d1 = h * slope_at(family, i + 1, quantity);
@@ -108,7 +106,7 @@ static void cubic(const struct lxg_family *family, size_t i, size_t quantity, do
   c[3] = 2.0 * (q0 - q1) + d0 + d1;
 }
 
-static double cubic_at(const double c[4], double t) {
+double lxg_family_cubic_at(const double c[4], double t) {
   return c[0] + t * (c[1] + t * (c[2] + t * c[3]));
 }
 
@@ -134,77 +132,16 @@ void lxg_family_at(const struct lxg_family *family, double arc, struct lxg_famil
   for (size_t q = 0; q < LXG_FAMILY_COUNT; q++) {
     double c[4] = {number_at(family, i, q)};
     if (!single) {
-      cubic(family, i, q, c);
+      lxg_family_cubic(family, i, q, c);
     }
-    place->value[q] = from_number(q, cubic_at(c, t), family->l_edd);
+    place->value[q] = from_number(q, lxg_family_cubic_at(c, t), family->l_edd);
   }
-}
-
-/* Root of the cubic minus `wanted` between t0 and t1, where it changes sign (bisection to the last bit). */
-static double root_between(const double c[4], double wanted, double t0, double t1) {
-  const bool rising = cubic_at(c, t1) > cubic_at(c, t0);
-  for (int i = 0; i < 60; i++) {
-    const double middle = 0.5 * (t0 + t1);
-    if ((cubic_at(c, middle) > wanted) == rising) {
-      t1 = middle;
-    } else {
-      t0 = middle;
-    }
-  }
-  return 0.5 * (t0 + t1);
-}
-
-/* Monotone stretches of the cubic in [0, 1]: cuts[0] = 0 ... cuts[n-1] = 1. */
-static size_t stretches(const double c[4], double cuts[4]) {
-  size_t n = 0;
-  cuts[n++] = 0.0;
-  const double a = 3.0 * c[3], b = 2.0 * c[2], d = b * b - 4.0 * a * c[1];
-  if (d > 0.0) {
-    const double s = -0.5 * (b + copysign(sqrt(d), b));
-    double t[2] = {a != 0.0 ? s / a : NAN, s != 0.0 ? c[1] / s : NAN};
-    if (t[1] < t[0]) {
-      const double swap = t[0];
-      t[0] = t[1];
-      t[1] = swap;
-    }
-    for (size_t i = 0; i < 2; i++) {
-      if (t[i] > 0.0 && t[i] < 1.0) {
-        cuts[n++] = t[i];
-      }
-    }
-  }
-  cuts[n++] = 1.0;
-  return n;
-}
-
-size_t lxg_family_find(const struct lxg_family *family, enum lxg_family_quantity quantity, double value,
-                       double arc[], size_t capacity) {
-  const size_t q = (size_t)quantity;
-  const double wanted = to_number(q, value, family->l_edd);
-  size_t found = 0;
-  for (size_t i = 0; i + 1 < family->count; i++) {
-    double c[4], cuts[4];
-    cubic(family, i, q, c);
-    const size_t n = stretches(c, cuts);
-    for (size_t j = 0; j + 1 < n; j++) {
-      const double low = cubic_at(c, cuts[j]) - wanted, high = cubic_at(c, cuts[j + 1]) - wanted;
-      const bool last = i + 2 == family->count && j + 2 == n;
-      if ((low <= 0.0 && high > 0.0) || (low >= 0.0 && high < 0.0) || (last && high == 0.0)) {
-        const double t = root_between(c, wanted, cuts[j], cuts[j + 1]);
-        if (found < capacity) {
-          arc[found] = family->arc[i] + t * (family->arc[i + 1] - family->arc[i]);
-        }
-        found++;
-      }
-    }
-  }
-  return found;
 }
 
 enum lxg_wind_reason lxg_family_missing(const struct lxg_family *family, enum lxg_family_quantity quantity,
                                         double value) {
   const size_t q = (size_t)quantity;
-  const double wanted = to_number(q, value, family->l_edd);
+  const double wanted = lxg_family_number(q, value, family->l_edd);
   size_t nearest = 0;
   for (size_t i = 1; i < family->count; i++) {
     if (fabs(number_at(family, i, q) - wanted) < fabs(number_at(family, nearest, q) - wanted)) {
