@@ -19,7 +19,7 @@
 
 /* How a number is interpolated. */
 enum lxg_family_scale {
-  LXG_SCALE_LINEAR, /* of either sign, in units of L_Edd */
+  LXG_SCALE_SIGNED, /* arsinh(L/L_Edd): of either sign */
   LXG_SCALE_LOG,    /* natural logarithm */
   LXG_SCALE_SQUARE  /* square: the terminal speed goes to zero as a square root where a family stagnates */
 };
@@ -27,7 +27,7 @@ enum lxg_family_scale {
 /* Numbers interpolated along a family: name, key, member of struct lxg_wind, scale. */
 #define LXG_FAMILY_LIST(X)                                                                                   \
   X(BASE_TEMPERATURE, base_temperature, value[LXG_HELD_BASE_TEMPERATURE], LXG_SCALE_LOG)                     \
-  X(BASE_LUMINOSITY, base_luminosity, value[LXG_HELD_BASE_LUMINOSITY], LXG_SCALE_LINEAR)                     \
+  X(BASE_LUMINOSITY, base_luminosity, value[LXG_HELD_BASE_LUMINOSITY], LXG_SCALE_SIGNED)                     \
   X(LAUNCH_RADIUS, launch_radius, value[LXG_HELD_LAUNCH_RADIUS], LXG_SCALE_LOG)                              \
   X(PHOTOSPHERE_LUMINOSITY, photosphere_luminosity, value[LXG_HELD_PHOTOSPHERE_LUMINOSITY], LXG_SCALE_LOG)   \
   X(PHOTOSPHERE_TEMPERATURE, photosphere_temperature, value[LXG_HELD_PHOTOSPHERE_TEMPERATURE],               \
@@ -35,13 +35,13 @@ enum lxg_family_scale {
   X(PHOTOSPHERE_RADIUS, photosphere_radius, value[LXG_HELD_PHOTOSPHERE_RADIUS], LXG_SCALE_LOG)               \
   X(TERMINAL_SPEED, terminal_speed, value[LXG_HELD_TERMINAL_SPEED], LXG_SCALE_SQUARE)                        \
   X(MASS_LOSS_RATE, mass_loss_rate, value[LXG_HELD_MASS_LOSS_RATE], LXG_SCALE_LOG)                           \
-  X(ENERGY_RATE, energy_rate, value[LXG_HELD_ENERGY_RATE], LXG_SCALE_LINEAR)                                 \
+  X(ENERGY_RATE, energy_rate, value[LXG_HELD_ENERGY_RATE], LXG_SCALE_SIGNED)                                 \
   X(ENVELOPE_MASS, envelope_mass, value[LXG_HELD_ENVELOPE_MASS], LXG_SCALE_LOG)                              \
   X(CRITICAL_TEMPERATURE, critical_temperature, critical.temperature, LXG_SCALE_LOG)                         \
   X(CRITICAL_DEPTH, critical_depth, critical.optical_depth, LXG_SCALE_LOG)                                   \
   X(PHOTOSPHERE_SPEED, photosphere_speed, photosphere.speed, LXG_SCALE_LOG)                                  \
   X(PHOTOSPHERE_OPACITY, photosphere_opacity, photosphere.opacity, LXG_SCALE_LOG)                            \
-  X(LUMINOSITY_INFINITY, luminosity_infinity, luminosity_infinity, LXG_SCALE_LINEAR)                         \
+  X(LUMINOSITY_INFINITY, luminosity_infinity, luminosity_infinity, LXG_SCALE_SIGNED)                         \
   X(GAMMA_MAX, gamma_max, gamma_max, LXG_SCALE_LOG)                                                          \
   X(FLOW_TIME, flow_time, flow_time, LXG_SCALE_LOG)                                                          \
   X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)
@@ -75,19 +75,20 @@ struct lxg_family {
 
 struct lxg_family_options {
   double
-      tolerance; /* largest relative error of linear interpolation between neighbours (luminosities: of L_Edd;
+      tolerance; /* largest relative error of linear interpolation between neighbours (signed luminosities: of max(|L|, L_Edd);
                          * terminal speeds below a tenth of the photospheric speed: of that tenth) */
   double thin_depth;  /* the thin end: critical optical depth below which diffusion is no description */
   double radius_most; /* the thick end at the latest: photospheric radius [cm] */
+  double energy_most; /* the thick end at the latest: energy rate in units of L_Edd */
   size_t count_most;  /* winds at most */
 };
 struct lxg_family_options lxg_family_options_default(void);
 
-/* Traces the family of `hold` from a start wind found with `start` as second held quantity (any member serves).
+/* Traces the family of `hold`.
  * LXG_NO_SOLUTION when not even one wind is found; the error carries the reason. */
 enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
-                                 const struct lxg_wind_hold *start, const struct lxg_family_options *options,
-                                 struct lxg_family *family, struct lxg_error *error);
+                                 const struct lxg_family_options *options, struct lxg_family *family,
+                                 struct lxg_error *error);
 void lxg_family_free(struct lxg_family *family);
 
 /* Which members have a given value of one quantity. Refers to the family, which must outlive it; read-only once made. */

@@ -74,6 +74,8 @@ struct lxg_wind_hold {
     "the photosphere would lie inside the critical point")                                                   \
   X(LXG_WIND_OPACITY_EDGE, "opacity-edge", "the wind leaves the range of the opacity table")                 \
   X(LXG_WIND_NO_CRITICAL_POINT, "no-critical-point", "radiation and pressure nowhere balance gravity")       \
+  X(LXG_WIND_BEYOND_LIMIT, "beyond-limit",                                                                   \
+    "the family of winds goes on beyond the stated limit of the search")                                     \
   X(LXG_WIND_NOT_FOUND, "not-found", "the search ended without a wind and without a proof that there is none")
 
 enum lxg_wind_reason {
@@ -144,6 +146,10 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
 void lxg_wind_solver_destroy(struct lxg_wind_solver *solver);
 const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver *solver);
 
+/* Any wind with one held quantity, from nothing: where a family may start. Returns as lxg_wind_solve. */
+enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                               struct lxg_wind *wind, struct lxg_error *error);
+
 /* A wind for two held quantities, from nothing. LXG_OK: wind->reason is LXG_WIND_SOLVED and the solver keeps the wind.
  * LXG_NO_SOLUTION or LXG_NOT_CONVERGED: wind->reason says why. LXG_INPUT: the two are not independent or out of range. */
 enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
@@ -153,7 +159,7 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
 enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                 struct lxg_wind *wind, struct lxg_error *error);
 
-/* Coordinates in which a family of winds is a smooth curve: ln r_c, ln Mdot, Lambda/L_Edd, ln R_ph. */
+/* Coordinates in which a family of winds is a smooth curve: ln r_c, ln Mdot, arsinh(Lambda/L_Edd), ln R_ph. */
 enum { LXG_WIND_COORDINATES = 4 };
 
 /* Coordinates of the wind the solver keeps. */

@@ -37,7 +37,7 @@ double lxg_family_number(size_t quantity, double value, double l_edd) {
   case LXG_SCALE_SQUARE:
     return value * value / (speed_unit * speed_unit);
   default:
-    return value / l_edd;
+    return asinh(value / l_edd);
   }
 }
 
@@ -48,7 +48,7 @@ static double from_number(size_t quantity, double number, double l_edd) {
   case LXG_SCALE_SQUARE:
     return speed_unit * sqrt(fmax(number, 0.0));
   default:
-    return number * l_edd;
+    return sinh(number) * l_edd;
   }
 }
 

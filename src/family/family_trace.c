@@ -22,8 +22,11 @@ static const double slow_share =
 enum { GROW = 64 };
 
 struct lxg_family_options lxg_family_options_default(void) {
-  const struct lxg_family_options options = {
-      .tolerance = 1e-4, .thin_depth = 5.0, .radius_most = 1e5 * LXG_SOLAR_RADIUS, .count_most = 4000};
+  const struct lxg_family_options options = {.tolerance = 1e-4,
+                                             .thin_depth = 5.0,
+                                             .radius_most = 1e5 * LXG_SOLAR_RADIUS,
+                                             .energy_most = 30.0,
+                                             .count_most = 4000};
   return options;
 }
 
@@ -105,7 +108,10 @@ static enum lxg_wind_reason beyond(const struct tracer *tracer, const struct lxg
   if (wind->critical.optical_depth < tracer->options->thin_depth) {
     return LXG_WIND_BELOW_THIN_END;
   }
-  return wind->photosphere.radius > tracer->options->radius_most ? LXG_WIND_STAGNATES : LXG_WIND_SOLVED;
+  return wind->photosphere.radius > tracer->options->radius_most ||
+                 wind->value[LXG_HELD_ENERGY_RATE] > tracer->options->energy_most * tracer->l_edd
+             ? LXG_WIND_BEYOND_LIMIT
+             : LXG_WIND_SOLVED;
 }
 
 /* One accepted step from the kept wind along `direction`, which is turned to the new chord. Step length is adapted. */
@@ -166,7 +172,7 @@ static enum lxg_status walk(struct tracer *tracer, const struct lxg_wind *start,
   enum lxg_status status = trail_add(trail, start, 0.0);
   double direction[LXG_WIND_COORDINATES] = {0.0, sense, 0.0, 0.0};
   double step = first_step, arc = 0.0;
-  trail->end = LXG_WIND_NOT_FOUND;
+  trail->end = LXG_WIND_BEYOND_LIMIT; /* unless a step fails: the count ran out */
   while (status == LXG_OK && trail->count < tracer->options->count_most) {
     struct lxg_wind wind;
     double taken = 0.0;
@@ -205,8 +211,8 @@ static enum lxg_status join(struct lxg_family *family, const struct trail *thin,
 }
 
 enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
-                                 const struct lxg_wind_hold *start, const struct lxg_family_options *options,
-                                 struct lxg_family *family, struct lxg_error *error) {
+                                 const struct lxg_family_options *options, struct lxg_family *family,
+                                 struct lxg_error *error) {
   const struct lxg_family_options standard = lxg_family_options_default();
   const struct lxg_wind_model *model = lxg_wind_solver_model(solver);
   struct tracer tracer = {.solver = solver,
@@ -216,8 +222,7 @@ enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lx
   struct trail thin = {0}, thick = {0};
   struct lxg_wind first;
   *family = (struct lxg_family){.hold = *hold};
-  const struct lxg_wind_hold pair[2] = {*hold, *start};
-  enum lxg_status status = lxg_wind_solve(solver, pair, &first, error);
+  enum lxg_status status = lxg_wind_first(solver, hold, &first, error);
   if (status != LXG_OK) {
     lxg_error_context(error, "looking for a first member of the family of winds with %s = %.6g (CGS)",
                       lxg_held_name(hold->quantity), hold->value);
@@ -225,7 +230,7 @@ enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lx
   }
   status = walk(&tracer, &first, 1.0, &thick);
   if (status == LXG_OK) {
-    status = lxg_wind_solve(solver, pair, &first, error);
+    status = lxg_wind_first(solver, hold, &first, error);
   }
   if (status == LXG_OK) {
     status = walk(&tracer, &first, -1.0, &thin);

@@ -2,36 +2,39 @@
  *
  * wind_cold.c - the first wind, with no guess from the user.
  *
- * All winds of a model form one sheet over (critical radius, critical temperature). A coarse scan of that plane by the
- * separatrix marches of wind_start.c gives approximate winds; the one whose held quantities come closest to those wanted
- * is made exact by the global solver with (r_c, T_c) held, and continuation does the rest. A held launch radius fixes one
- * coordinate of the plane.
+ * All winds of a model form one sheet over (critical radius, critical temperature). At one critical radius the temperature is
+ * scanned with the separatrix marches of wind_start.c; wherever the held quantity passes its target between two approximate
+ * winds, the place is narrowed by bisection and made exact by the global solver. The scan includes the edges of the range of
+ * temperatures in which winds exist, found by bisection, so a wind close to an edge is not missed.
  */
 #include "wind/wind_internal.h"
 
 #include "luxgale/constants.h"
 
 #include <math.h>
-#include <string.h>
 
-static const double scan_t_low = 3.7, scan_t_high = 7.3; /* log10 of the critical temperatures tried [K] */
-static const double scan_t_step = 0.12;
-static const double scan_near = 0.5;       /* a candidate this close (sum of logarithms) ends the scan */
-enum { SCAN_RADII = 7, GUESS_NODES = 32 }; /* critical radii tried; mesh intervals of a piece at the start */
+static const double scan_t_low = 3.6, scan_t_high = 7.4; /* log10 of the critical temperatures tried [K] */
+static const double scan_t_step = 0.1;
+static const double usual_t = 5.6;           /* log10 of the critical temperature under the iron bump [K] */
+static const double scan_accuracy = 1e-3;    /* of ln Mdot while scanning */
+static const double settle_accuracy = 1e-13; /* before the global solver takes over */
+static const double close_enough = 0.02; /* of the held quantity (logarithm, or L/L_Edd) before settling */
+enum { SCAN_POINTS = 128, EDGE_BISECTIONS = 5, NARROWINGS = 12, GUESS_INTERVALS = 32 };
 
-/* Approximate wind at one point of the plane. */
+/* Approximate wind at one critical temperature. */
 struct candidate {
-  double ln_rc, ln_tc, distance;
+  double ln_tc, ln_mdot;
+  double excess; /* held quantity minus its target */
+  bool valid;
 };
 
 /* Approximate value of a held kind from the marched tracks, in the units of a row's target; NaN if unknown. */
-static double approximate(const struct lxg_wind_solver *solver, int kind, double ln_mdot, double lambda,
-                          bool inner) {
+static double approximate(const struct lxg_wind_solver *solver, int kind, double ln_mdot, double lambda) {
   const struct wind_constants *constants = &solver->problem.constants;
   const struct wind_track *outer = &solver->outer;
   const size_t last = outer->count - 1;
   const double *end = outer->y[last];
-  const size_t deep = inner ? solver->inner.count - 1 : 0;
+  const size_t deep = solver->inner.count - 1;
   switch (kind) {
   case LXG_HELD_LAUNCH_RADIUS:
     return outer->ln_r[0];
@@ -48,44 +51,36 @@ static double approximate(const struct lxg_wind_solver *solver, int kind, double
   case LXG_HELD_TERMINAL_SPEED:
     return end[0];
   case LXG_HELD_BASE_TEMPERATURE:
-    return inner ? solver->inner.y[deep][1] : NAN;
+    return solver->inner.y[deep][1];
   case LXG_HELD_BASE_LUMINOSITY: {
     const struct wind_place at = {constants->ln_r0, solver->inner.y[deep][0], solver->inner.y[deep][1],
                                   ln_mdot, lambda};
     struct wind_local l;
-    return inner && lxg_wind_local(constants, &at, &l) == LXG_OK ? l.lhat : NAN;
+    return lxg_wind_local(constants, &at, &l) == LXG_OK ? l.lhat : NAN;
   }
   case LXG_HELD_ENVELOPE_MASS: { /* trapezoid over the inner track, where the mass is */
     double mass = 0.0;
-    for (size_t i = 1; inner && i <= deep; i++) {
+    for (size_t i = 1; i <= deep; i++) {
       const double dr = fabs(exp(solver->inner.ln_r[i]) - exp(solver->inner.ln_r[i - 1]));
       mass += 0.5 * dr * (exp(ln_mdot - solver->inner.y[i][0]) + exp(ln_mdot - solver->inner.y[i - 1][0]));
     }
     return mass > 0.0 ? log(mass) : NAN;
   }
+  case WIND_ROW_CRITICAL_TEMPERATURE:
+    return outer->y[0][1];
   default:
     return NAN;
   }
 }
 
-static double distance_to(const struct lxg_wind_solver *solver, const struct wind_row row[2], double ln_mdot,
-                          double lambda, bool inner) {
-  double sum = 0.0;
-  for (size_t i = 0; i < 2; i++) {
-    const double difference = fabs(approximate(solver, row[i].kind, ln_mdot, lambda, inner) - row[i].target);
-    sum += isfinite(difference) ? difference : INFINITY;
-  }
-  return sum;
-}
-
 /* Marches at (r_c, T_c); false if there is no approximate wind with an inside down to the star. */
-static bool march(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double *ln_mdot,
-                  double *lambda) {
+static bool march(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double accuracy,
+                  double *ln_mdot, double *lambda) {
   const struct wind_constants *constants = &solver->problem.constants;
-  return lxg_wind_start_outer(constants, solver->ivp, ln_rc, ln_tc, &solver->outer, &solver->scratch, ln_mdot,
-                              lambda) == LXG_OK &&
+  return lxg_wind_start_outer(constants, solver->ivp, ln_rc, ln_tc, accuracy, &solver->outer,
+                              &solver->scratch, ln_mdot, lambda) == LXG_OK &&
          lxg_wind_start_inner(constants, solver->ivp, ln_rc, ln_tc, *ln_mdot, &solver->inner) == LXG_OK &&
-         solver->inner.count >= 2 && solver->outer.count >= 2;
+         solver->inner.count >= 2;
 }
 
 struct guess_map {
@@ -104,19 +99,19 @@ static void guess(const void *context, double x, double y[], double k[]) {
   k[1] *= length;
 }
 
-/* Exact wind at (r_c, T_c). */
-static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, double ln_tc) {
-  double ln_mdot, lambda;
-  if (!march(solver, ln_rc, ln_tc, &ln_mdot, &lambda)) {
+/* Exact wind at (r_c, T_c), kept. */
+static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double ln_mdot) {
+  double lambda;
+  if (!march(solver, ln_rc, ln_tc, settle_accuracy, &ln_mdot, &lambda)) {
     return LXG_NO_SOLUTION;
   }
   const struct guess_map map = {solver, ln_rc, solver->outer.ln_r[solver->outer.count - 1]};
-  double nodes[2 * GUESS_NODES + 1];
-  for (size_t i = 0; i <= 2 * GUESS_NODES; i++) {
-    nodes[i] = (double)i / GUESS_NODES;
+  double nodes[2 * GUESS_INTERVALS + 1];
+  for (size_t i = 0; i <= 2 * GUESS_INTERVALS; i++) {
+    nodes[i] = (double)i / GUESS_INTERVALS;
   }
   const double p[WIND_P_COUNT] = {ln_rc, ln_mdot, lambda, map.ln_rph, 0.0};
-  enum lxg_status status = lxg_bvp_guess(solver->now, nodes, 2 * GUESS_NODES, 2, guess, &map, p);
+  const enum lxg_status status = lxg_bvp_guess(solver->now, nodes, 2 * GUESS_INTERVALS, 2, guess, &map, p);
   if (status != LXG_OK) {
     return status;
   }
@@ -125,60 +120,125 @@ static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, doub
   return lxg_wind_newton(solver, row, 1e-4, true);
 }
 
-/* Scans the critical temperature at one radius; keeps the closest candidates, nearest first. */
-static bool scan(struct lxg_wind_solver *solver, const struct wind_row row[2], double ln_rc,
-                 struct candidate best[], size_t capacity, size_t *count) {
-  for (double t = scan_t_low; t <= scan_t_high; t += scan_t_step) {
-    double ln_mdot, lambda;
-    struct candidate found = {.ln_rc = ln_rc, .ln_tc = t * LXG_LN10};
-    if (!march(solver, found.ln_rc, found.ln_tc, &ln_mdot, &lambda)) {
-      continue;
-    }
-    found.distance = distance_to(solver, row, ln_mdot, lambda, true);
-    if (!isfinite(found.distance)) {
-      continue;
-    }
-    size_t at = *count < capacity ? (*count)++ : capacity;
-    while (at > 0 && best[at - 1].distance > found.distance) {
-      if (at < capacity) {
-        best[at] = best[at - 1];
-      }
-      at--;
-    }
-    if (at < capacity) {
-      best[at] = found;
-    }
+/* Approximate wind at a critical temperature; `ln_mdot` hints at its rate. */
+static struct candidate probe(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double ln_mdot,
+                              const struct wind_row *row) {
+  struct candidate found = {.ln_tc = ln_tc, .ln_mdot = ln_mdot, .excess = NAN};
+  double lambda;
+  if (march(solver, ln_rc, ln_tc, scan_accuracy, &found.ln_mdot, &lambda)) {
+    found.excess = approximate(solver, row->kind, found.ln_mdot, lambda) - row->target;
   }
-  return *count > 0 && best[0].distance < scan_near;
+  found.valid = isfinite(found.excess);
+  return found;
 }
 
-enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, const struct wind_row row[2]) {
-  enum { CANDIDATES = 6 };
-  struct candidate best[CANDIDATES];
-  size_t count = 0;
-  double ln_rc = NAN;
-  for (size_t i = 0; i < 2; i++) {
-    if (row[i].kind == LXG_HELD_LAUNCH_RADIUS) {
-      ln_rc = row[i].target;
+/* Last valid place between a valid and an invalid temperature. */
+static struct candidate edge(struct lxg_wind_solver *solver, double ln_rc, struct candidate valid,
+                             double ln_tc_invalid, const struct wind_row *row) {
+  double outside = ln_tc_invalid;
+  for (int i = 0; i < EDGE_BISECTIONS; i++) {
+    const struct candidate middle = probe(solver, ln_rc, 0.5 * (valid.ln_tc + outside), valid.ln_mdot, row);
+    if (middle.valid) {
+      valid = middle;
+    } else {
+      outside = middle.ln_tc;
     }
   }
-  if (isfinite(ln_rc)) {
-    scan(solver, row, ln_rc, best, CANDIDATES, &count);
-  } else {
-    static const double decades[SCAN_RADII] = {1.4, 1.0, 1.8, 0.6, 2.4, 3.2, 0.3}; /* log10 of r_c/R_0 */
-    for (size_t i = 0; i < SCAN_RADII; i++) {
-      if (scan(solver, row, solver->problem.constants.ln_r0 + decades[i] * LXG_LN10, best, CANDIDATES,
-               &count)) {
-        break;
+  return valid;
+}
+
+/* Scans the critical temperature; candidates in ascending order, invalid ones mark holes. */
+static size_t scan(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row,
+                   struct candidate candidate[SCAN_POINTS]) {
+  size_t count = 0;
+  struct candidate before = {.valid = false};
+  for (double t = scan_t_low; t <= scan_t_high && count + 2 < SCAN_POINTS; t += scan_t_step) {
+    const struct candidate now = probe(solver, ln_rc, t * LXG_LN10, before.valid ? before.ln_mdot : NAN, row);
+    if (now.valid && !before.valid && count > 0) {
+      candidate[count++] = edge(solver, ln_rc, now, before.ln_tc, row);
+    } else if (!now.valid && before.valid) {
+      candidate[count++] = edge(solver, ln_rc, before, now.ln_tc, row);
+    }
+    candidate[count++] = now;
+    before = now;
+  }
+  return count;
+}
+
+/* Narrows a sign change of the excess, then solves; the held row is reached by continuation. */
+static enum lxg_status solve_between(struct lxg_wind_solver *solver, double ln_rc, struct candidate a,
+                                     struct candidate b, const struct wind_row *row) {
+  struct candidate best = fabs(a.excess) < fabs(b.excess) ? a : b;
+  for (int i = 0; i < NARROWINGS && fabs(best.excess) > close_enough; i++) {
+    const struct candidate middle = probe(solver, ln_rc, 0.5 * (a.ln_tc + b.ln_tc), best.ln_mdot, row);
+    if (!middle.valid) {
+      break;
+    }
+    if ((middle.excess > 0.0) == (a.excess > 0.0)) {
+      a = middle;
+    } else {
+      b = middle;
+    }
+    best = fabs(a.excess) < fabs(b.excess) ? a : b;
+  }
+  enum lxg_status status = settle(solver, ln_rc, best.ln_tc, best.ln_mdot);
+  if (status == LXG_OK) {
+    const struct wind_row pair[2] = {{.kind = LXG_HELD_LAUNCH_RADIUS, .target = ln_rc}, *row};
+    status = lxg_wind_walk(solver, pair);
+  }
+  return status;
+}
+
+static bool brackets(const struct candidate *a, const struct candidate *b) {
+  return a->valid && b->valid && (a->excess <= 0.0) != (b->excess <= 0.0);
+}
+
+enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc) {
+  const struct wind_row row = {.kind = WIND_ROW_CRITICAL_TEMPERATURE, .target = usual_t * LXG_LN10};
+  struct candidate candidate[SCAN_POINTS];
+  const size_t count = scan(solver, ln_rc, &row, candidate);
+  enum lxg_status status = LXG_NO_SOLUTION;
+  for (size_t tries = 0; tries < count && status != LXG_OK; tries++) {
+    size_t best = SCAN_POINTS;
+    for (size_t i = 0; i < count; i++) {
+      if (candidate[i].valid &&
+          (best == SCAN_POINTS || fabs(candidate[i].excess) < fabs(candidate[best].excess))) {
+        best = i;
       }
     }
-  }
-  enum lxg_status status = LXG_NO_SOLUTION;
-  for (size_t i = 0; i < count; i++) {
-    status = settle(solver, best[i].ln_rc, best[i].ln_tc);
-    if (status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY) {
+    if (best == SCAN_POINTS) {
+      break;
+    }
+    candidate[best].valid = false;
+    status = settle(solver, ln_rc, candidate[best].ln_tc, candidate[best].ln_mdot);
+    if (status == LXG_BUG || status == LXG_MEMORY) {
       break;
     }
   }
   return status;
+}
+
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row,
+                              bool thick) {
+  struct candidate candidate[SCAN_POINTS];
+  const size_t count = scan(solver, ln_rc, row, candidate);
+  bool tried[SCAN_POINTS] = {false};
+  enum lxg_status status = LXG_NO_SOLUTION;
+  for (;;) { /* brackets in the order of their rates */
+    size_t best = SCAN_POINTS;
+    for (size_t i = 0; i + 1 < count; i++) {
+      if (!tried[i] && brackets(&candidate[i], &candidate[i + 1]) &&
+          (best == SCAN_POINTS || (candidate[i].ln_mdot < candidate[best].ln_mdot) != thick)) {
+        best = i;
+      }
+    }
+    if (best == SCAN_POINTS) {
+      return status;
+    }
+    tried[best] = true;
+    status = solve_between(solver, ln_rc, candidate[best], candidate[best + 1], row);
+    if (status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY) {
+      return status;
+    }
+  }
 }

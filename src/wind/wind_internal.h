@@ -107,10 +107,10 @@ struct wind_track {
 /* Cubic Hermite interpolation in a track; beyond its last point the last slopes (bounded) go on. */
 void lxg_wind_track_at(const struct wind_track *track, double ln_r, double y[2], double dydr[2]);
 
-/* Approximate outer structure for a critical radius and temperature (wind_start.c); LXG_NO_SOLUTION when no rate separates
- * the two kinds of march. */
+/* Approximate outer structure for a critical radius and temperature (wind_start.c), the rate to `accuracy` in its logarithm;
+ * *ln_mdot is a hint on entry (NaN: none). LXG_NO_SOLUTION when no rate separates the two kinds of march. */
 enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, struct lxg_ivp *ivp,
-                                     double ln_rc, double ln_tc, struct wind_track *track,
+                                     double ln_rc, double ln_tc, double accuracy, struct wind_track *track,
                                      struct wind_track *scratch, double *ln_mdot, double *lambda);
 
 /* Inner structure for the same point and rate. */
@@ -145,8 +145,13 @@ enum lxg_status lxg_wind_walk(struct lxg_wind_solver *solver, const struct wind_
 /* Row of a held quantity. */
 struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold);
 
-/* A first wind for two held rows (wind_cold.c); it is kept. */
-enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, const struct wind_row row[2]);
+/* A first wind at launch radius exp(ln_rc) with one held row, by the scan of wind_cold.c; it is kept. `thick` prefers the
+ * largest mass-loss rate when there are several, else the smallest is preferred. LXG_NO_SOLUTION if the scan sees none. */
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row,
+                              bool thick);
+
+/* Any wind at that launch radius, the one whose critical temperature is nearest to the iron bump first; it is kept. */
+enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc);
 
 /* Every number of the kept wind (wind_result.c). */
 enum lxg_status lxg_wind_result(const struct lxg_wind_solver *solver, struct lxg_wind *wind);

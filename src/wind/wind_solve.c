@@ -143,25 +143,33 @@ struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const stru
   return row;
 }
 
+static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                                  struct lxg_error *error) {
+  const char *name = lxg_held_name(hold->quantity);
+  if (name == NULL) {
+    return lxg_error_set(error, LXG_INPUT, "hold-unknown", "held quantity %d does not exist",
+                         (int)hold->quantity);
+  }
+  const bool any_sign = hold->quantity == LXG_HELD_ENERGY_RATE || hold->quantity == LXG_HELD_BASE_LUMINOSITY;
+  if (!isfinite(hold->value) || (!any_sign && !(hold->value > 0.0))) {
+    return lxg_error_set(error, LXG_INPUT, "hold-value", "%s = %.10g: a held value is a positive number",
+                         name, hold->value);
+  }
+  const double radius = solver->problem.constants.model.star.radius;
+  if (hold->quantity == LXG_HELD_LAUNCH_RADIUS && !(hold->value > radius)) {
+    return lxg_error_set(error, LXG_INPUT, "hold-launch-radius",
+                         "launch_radius = %.10g cm: it lies outside the star's radius, %.10g cm", hold->value,
+                         radius);
+  }
+  return LXG_OK;
+}
+
 static enum lxg_status holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                    struct lxg_error *error) {
   for (size_t i = 0; i < 2; i++) {
-    const char *name = lxg_held_name(hold[i].quantity);
-    if (name == NULL) {
-      return lxg_error_set(error, LXG_INPUT, "hold-unknown", "held quantity %d does not exist",
-                           (int)hold[i].quantity);
-    }
-    const bool any_sign =
-        hold[i].quantity == LXG_HELD_ENERGY_RATE || hold[i].quantity == LXG_HELD_BASE_LUMINOSITY;
-    if (!isfinite(hold[i].value) || (!any_sign && !(hold[i].value > 0.0))) {
-      return lxg_error_set(error, LXG_INPUT, "hold-value", "%s = %.10g: a held value is a positive number",
-                           name, hold[i].value);
-    }
-    if (hold[i].quantity == LXG_HELD_LAUNCH_RADIUS &&
-        !(hold[i].value > solver->problem.constants.model.star.radius)) {
-      return lxg_error_set(error, LXG_INPUT, "hold-launch-radius",
-                           "launch_radius = %.10g cm: it lies outside the star's radius, %.10g cm",
-                           hold[i].value, solver->problem.constants.model.star.radius);
+    const enum lxg_status status = hold_check(solver, &hold[i], error);
+    if (status != LXG_OK) {
+      return status;
     }
   }
   if (hold[0].quantity == hold[1].quantity) {
@@ -190,6 +198,34 @@ static enum lxg_status finish(struct lxg_wind_solver *solver, enum lxg_status st
                        lxg_wind_reason_text(wind->reason));
 }
 
+/* Critical radii tried when none is held: log10 of r_c/R_0, the usual ones first. */
+static const double first_radii[] = {1.4, 1.0, 1.8, 0.6, 2.4, 3.2, 0.3, 4.0};
+
+/* Any wind with one held row, kept. */
+static enum lxg_status first_wind(struct lxg_wind_solver *solver, const struct wind_row *row) {
+  enum lxg_status status = LXG_NO_SOLUTION;
+  if (row->kind == LXG_HELD_LAUNCH_RADIUS) {
+    return lxg_wind_cold_any(solver, row->target);
+  }
+  for (size_t i = 0; i < sizeof first_radii / sizeof first_radii[0] && status == LXG_NO_SOLUTION; i++) {
+    status = lxg_wind_cold(solver, solver->problem.constants.ln_r0 + first_radii[i] * LXG_LN10, row, false);
+  }
+  return status;
+}
+
+enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                               struct lxg_wind *wind, struct lxg_error *error) {
+  lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
+  enum lxg_status status = hold_check(solver, hold, error);
+  if (status != LXG_OK) {
+    return status;
+  }
+  solver->have = false;
+  solver->newton_steps = 0;
+  const struct wind_row row = lxg_wind_row_of(solver, hold);
+  return finish(solver, first_wind(solver, &row), wind, error);
+}
+
 enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                struct lxg_wind *wind, struct lxg_error *error) {
   lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
@@ -200,9 +236,17 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
   solver->have = false;
   solver->newton_steps = 0;
   const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
-  status = lxg_wind_cold(solver, row);
-  if (status == LXG_OK) {
-    status = lxg_wind_walk(solver, row);
+  const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS   ? 0
+                        : row[1].kind == LXG_HELD_LAUNCH_RADIUS ? 1
+                                                                : 2;
+  if (radius < 2) {
+    status = lxg_wind_cold(solver, row[radius].target, &row[1 - radius], false);
+  } else {
+    const bool second = row[1].kind == LXG_HELD_BASE_TEMPERATURE; /* the best starting key */
+    status = first_wind(solver, &row[second ? 1 : 0]);
+    if (status == LXG_OK) {
+      status = lxg_wind_walk(solver, row);
+    }
   }
   return finish(solver, status, wind, error);
 }
@@ -226,7 +270,7 @@ enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg
 void lxg_wind_coordinates(const struct lxg_wind_solver *solver, double coordinates[LXG_WIND_COORDINATES]) {
   const double *p = lxg_bvp_parameters_const(solver->kept);
   for (size_t i = 0; i < LXG_WIND_COORDINATES; i++) {
-    coordinates[i] = p[i];
+    coordinates[i] = i == WIND_P_LAMBDA ? asinh(p[i]) : p[i];
   }
 }
 
@@ -239,10 +283,11 @@ enum lxg_status lxg_wind_arc(struct lxg_wind_solver *solver, const struct lxg_wi
                          "there is no wind yet to follow from");
   }
   struct wind_row row[2] = {lxg_wind_row_of(solver, hold), {.kind = WIND_ROW_ARC, .target = length}};
-  for (size_t i = 0; i < LXG_WIND_COORDINATES; i++) {
-    row[1].direction[i] = direction[i];
+  const double *p = lxg_bvp_parameters_const(solver->kept);
+  for (size_t i = 0; i < LXG_WIND_COORDINATES; i++) { /* d arsinh(lambda) = d lambda/(1 + lambda^2)^(1/2) */
+    row[1].direction[i] = direction[i] / (i == WIND_P_LAMBDA ? hypot(1.0, p[i]) : 1.0);
+    row[1].origin[i] = p[i];
   }
-  lxg_wind_coordinates(solver, row[1].origin);
   solver->newton_steps = 0;
   return finish(solver, lxg_wind_newton(solver, row, solver->options.residual_tolerance, false), wind, error);
 }

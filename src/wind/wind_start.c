@@ -187,25 +187,37 @@ static void keep_common(struct wind_track *track, const struct wind_track *other
   }
 }
 
+/* Brackets the separatrix: walks up from below in the logarithm of the rate until the temperature plunges. */
+static bool bracket(struct march *march, struct lxg_ivp *ivp, double ln_rc, double ln_tc, double from,
+                    double step, double unit, double *low, double *high) {
+  march->ln_mdot = from;
+  double sense = march_from(march, ivp, ln_rc, ln_tc, 1) == MARCH_PLUNGED ? -1.0 : 1.0;
+  for (double x = from + sense * step; x > unit + start_rate_low && x < unit + start_rate_high;
+       x += sense * step) {
+    march->ln_mdot = x;
+    const bool plunged = march_from(march, ivp, ln_rc, ln_tc, 1) == MARCH_PLUNGED;
+    if (plunged == (sense > 0.0)) {
+      *low = plunged ? x - step : x;
+      *high = plunged ? x : x + step;
+      return true;
+    }
+  }
+  return false;
+}
+
 enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, struct lxg_ivp *ivp,
-                                     double ln_rc, double ln_tc, struct wind_track *track,
+                                     double ln_rc, double ln_tc, double accuracy, struct wind_track *track,
                                      struct wind_track *scratch, double *ln_mdot, double *lambda) {
   struct march march = {.constants = constants, .ln_end = ln_rc + start_reach};
   const double unit = log(constants->l_edd / constants->gm) + ln_rc;
-  double low = NAN, high = NAN;
-  for (double x = start_rate_low; x < start_rate_high; x += start_rate_step) {
-    march.ln_mdot = unit + x;
-    const enum march_end end = march_from(&march, ivp, ln_rc, ln_tc, 1);
-    if (end == MARCH_PLUNGED) {
-      high = march.ln_mdot;
-      break;
-    }
-    low = march.ln_mdot;
-  }
-  if (isnan(low) || isnan(high)) {
+  double low, high;
+  const bool hinted = isfinite(*ln_mdot);
+  if (!(hinted && bracket(&march, ivp, ln_rc, ln_tc, *ln_mdot, 0.5, unit, &low, &high)) &&
+      !bracket(&march, ivp, ln_rc, ln_tc, unit + start_rate_low + start_rate_step, start_rate_step, unit,
+               &low, &high)) {
     return LXG_NO_SOLUTION;
   }
-  for (int i = 0; i < START_BISECTIONS; i++) {
+  for (int i = 0; i < START_BISECTIONS && high - low > accuracy; i++) {
     march.ln_mdot = 0.5 * (low + high);
     if (march_from(&march, ivp, ln_rc, ln_tc, 1) == MARCH_PLUNGED) {
       high = march.ln_mdot;
@@ -222,7 +234,7 @@ enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, str
   keep_common(track, scratch);
   *ln_mdot = march.ln_mdot;
   *lambda = march.lambda;
-  return LXG_OK;
+  return track->count >= 2 ? LXG_OK : LXG_NO_SOLUTION;
 }
 
 enum lxg_status lxg_wind_start_inner(const struct wind_constants *constants, struct lxg_ivp *ivp,
