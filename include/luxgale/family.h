@@ -17,6 +17,12 @@
 
 #include <stddef.h>
 
+/* Which of several members with the same value is meant. */
+enum lxg_branch {
+  LXG_BRANCH_THIN, /* the smallest mass-loss rate */
+  LXG_BRANCH_THICK /* the largest */
+};
+
 /* How a number is interpolated. */
 enum lxg_family_scale {
   LXG_SCALE_SIGNED, /* arsinh(L/L_Edd): of either sign */
@@ -102,12 +108,6 @@ void lxg_family_index_destroy(struct lxg_family_index *index);
 size_t lxg_family_index_find(const struct lxg_family_index *index, double value, double arc[],
                              size_t capacity);
 
-/* Which of several members with the same value is meant. */
-enum lxg_branch {
-  LXG_BRANCH_THIN, /* the smallest mass-loss rate */
-  LXG_BRANCH_THICK /* the largest */
-};
-
 /* The member of the wanted branch; returns how many members have the value (0: `place` is untouched). */
 size_t lxg_family_index_branch(const struct lxg_family_index *index, double value, enum lxg_branch branch,
                                struct lxg_family_place *place);
@@ -119,6 +119,13 @@ enum lxg_wind_reason lxg_family_missing(const struct lxg_family *family, enum lx
 
 /* Numbers at an arc length (clipped to the family). */
 void lxg_family_at(const struct lxg_family *family, double arc, struct lxg_family_place *place);
+
+/* Every wind with two held quantities that one family connects: winds[0] is the one of the wanted branch, which the solver
+ * keeps; the others follow in no order (at most `capacity` in all; *count may be larger). LXG_NO_SOLUTION: none, and
+ * winds[0].reason says why. LXG_INPUT: the two are not independent or out of range. */
+enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                   enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
+                                   size_t *count, struct lxg_error *error);
 
 /* Key of a quantity, e.g. "mass_loss_rate"; NULL beyond the list. */
 const char *lxg_family_key(enum lxg_family_quantity quantity);

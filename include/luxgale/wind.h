@@ -146,6 +146,10 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
 void lxg_wind_solver_destroy(struct lxg_wind_solver *solver);
 const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver *solver);
 
+/* LXG_INPUT when two held quantities are out of range or are the same one ("hold-value", "hold-dependent", ...). */
+enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                     struct lxg_error *error);
+
 /* Any wind with one held quantity, from nothing: where a family may start. Returns as lxg_wind_solve. */
 enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                struct lxg_wind *wind, struct lxg_error *error);
@@ -172,9 +176,10 @@ enum lxg_status lxg_wind_arc(struct lxg_wind_solver *solver, const struct lxg_wi
                              const double direction[LXG_WIND_COORDINATES], double length,
                              struct lxg_wind *wind, struct lxg_error *error);
 
-/* Sets the kept wind aside, and takes it back. */
-enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver);
-enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver);
+/* Sets the kept wind aside in one of the slots, and takes it back. */
+enum { LXG_WIND_SLOTS = 3 };
+enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver, size_t slot);
+enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver, size_t slot);
 
 /* One row of a wind's structure. */
 struct lxg_wind_row {

@@ -11,6 +11,7 @@
 #include "luxgale/memory.h"
 
 #include <math.h>
+#include <stdbool.h>
 #include <string.h>
 
 static const double first_step = 0.02; /* in the coordinates' norm */
@@ -44,6 +45,8 @@ struct tracer {
   const struct lxg_family_options *options;
   double l_edd;
   int newton_steps;
+  bool entered;               /* the walk has been inside the limits */
+  struct family_catch *found; /* winds with a second held value, or NULL */
 };
 
 static enum lxg_status trail_add(struct trail *trail, const struct lxg_wind *wind, double arc) {
@@ -120,7 +123,7 @@ static enum lxg_status accepted(struct tracer *tracer, const struct trail *trail
                                 enum lxg_wind_reason *end) {
   double from[LXG_WIND_COORDINATES], to[LXG_WIND_COORDINATES];
   lxg_wind_coordinates(tracer->solver, from);
-  if (lxg_wind_mark(tracer->solver) != LXG_OK) {
+  if (lxg_wind_mark(tracer->solver, SLOT_STEP) != LXG_OK) {
     return LXG_BUG;
   }
   *end = LXG_WIND_NOT_FOUND;
@@ -131,7 +134,9 @@ static enum lxg_status accepted(struct tracer *tracer, const struct trail *trail
     }
     const enum lxg_status status = lxg_wind_arc(tracer->solver, tracer->hold, direction, *step, wind, NULL);
     tracer->newton_steps += wind->newton_steps;
-    const enum lxg_wind_reason reason = status == LXG_OK ? beyond(tracer, wind) : wind->reason;
+    const enum lxg_wind_reason reason = status != LXG_OK  ? wind->reason
+                                        : tracer->entered ? beyond(tracer, wind)
+                                                          : LXG_WIND_SOLVED;
     if (status == LXG_BUG || status == LXG_MEMORY) {
       return status;
     }
@@ -156,7 +161,7 @@ static enum lxg_status accepted(struct tracer *tracer, const struct trail *trail
     } else {
       *end = reason;
     }
-    if (lxg_wind_recall(tracer->solver) != LXG_OK) {
+    if (lxg_wind_recall(tracer->solver, SLOT_STEP) != LXG_OK) {
       return LXG_BUG;
     }
     *step *= step_shrink;
@@ -166,29 +171,82 @@ static enum lxg_status accepted(struct tracer *tracer, const struct trail *trail
   return LXG_OK;
 }
 
-/* Walks from the kept wind in one sense of the mass-loss rate until the family ends. */
+/* A wind with the second held value between two neighbours is solved for itself and stored; the walk then goes on. */
+static enum lxg_status catch_member(struct tracer *tracer, const struct lxg_wind *before,
+                                    const struct lxg_wind *after) {
+  struct family_catch *found = tracer->found;
+  if (found == NULL) {
+    return LXG_OK;
+  }
+  const double target = found->target->value;
+  const double low = before->value[found->target->quantity] - target;
+  const double high = after->value[found->target->quantity] - target;
+  if ((low <= 0.0) == (high <= 0.0)) {
+    return LXG_OK;
+  }
+  const struct lxg_wind_hold pair[2] = {*tracer->hold, *found->target};
+  struct lxg_wind wind;
+  enum lxg_status status = lxg_wind_mark(tracer->solver, SLOT_STEP);
+  if (status == LXG_OK && lxg_wind_follow(tracer->solver, pair, &wind, NULL) == LXG_OK) {
+    tracer->newton_steps += wind.newton_steps;
+    if (found->count < found->capacity) {
+      found->wind[found->count] = wind;
+    }
+    const bool best =
+        found->count == 0 || (wind.value[LXG_HELD_MASS_LOSS_RATE] > found->best_rate) == found->thick;
+    found->count++;
+    if (best) {
+      found->best_rate = wind.value[LXG_HELD_MASS_LOSS_RATE];
+      status = lxg_wind_mark(tracer->solver, SLOT_BEST);
+    }
+  }
+  return status == LXG_OK ? lxg_wind_recall(tracer->solver, SLOT_STEP) : status;
+}
+
+/* Walks from the wind in SLOT_START in one sense of the mass-loss rate (of the launch radius when the rate is held) until the
+ * family ends. A start outside the limits is left behind on the way into them. */
 static enum lxg_status walk(struct tracer *tracer, const struct lxg_wind *start, double sense,
                             struct trail *trail) {
-  enum lxg_status status = trail_add(trail, start, 0.0);
-  double direction[LXG_WIND_COORDINATES] = {0.0, sense, 0.0, 0.0};
+  enum lxg_status status = lxg_wind_recall(tracer->solver, SLOT_START);
+  if (status == LXG_OK) {
+    status = trail_add(trail, start, 0.0);
+  }
+  tracer->entered = beyond(tracer, start) == LXG_WIND_SOLVED;
+  double direction[LXG_WIND_COORDINATES] = {0.0};
+  direction[tracer->hold->quantity == LXG_HELD_MASS_LOSS_RATE ? 0 : 1] = sense;
   double step = first_step, arc = 0.0;
   trail->end = LXG_WIND_BEYOND_LIMIT; /* unless a step fails: the count ran out */
   while (status == LXG_OK && trail->count < tracer->options->count_most) {
     struct lxg_wind wind;
     double taken = 0.0;
     status = accepted(tracer, trail, direction, &step, &wind, &taken, &trail->end);
-    if (status == LXG_OK) {
-      arc += taken;
-      status = trail_add(trail, &wind, arc);
+    if (status != LXG_OK) {
+      break;
     }
+    const struct lxg_wind before = trail->wind[trail->count - 1];
+    if (!tracer->entered && beyond(tracer, &wind) == LXG_WIND_SOLVED) {
+      tracer->entered = true;
+      trail->count = 0;
+      arc = -taken;
+    }
+    arc += taken;
+    status = trail_add(trail, &wind, arc);
+    if (status == LXG_OK) {
+      status = catch_member(tracer, &before, &wind);
+    }
+  }
+  if (!tracer->entered) {
+    trail->count = 0;
+    trail->end = beyond(tracer, start);
   }
   return status == LXG_NO_SOLUTION ? LXG_OK : status;
 }
 
-/* Joins the two trails, thin to thick, and fills the interpolation table. */
+/* Joins the two trails, thin to thick, and fills the interpolation table. Both start at the same wind unless one is empty. */
 static enum lxg_status join(struct lxg_family *family, const struct trail *thin, const struct trail *thick,
                             double l_edd) {
-  const size_t count = thin->count + thick->count - 1;
+  const size_t shared = thin->count > 0 && thick->count > 0 ? 1 : 0;
+  const size_t count = thin->count + thick->count - shared;
   family->wind = lxg_alloc(count, sizeof *family->wind);
   family->arc = lxg_alloc(count, sizeof *family->arc);
   family->table = lxg_alloc(count * LXG_FAMILY_COUNT, sizeof *family->table);
@@ -197,10 +255,10 @@ static enum lxg_status join(struct lxg_family *family, const struct trail *thin,
   }
   family->count = count;
   family->l_edd = l_edd;
-  const double whole = thin->arc[thin->count - 1];
+  const double whole = thin->count > 0 ? thin->arc[thin->count - 1] : 0.0;
   for (size_t i = 0; i < count; i++) {
     const bool first = i < thin->count;
-    const size_t from = first ? thin->count - 1 - i : i - thin->count + 1;
+    const size_t from = first ? thin->count - 1 - i : i - thin->count + shared;
     family->wind[i] = first ? thin->wind[from] : thick->wind[from];
     family->arc[i] = first ? whole - thin->arc[from] : whole + thick->arc[from];
     lxg_family_numbers(&family->wind[i], l_edd, family->table + i * LXG_FAMILY_COUNT);
@@ -210,15 +268,17 @@ static enum lxg_status join(struct lxg_family *family, const struct trail *thin,
   return LXG_OK;
 }
 
-enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
-                                 const struct lxg_family_options *options, struct lxg_family *family,
-                                 struct lxg_error *error) {
+enum lxg_status lxg_family_trace_catching(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                                          const struct lxg_family_options *options,
+                                          struct family_catch *found, struct lxg_family *family,
+                                          struct lxg_error *error) {
   const struct lxg_family_options standard = lxg_family_options_default();
   const struct lxg_wind_model *model = lxg_wind_solver_model(solver);
   struct tracer tracer = {.solver = solver,
                           .hold = hold,
                           .options = options != NULL ? options : &standard,
-                          .l_edd = lxg_star_eddington_luminosity(&model->star, &model->composition)};
+                          .l_edd = lxg_star_eddington_luminosity(&model->star, &model->composition),
+                          .found = found};
   struct trail thin = {0}, thick = {0};
   struct lxg_wind first;
   *family = (struct lxg_family){.hold = *hold};
@@ -228,15 +288,15 @@ enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lx
                       lxg_held_name(hold->quantity), hold->value);
     return status;
   }
-  status = walk(&tracer, &first, 1.0, &thick);
+  status = lxg_wind_mark(solver, SLOT_START);
   if (status == LXG_OK) {
-    status = lxg_wind_first(solver, hold, &first, error);
+    status = walk(&tracer, &first, 1.0, &thick);
   }
   if (status == LXG_OK) {
     status = walk(&tracer, &first, -1.0, &thin);
   }
   if (status == LXG_OK) {
-    status = join(family, &thin, &thick, tracer.l_edd);
+    status = thin.count + thick.count == 0 ? LXG_NO_SOLUTION : join(family, &thin, &thick, tracer.l_edd);
   }
   family->newton_steps = tracer.newton_steps;
   trail_free(&thin);
@@ -246,4 +306,10 @@ enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lx
     return lxg_error_set(error, status, "family", "tracing the family of winds: %s", lxg_strerror(status));
   }
   return LXG_OK;
+}
+
+enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
+                                 const struct lxg_family_options *options, struct lxg_family *family,
+                                 struct lxg_error *error) {
+  return lxg_family_trace_catching(solver, hold, options, NULL, family, error);
 }

@@ -121,9 +121,9 @@ enum lxg_status lxg_wind_start_inner(const struct wind_constants *constants, str
 struct lxg_wind_solver {
   struct wind_problem problem;
   struct lxg_wind_options options;
-  struct lxg_bvp *now;    /* being worked on */
-  struct lxg_bvp *kept;   /* last wind solved */
-  struct lxg_bvp *marked; /* set aside by lxg_wind_mark */
+  struct lxg_bvp *now;                  /* being worked on */
+  struct lxg_bvp *kept;                 /* last wind solved */
+  struct lxg_bvp *slot[LXG_WIND_SLOTS]; /* set aside by lxg_wind_mark */
   struct lxg_ivp *ivp;
   struct wind_track outer, inner, scratch;
   bool have;        /* `kept` holds a wind */

@@ -36,9 +36,13 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
   made->problem.coast = lxg_wind_coast_create(&made->problem.constants);
   made->now = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
   made->kept = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
-  made->marked = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  bool complete = true;
+  for (size_t i = 0; i < LXG_WIND_SLOTS; i++) {
+    made->slot[i] = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+    complete = complete && made->slot[i] != NULL;
+  }
   made->ivp = lxg_ivp_create(2, LXG_IVP_ORDER_5, 1e-5);
-  if (made->problem.coast == NULL || made->now == NULL || made->kept == NULL || made->marked == NULL ||
+  if (made->problem.coast == NULL || made->now == NULL || made->kept == NULL || !complete ||
       made->ivp == NULL) {
     lxg_wind_solver_destroy(made);
     return lxg_error_set(error, LXG_MEMORY, "memory", "wind solver: out of memory");
@@ -52,7 +56,9 @@ void lxg_wind_solver_destroy(struct lxg_wind_solver *solver) {
     lxg_wind_coast_destroy(solver->problem.coast);
     lxg_bvp_destroy(solver->now);
     lxg_bvp_destroy(solver->kept);
-    lxg_bvp_destroy(solver->marked);
+    for (size_t i = 0; i < LXG_WIND_SLOTS; i++) {
+      lxg_bvp_destroy(solver->slot[i]);
+    }
     lxg_ivp_destroy(solver->ivp);
     lxg_free(solver);
   }
@@ -164,8 +170,8 @@ static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const st
   return LXG_OK;
 }
 
-static enum lxg_status holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
-                                   struct lxg_error *error) {
+enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                     struct lxg_error *error) {
   for (size_t i = 0; i < 2; i++) {
     const enum lxg_status status = hold_check(solver, &hold[i], error);
     if (status != LXG_OK) {
@@ -201,14 +207,36 @@ static enum lxg_status finish(struct lxg_wind_solver *solver, enum lxg_status st
 /* Critical radii tried when none is held: log10 of r_c/R_0, the usual ones first. */
 static const double first_radii[] = {1.4, 1.0, 1.8, 0.6, 2.4, 3.2, 0.3, 4.0};
 
+/* Kinds whose value the scan knows well enough to bracket; the others live at the photosphere and beyond. */
+static bool scannable(int kind) {
+  return kind == LXG_HELD_BASE_TEMPERATURE || kind == LXG_HELD_BASE_LUMINOSITY ||
+         kind == LXG_HELD_MASS_LOSS_RATE || kind == LXG_HELD_ENERGY_RATE || kind == LXG_HELD_ENVELOPE_MASS;
+}
+
+/* Any wind with one held row at one critical radius, kept. */
+static enum lxg_status first_at(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
+  if (scannable(row->kind)) {
+    return lxg_wind_cold(solver, ln_rc, row, false);
+  }
+  enum lxg_status status = lxg_wind_cold_any(solver, ln_rc);
+  if (status == LXG_OK) {
+    const struct wind_row pair[2] = {{.kind = LXG_HELD_LAUNCH_RADIUS, .target = ln_rc}, *row};
+    status = lxg_wind_walk(solver, pair);
+  }
+  return status;
+}
+
 /* Any wind with one held row, kept. */
 static enum lxg_status first_wind(struct lxg_wind_solver *solver, const struct wind_row *row) {
-  enum lxg_status status = LXG_NO_SOLUTION;
   if (row->kind == LXG_HELD_LAUNCH_RADIUS) {
     return lxg_wind_cold_any(solver, row->target);
   }
-  for (size_t i = 0; i < sizeof first_radii / sizeof first_radii[0] && status == LXG_NO_SOLUTION; i++) {
-    status = lxg_wind_cold(solver, solver->problem.constants.ln_r0 + first_radii[i] * LXG_LN10, row, false);
+  enum lxg_status status = LXG_NO_SOLUTION;
+  for (size_t i = 0; i < sizeof first_radii / sizeof first_radii[0]; i++) {
+    status = first_at(solver, solver->problem.constants.ln_r0 + first_radii[i] * LXG_LN10, row);
+    if (status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY) {
+      break;
+    }
   }
   return status;
 }
@@ -229,21 +257,18 @@ enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_
 enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                struct lxg_wind *wind, struct lxg_error *error) {
   lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
-  enum lxg_status status = holds_check(solver, hold, error);
+  enum lxg_status status = lxg_wind_holds_check(solver, hold, error);
   if (status != LXG_OK) {
     return status;
   }
   solver->have = false;
   solver->newton_steps = 0;
   const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
-  const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS   ? 0
-                        : row[1].kind == LXG_HELD_LAUNCH_RADIUS ? 1
-                                                                : 2;
-  if (radius < 2) {
-    status = lxg_wind_cold(solver, row[radius].target, &row[1 - radius], false);
+  const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS ? 0 : 1;
+  if (row[radius].kind == LXG_HELD_LAUNCH_RADIUS) {
+    status = first_at(solver, row[radius].target, &row[1 - radius]);
   } else {
-    const bool second = row[1].kind == LXG_HELD_BASE_TEMPERATURE; /* the best starting key */
-    status = first_wind(solver, &row[second ? 1 : 0]);
+    status = first_wind(solver, &row[scannable(row[0].kind) ? 0 : 1]);
     if (status == LXG_OK) {
       status = lxg_wind_walk(solver, row);
     }
@@ -254,7 +279,7 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
 enum lxg_status lxg_wind_follow(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                 struct lxg_wind *wind, struct lxg_error *error) {
   lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
-  enum lxg_status status = holds_check(solver, hold, error);
+  enum lxg_status status = lxg_wind_holds_check(solver, hold, error);
   if (status != LXG_OK) {
     return status;
   }
@@ -292,10 +317,10 @@ enum lxg_status lxg_wind_arc(struct lxg_wind_solver *solver, const struct lxg_wi
   return finish(solver, lxg_wind_newton(solver, row, solver->options.residual_tolerance, false), wind, error);
 }
 
-enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver) {
-  return lxg_bvp_copy(solver->marked, solver->kept);
+enum lxg_status lxg_wind_mark(struct lxg_wind_solver *solver, size_t slot) {
+  return slot < LXG_WIND_SLOTS ? lxg_bvp_copy(solver->slot[slot], solver->kept) : LXG_BUG;
 }
 
-enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver) {
-  return lxg_bvp_copy(solver->kept, solver->marked);
+enum lxg_status lxg_wind_recall(struct lxg_wind_solver *solver, size_t slot) {
+  return slot < LXG_WIND_SLOTS ? lxg_bvp_copy(solver->kept, solver->slot[slot]) : LXG_BUG;
 }

@@ -1,0 +1,66 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * family_members.c - all winds that share two held quantities.
+ *
+ * One of the two spans a family, which is walked coarsely from end to end; wherever the other passes its value the wind is
+ * solved for both. Folds of the second quantity therefore show up as several winds, and a value that no member reaches
+ * is missing for the reason at which the family ends.
+ */
+#include "family/family_internal.h"
+
+#include <math.h>
+
+static const double coarse = 1e-2; /* linear interpolation error that a walk between crossings may have */
+
+/* How well a quantity starts a family: smaller is better. */
+static int rank(enum lxg_held quantity) {
+  static const enum lxg_held order[] = {
+      LXG_HELD_BASE_TEMPERATURE,       LXG_HELD_LAUNCH_RADIUS,  LXG_HELD_MASS_LOSS_RATE,
+      LXG_HELD_ENVELOPE_MASS,          LXG_HELD_ENERGY_RATE,    LXG_HELD_BASE_LUMINOSITY,
+      LXG_HELD_PHOTOSPHERE_LUMINOSITY, LXG_HELD_TERMINAL_SPEED, LXG_HELD_PHOTOSPHERE_RADIUS,
+      LXG_HELD_PHOTOSPHERE_TEMPERATURE};
+  int i = 0;
+  while (i < (int)LXG_HELD_COUNT && order[i] != quantity) {
+    i++;
+  }
+  return i;
+}
+
+enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                   enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
+                                   size_t *count, struct lxg_error *error) {
+  const size_t first = rank(hold[0].quantity) <= rank(hold[1].quantity) ? 0 : 1;
+  *count = 0;
+  enum lxg_status status = lxg_wind_holds_check(solver, hold, error);
+  if (status != LXG_OK) {
+    return status;
+  }
+  struct family_catch found = {
+      .target = &hold[1 - first], .wind = winds, .capacity = capacity, .thick = branch == LXG_BRANCH_THICK};
+  struct lxg_family_options options = lxg_family_options_default();
+  options.tolerance = coarse;
+  struct lxg_family family;
+  status = lxg_family_trace_catching(solver, &hold[first], &options, &found, &family, error);
+  if (status != LXG_OK) {
+    winds[0].reason = LXG_WIND_NOT_FOUND;
+    return status;
+  }
+  *count = found.count;
+  if (found.count == 0) {
+    winds[0].reason = lxg_family_missing(&family, (enum lxg_family_quantity)hold[1 - first].quantity,
+                                         hold[1 - first].value);
+    status = lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(winds[0].reason), "%s",
+                           lxg_wind_reason_text(winds[0].reason));
+  } else {
+    for (size_t i = 1; i < found.count && i < capacity; i++) {
+      if (winds[i].value[LXG_HELD_MASS_LOSS_RATE] == found.best_rate) {
+        const struct lxg_wind swap = winds[0];
+        winds[0] = winds[i];
+        winds[i] = swap;
+      }
+    }
+    status = lxg_wind_recall(solver, SLOT_BEST);
+  }
+  lxg_family_free(&family);
+  return status;
+}
