@@ -16,24 +16,67 @@
 
 /* Value and slopes travel together. */
 struct lxg_opacity_value {
-  double kappa;       /* [cm^2 g^-1], > 0 */
-  double dlnk_dlnrho; /* d ln kappa / d ln rho at constant T */
-  double dlnk_dlnt;   /* d ln kappa / d ln T at constant rho */
-  double
-      table_weight; /* share that came from a table: 1 inside the grid, 0 for the formula, between in the join */
+  double kappa;        /* [cm^2 g^-1], > 0 */
+  double dlnk_dlnrho;  /* d ln kappa / d ln rho at constant T */
+  double dlnk_dlnt;    /* d ln kappa / d ln T at constant rho */
+  double table_weight; /* share from a table: 1 inside the grid, 0 for the formula, between in the join */
 };
 
 enum lxg_opacity_formula { LXG_OPACITY_KRAMERS, LXG_OPACITY_SCATTERING, LXG_OPACITY_REFERENCE };
 
+/* What absorbs or scatters. Names for people and for `omit`: lxg_opacity_source_name. */
+enum lxg_opacity_source {
+  LXG_OPACITY_SOURCE_SCATTERING, /* free electrons */
+  LXG_OPACITY_SOURCE_FREE_FREE,
+  LXG_OPACITY_SOURCE_BOUND_FREE, /* metals of all kinds, Z + cno */
+  LXG_OPACITY_SOURCE_H_MINUS,    /* in series with the rest: it limits the opacity of cool gas */
+  LXG_OPACITY_SOURCE_HYDROGEN,   /* bumps from here on */
+  LXG_OPACITY_SOURCE_HELIUM,
+  LXG_OPACITY_SOURCE_IRON, /* follows Z alone */
+  LXG_OPACITY_SOURCE_DEEP, /* inner shells of carbon to iron, Z + cno */
+  LXG_OPACITY_SOURCES
+};
+
+/* The bit of a source in a set of sources. */
+#define LXG_OPACITY_BIT(source) (1u << (unsigned)(source))
+
+/* Where the formulas are defined: everything outside is LXG_DOMAIN. */
+#define LXG_OPACITY_LEAST_T 10.0    /* [K] */
+#define LXG_OPACITY_MOST_T 1e12     /* [K] */
+#define LXG_OPACITY_LEAST_RHO 1e-40 /* [g cm^-3] */
+#define LXG_OPACITY_MOST_RHO 1e12   /* [g cm^-3] */
+
 struct lxg_opacity; /* opaque, immutable once created */
+
+/* "scattering", "free_free", "bound_free", "h_minus", "hydrogen", "helium", "iron", "deep"; never NULL. */
+const char *lxg_opacity_source_name(enum lxg_opacity_source source);
+
+/* The bit of the source of that name. LXG_INPUT "opacity-source" with the names there are. */
+enum lxg_status lxg_opacity_source_find(const char *name, unsigned *bit, struct lxg_error *error);
+
+/* "kramers", "scattering" or "reference". LXG_INPUT "opacity-formula" with the names there are. */
+enum lxg_status lxg_opacity_formula_find(const char *name, enum lxg_opacity_formula *formula,
+                                         struct lxg_error *error);
 
 /* Builds the formula for a composition. `*opacity` is NULL on failure. Free with lxg_opacity_destroy. */
 enum lxg_status lxg_opacity_create_formula(enum lxg_opacity_formula formula,
                                            const struct lxg_composition *composition,
                                            struct lxg_opacity **opacity, struct lxg_error *error);
 
+/* The same without the sources in `omit` (LXG_OPACITY_BIT ...; only `kramers` is made of sources): experiments such as "no
+ * iron". LXG_INPUT "opacity-omit" for another formula, or when nothing is left for this composition. */
+enum lxg_status lxg_opacity_create_without(enum lxg_opacity_formula formula, unsigned omit,
+                                           const struct lxg_composition *composition,
+                                           struct lxg_opacity **opacity, struct lxg_error *error);
+
+/* The share of each source at a point, d ln kappa/d ln k_source: they sum to 1. A table and the reference law do not know
+ * their sources; where they answer, `known` is the part (table weight taken off) of kappa that the shares describe:
+ * 1 for the formula, 0 for a table, and the shares sum to it. LXG_DOMAIN as lxg_opacity_at. */
+enum lxg_status lxg_opacity_shares(const struct lxg_opacity *opacity, double ln_rho, double ln_t,
+                                   double share[LXG_OPACITY_SOURCES], double *known);
+
 /* Opacity at ln rho [g cm^-3] and ln T [K]. LXG_OK, or LXG_DOMAIN when a table refuses a point outside its grid (or
- * when an argument is not finite); then `value` is untouched. Never allocates; thread-safe. */
+ * when an argument is not finite or outside the limits above); then `value` is untouched. Never allocates; thread-safe. */
 enum lxg_status lxg_opacity_at(const struct lxg_opacity *opacity, double ln_rho, double ln_t,
                                struct lxg_opacity_value *value);
 

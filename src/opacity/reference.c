@@ -11,6 +11,8 @@
  */
 #include "opacity/opacity_internal.h"
 
+#include "luxgale/constants.h"
+
 #include <math.h>
 
 static const double ln_compton_t = 19.924758140728639; /* ln 4.5e8 */
@@ -20,7 +22,7 @@ static const double ln_bump_r = -11.512925464970228;   /* ln 1e-5 */
 static const double metal_log_t = 5.28, metal_width = 0.21, metal_power = 0.42;
 static const double helium_log_t = 4.63, helium_width = 0.25, helium_power = 0.8;
 
-void lxg_opacity_reference_init(struct lxg_opacity_reference_law *law,
+void lxg_opacity_reference_init(struct opacity_reference_law *law,
                                 const struct lxg_composition *composition) {
   const double x1 = 1.0 + composition->hydrogen;
   const double z = composition->metals;
@@ -31,26 +33,26 @@ void lxg_opacity_reference_init(struct lxg_opacity_reference_law *law,
 }
 
 /* amplitude (R/1e-5)^power exp(-((log T - log_t)/width)^2) */
-static void add_bump(struct lxg_opacity_sum *sum, double amplitude, double power, double log_t, double width,
+static void add_bump(struct opacity_sum *sum, double amplitude, double power, double log_t, double width,
                      double ln_r, double ln_t) {
   const double offset = (ln_t / LXG_LN10 - log_t) / width;
   const double kappa = amplitude * exp(power * (ln_r - ln_bump_r) - offset * offset);
-  lxg_opacity_sum_add(sum, kappa, power, -3.0 * power - 2.0 * offset / (width * LXG_LN10));
+  opacity_sum_add(sum, kappa, power, -3.0 * power - 2.0 * offset / (width * LXG_LN10));
 }
 
-struct lxg_opacity_sum lxg_opacity_reference_at(const struct lxg_opacity_reference_law *law, double ln_rho,
-                                                double ln_t) {
-  struct lxg_opacity_sum sum = {0.0, 0.0, 0.0};
-  const double ln_r = ln_rho - 3.0 * (ln_t - LXG_OPACITY_LN_T6);
+struct opacity_sum lxg_opacity_reference_at(const struct opacity_reference_law *law, double ln_rho,
+                                            double ln_t) {
+  struct opacity_sum sum = {0.0, 0.0, 0.0};
+  const double ln_r = opacity_ln_r(ln_rho, ln_t);
 
   const double compton = exp(0.86 * (ln_t - ln_compton_t));
   const double neutral = exp(12.0 * (ln_ionised_t - ln_t));
-  lxg_opacity_sum_add(&sum, law->scattering / (1.0 + compton) / (1.0 + neutral), 0.0,
-                      -0.86 * compton / (1.0 + compton) + 12.0 * neutral / (1.0 + neutral));
+  opacity_sum_add(&sum, law->scattering / (1.0 + compton) / (1.0 + neutral), 0.0,
+                  -0.86 * compton / (1.0 + compton) + 12.0 * neutral / (1.0 + neutral));
 
   const double cool = exp(8.0 * (ln_kramers_t - ln_t));
-  lxg_opacity_sum_add(&sum, law->kramers * exp(ln_rho - 3.5 * ln_t) / (1.0 + cool), 1.0,
-                      -3.5 + 8.0 * cool / (1.0 + cool));
+  opacity_sum_add(&sum, law->kramers * exp(ln_rho - 3.5 * ln_t) / (1.0 + cool), 1.0,
+                  -3.5 + 8.0 * cool / (1.0 + cool));
 
   add_bump(&sum, law->metal_bump, metal_power, metal_log_t, metal_width, ln_r, ln_t);
   add_bump(&sum, law->helium_bump, helium_power, helium_log_t, helium_width, ln_r, ln_t);
