@@ -11,6 +11,8 @@
 
 #include "luxgale/bvp.h"
 
+#include <stdbool.h>
+
 enum {
   BVP_STAGE_ROWS = LXG_BVP_MAX_UNKNOWNS * LXG_BVP_MAX_STAGES,
   BVP_ROWS = 2 * LXG_BVP_MAX_UNKNOWNS + LXG_BVP_MAX_PARAMETERS + 2 * LXG_BVP_MAX_CONDITIONS,
@@ -97,8 +99,10 @@ enum lxg_status lxg_bvp_linear_simplified(struct lxg_bvp *bvp, const struct lxg_
 enum lxg_status lxg_bvp_newton(struct lxg_bvp *bvp, const struct lxg_bvp_problem *problem,
                                const struct lxg_bvp_options *options, struct lxg_bvp_statistics *statistics);
 
-/* New mesh that equidistributes the residual measured by interval; LXG_LIMIT if the capacity is too small. */
-enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *bvp, const double residual[], double tolerance);
+/* New mesh for the residual measured by interval: equidistributed, or (`again`, or few fail) the failing intervals split.
+ * LXG_LIMIT if the capacity is too small. */
+enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *bvp, const double residual[], double tolerance,
+                                   bool again);
 /* Largest relative residual of each interval into residual[intervals]; returns the largest. */
 double lxg_bvp_mesh_residual(const struct lxg_bvp *bvp, const struct lxg_bvp_problem *problem,
                              double residual[], double *worst_x);

@@ -5,17 +5,22 @@
  * Between its s collocation points the residual of an interval scales as h^s. With e_i the residual measured in interval
  * i and t the tolerance, the interval wants (e_i/(f t))^(1/s) parts, f < 1 a safety factor; the piecewise constant density
  * of wanted parts is smoothed (neighbours differ by a bounded ratio) and integrated for the new nodes (Ascher, Mattheij &
- * Russell 1995, sect. 9.2).
+ * Russell 1995, sect. 9.2). That law fails around a kink of the equations (a table's cell edge, say), where moving nodes about
+ * would never end; so a second and later remeshing, or one where few intervals fail, only splits the failing intervals.
  */
 #include "bvp/bvp_internal.h"
 
 #include <math.h>
+#include <stdbool.h>
 #include <string.h>
 
 static const double residual_safety = 0.3; /* share of the tolerance that a new mesh aims at */
 static const double parts_least =
     0.45; /* an interval shrinks to this many parts at the least in one remeshing */
 static const double parts_most = 6.0;      /* ... and at the most */
+static const double split_most = 4.0;      /* parts of a failing interval in a splitting */
+static const double few_share = 0.15;      /* failing intervals that count as few */
+static const double waste_most = 2.0;      /* intervals over wanted parts that are tolerated */
 static const double neighbour_ratio = 2.5; /* largest ratio of neighbouring densities */
 
 static void sample(const struct lxg_bvp *b, size_t i, size_t j, double y[], double k[]) {
@@ -131,7 +136,43 @@ static void transfer(struct lxg_bvp *b, size_t count) {
   b->intervals = count;
 }
 
-enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *b, const double residual[], double tolerance) {
+/* Splits the intervals whose residual is too large; the others stay. */
+static enum lxg_status split(struct lxg_bvp *b, const double residual[], double tolerance) {
+  const double power = 1.0 / (double)b->tableau.stages;
+  size_t count = 0;
+  b->new_x[0] = b->x[0];
+  for (size_t i = 0; i < b->intervals; i++) {
+    const double wanted = ceil(pow(residual[i] / (residual_safety * tolerance) + 1e-300, power));
+    const size_t parts = residual[i] > tolerance ? (size_t)fmin(fmax(wanted, 2.0), split_most) : 1;
+    if (count + parts > b->capacity) {
+      return LXG_LIMIT;
+    }
+    for (size_t j = 1; j < parts; j++) {
+      b->new_x[count + j] = b->x[i] + (b->x[i + 1] - b->x[i]) * (double)j / (double)parts;
+    }
+    count += parts;
+    b->new_x[count] = b->x[i + 1];
+  }
+  transfer(b, count);
+  return LXG_OK;
+}
+
+/* Few intervals fail, and the mesh is not much finer than it need be. */
+static bool nearly_good(const struct lxg_bvp *b, const double residual[], double tolerance) {
+  const double power = 1.0 / (double)b->tableau.stages;
+  double wanted = 0.0;
+  size_t failing = 0;
+  for (size_t i = 0; i < b->intervals; i++) {
+    wanted += fmax(pow(residual[i] / (residual_safety * tolerance) + 1e-300, power), 0.2);
+    failing += residual[i] > tolerance;
+  }
+  return (double)failing <= few_share * (double)b->intervals && (double)b->intervals <= waste_most * wanted;
+}
+
+enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *b, const double residual[], double tolerance, bool again) {
+  if (again || nearly_good(b, residual, tolerance)) {
+    return split(b, residual, tolerance);
+  }
   wanted_density(b, residual, tolerance, b->density);
   size_t count = 0;
   size_t first = 0;
