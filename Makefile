@@ -26,7 +26,7 @@ CLI_OBJ   := $(CLI_SRC:%.c=$(BUILD)/%.o)
 TEST_OBJ  := $(TEST_SRC:%.c=$(BUILD)/%.o) $(SUPPORT_SRC:%.c=$(BUILD)/%.o)
 LIB       := $(BUILD)/libluxgale.a
 
-.PHONY: all tests clean format format-check check-layers check-symbols
+.PHONY: all tests programs clean format format-check check-layers check-symbols
 all: $(BUILD)/luxgale $(LIB)
 
 $(BUILD)/%.o: %.c
@@ -52,6 +52,12 @@ $(BUILD)/run-tests: $(TEST_OBJ) $(BUILD)/tests/run_all.o $(LIB)
 	$(CC) $(OPT) -g -pthread $(LDFLAGS) -o $@ $^ $(PKG_LIBS) $(TEST_LIBS) -lm
 
 tests: $(BUILD)/run-tests
+
+# Programs beside the suites: micro-benchmarks and calibrations, one file each (`make programs`).
+PROGRAMS := $(patsubst %.c,$(BUILD)/%,$(sort $(wildcard tests/bench/*.c tests/calibration/*.c)))
+programs: $(PROGRAMS)
+$(PROGRAMS): %: %.o $(LIB)
+	$(CC) $(OPT) -g -pthread $(LDFLAGS) -o $@ $^ $(PKG_LIBS) -lm
 
 format:
 	clang-format -i $(shell git ls-files '*.c' '*.h')

@@ -19,13 +19,14 @@
 #include "opacity/kramers.h"
 
 #include "luxgale/constants.h"
-#include "opacity/fast_exp.h"
+#include "opacity/lanes.h"
 
 #include <math.h>
 
-static const double limit = 5.0;                        /* dex of R over which t follows l */
-static const double ln_degenerate = 26.321687795944786; /* ln 2.7e11 */
-static const double pivot = 2.0;                        /* l at R = 1e-3, where the power laws are anchored */
+_Static_assert(KRAMERS_TERMS % LANES == 0, "terms fill whole lanes");
+
+static const double limit = 5.0; /* dex of R over which t follows l */
+static const double pivot = 2.0; /* l at R = 1e-3, where the power laws are anchored */
 
 const struct kramers_coefficients lxg_opacity_kramers_calibrated = {
     .scalar =
@@ -61,37 +62,63 @@ static double element(enum lxg_opacity_source source, const struct lxg_compositi
   }
 }
 
-static void init_peaks(struct kramers_law *law, const struct kramers_coefficients *coefficients,
+static const double absent = -1e4; /* logarithm of nothing */
+
+static void init_bumps(struct kramers_law *law, const struct kramers_coefficients *coefficients,
                        const struct lxg_composition *composition, unsigned omit) {
-  law->peaks = 0;
-  for (size_t i = 0; i < KRAMERS_BUMPS; i++) {
-    const double amount = element(bump_source[i], composition);
-    if ((omit & LXG_OPACITY_BIT(bump_source[i])) != 0 || !(amount > 0.0)) {
-      continue;
-    }
-    const double *c = coefficients->bump[i];
-    law->peak[law->peaks++] = (struct kramers_peak){
-        .source = bump_source[i],
-        .ln_height = LXG_LN10 * c[KRAMERS_log_peak] + c[KRAMERS_element] * log(amount) +
-                     c[KRAMERS_electrons] * log((1.0 + composition->hydrogen) / 1.7),
-        .power = LXG_LN10 * c[KRAMERS_power],
-        .bend = LXG_LN10 * c[KRAMERS_bend],
-        .twist = LXG_LN10 * c[KRAMERS_twist],
-        .log_t = c[KRAMERS_log_t],
-        .shift = c[KRAMERS_shift],
-        .inverse = {c[KRAMERS_cool], c[KRAMERS_hot]},
-        .trend = {c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit,
-                  c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit},
-    };
+  for (size_t b = 0; b < KRAMERS_BUMPS; b++) {
+    const double amount = element(bump_source[b], composition);
+    const double *c = coefficients->bump[b];
+    const size_t i = KRAMERS_FIRST_BUMP + b;
+    law->present[i] = (omit & LXG_OPACITY_BIT(bump_source[b])) == 0 && amount > 0.0;
+    law->constant[i] = law->present[i] ? LXG_LN10 * c[KRAMERS_log_peak] + c[KRAMERS_element] * log(amount) +
+                                             c[KRAMERS_electrons] * log((1.0 + composition->hydrogen) / 1.7)
+                                       : absent;
+    law->by_l[i] = LXG_LN10 * c[KRAMERS_power];
+    law->bend[i] = LXG_LN10 * c[KRAMERS_bend];
+    law->twist[i] = LXG_LN10 * c[KRAMERS_twist];
+    law->log_t[i] = c[KRAMERS_log_t];
+    law->shift[i] = c[KRAMERS_shift];
+    law->inverse_cool[i] = c[KRAMERS_cool];
+    law->inverse_hot[i] = c[KRAMERS_hot];
+    law->trend_cool[i] = c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit;
+    law->trend_hot[i] = c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit;
   }
 }
 
-static struct kramers_power power_law(double ln_scale, double by_r, double by_log_t) {
-  return (struct kramers_power){
-      .ln_scale = ln_scale - by_r * LXG_LN10 * pivot - by_log_t * LXG_OPACITY_LN_T6,
-      .by_r = by_r * LXG_LN10,
-      .by_t = by_log_t * LXG_LN10,
-  };
+/* scale (R/1e-3)^by_r (T/1e6 K)^by_t; the rest of the term stays zero. */
+static void init_power(struct kramers_law *law, size_t i, bool present, double ln_scale, double by_r,
+                       double by_t) {
+  law->present[i] = present;
+  law->constant[i] = present ? ln_scale - LXG_LN10 * pivot * by_r - LXG_OPACITY_LN_T6 * by_t : absent;
+  law->by_l[i] = LXG_LN10 * by_r;
+  law->by_u[i] = LXG_LN10 * by_t;
+}
+
+/* exp(steepness ln 10 (log_t + shift t - u)) */
+static void init_switch(struct kramers_law *law, size_t i, double log_t, double shift, double steepness) {
+  law->factor_constant[i] = LXG_LN10 * steepness * log_t;
+  law->factor_by_t[i] = LXG_LN10 * steepness * shift;
+  law->factor_by_u[i] = -LXG_LN10 * steepness;
+}
+
+static void init_factors(struct kramers_law *law, const double *c, double hydrogen, double metals) {
+  law->factor_constant[KRAMERS_COMPTON] = -LXG_LN10 * c[KRAMERS_es_power] * c[KRAMERS_es_log_t];
+  law->factor_by_u[KRAMERS_COMPTON] = LXG_LN10 * c[KRAMERS_es_power];
+  /* log rho = l - 5 + 3 (u - 6) = l + 3 u - 23, so 2.7e11 rho/T^2 goes as l + u */
+  law->factor_constant[KRAMERS_DEGENERATE] = log(2.7e11) - 23.0 * LXG_LN10;
+  law->factor_by_u[KRAMERS_DEGENERATE] = LXG_LN10;
+  law->factor_by_l[KRAMERS_DEGENERATE] = LXG_LN10;
+  init_switch(law, KRAMERS_HYDROGEN_SWITCH, c[KRAMERS_h_ion_log_t], c[KRAMERS_h_ion_shift],
+              c[KRAMERS_h_ion_power]);
+  init_switch(law, KRAMERS_HELIUM_SWITCH, c[KRAMERS_he_ion_log_t], c[KRAMERS_he_ion_shift],
+              c[KRAMERS_he_ion_power]);
+  init_switch(law, KRAMERS_COOL_SWITCH, c[KRAMERS_cut_log_t], c[KRAMERS_cut_shift], c[KRAMERS_cut_power]);
+  law->factor_constant[KRAMERS_H_MINUS] = LXG_LN10 * (c[KRAMERS_h_minus_scale] - 11.5) + log(2.5e-31) +
+                                          log(c[KRAMERS_h_minus_metals] + metals / 0.02) +
+                                          log(hydrogen / 0.7 + c[KRAMERS_h_minus_floor]);
+  law->factor_by_u[KRAMERS_H_MINUS] = 10.5 * LXG_LN10; /* rho^0.5 T^9 */
+  law->factor_by_l[KRAMERS_H_MINUS] = 0.5 * LXG_LN10;
 }
 
 static bool kept(unsigned omit, enum lxg_opacity_source source) {
@@ -104,29 +131,22 @@ void lxg_opacity_kramers_init(struct kramers_law *law, const struct kramers_coef
   const double x = composition->hydrogen;
   const double heavy = (composition->metals + composition->cno) / 0.02;
   const double scattering = kept(omit, LXG_OPACITY_SOURCE_SCATTERING) ? 1.0 : 0.0;
-  law->hydrogen_electrons = scattering * 0.4 * x;
-  law->other_electrons = scattering * 0.2 * (1.0 - x);
-  law->compton_log_t = c[KRAMERS_es_log_t];
-  law->compton_power = LXG_LN10 * c[KRAMERS_es_power];
-  law->hydrogen = (struct kramers_switch){c[KRAMERS_h_ion_log_t], c[KRAMERS_h_ion_shift],
-                                          LXG_LN10 * c[KRAMERS_h_ion_power]};
-  law->helium = (struct kramers_switch){c[KRAMERS_he_ion_log_t], c[KRAMERS_he_ion_shift],
-                                        LXG_LN10 * c[KRAMERS_he_ion_power]};
-  law->cool =
-      (struct kramers_switch){c[KRAMERS_cut_log_t], c[KRAMERS_cut_shift], LXG_LN10 * c[KRAMERS_cut_power]};
-  law->free_free =
-      power_law(LXG_LN10 * c[KRAMERS_ff_scale] + log(1.0 + x), c[KRAMERS_ff_power], c[KRAMERS_ff_tilt]);
-  law->free_free_weight = kept(omit, LXG_OPACITY_SOURCE_FREE_FREE) ? 1.0 : 0.0;
+  *law = (struct kramers_law){
+      .hydrogen_electrons = scattering * 0.4 * x,
+      .other_electrons = scattering * 0.2 * (1.0 - x),
+      .in_series = kept(omit, LXG_OPACITY_SOURCE_H_MINUS),
+  };
+  init_power(law, KRAMERS_FREE_FREE, kept(omit, LXG_OPACITY_SOURCE_FREE_FREE),
+             LXG_LN10 * c[KRAMERS_ff_scale] + log(1.0 + x), c[KRAMERS_ff_power], c[KRAMERS_ff_tilt]);
   /* 4.34e25 rho T^-3.5 = 43.4 at R = 1e-3 g cm^-3 per (1e6 K)^3 and T = 1e6 K */
-  law->bound_free_weight = kept(omit, LXG_OPACITY_SOURCE_BOUND_FREE) && heavy > 0.0 ? 1.0 : 0.0;
-  const double metals = law->bound_free_weight > 0.0 ? c[KRAMERS_bf_metals] * log(heavy) : 0.0;
-  law->bound_free = power_law(LXG_LN10 * c[KRAMERS_bf_scale] + log(43.4 * 0.02 * (1.0 + x)) + metals,
-                              c[KRAMERS_bf_power], -0.5 - c[KRAMERS_bf_tilt]);
-  law->ln_h_minus = LXG_LN10 * c[KRAMERS_h_minus_scale] + log(2.5e-31) +
-                    log(c[KRAMERS_h_minus_metals] + composition->metals / 0.02) +
-                    log(x / 0.7 + c[KRAMERS_h_minus_floor]);
-  law->in_series = kept(omit, LXG_OPACITY_SOURCE_H_MINUS);
-  init_peaks(law, coefficients, composition, omit);
+  const bool bound = kept(omit, LXG_OPACITY_SOURCE_BOUND_FREE) && heavy > 0.0;
+  init_power(law, KRAMERS_BOUND_FREE, bound,
+             bound ? LXG_LN10 * c[KRAMERS_bf_scale] + log(43.4 * 0.02 * (1.0 + x)) +
+                         c[KRAMERS_bf_metals] * log(heavy)
+                   : 0.0,
+             c[KRAMERS_bf_power], -0.5 - c[KRAMERS_bf_tilt]);
+  init_bumps(law, coefficients, composition, omit);
+  init_factors(law, c, x, composition->metals);
 }
 
 /* ---- one point ---- */
@@ -138,7 +158,7 @@ struct place {
   double dt;   /* dt/dl */
 };
 
-static inline struct place place_of(double ln_rho, double ln_t) {
+LXG_LANES_INLINE struct place place_of(double ln_rho, double ln_t) {
   struct place at;
   at.u = ln_t * (1.0 / LXG_LN10);
   at.l = opacity_ln_r(ln_rho, ln_t) * (1.0 / LXG_LN10) + 5.0;
@@ -148,90 +168,109 @@ static inline struct place place_of(double ln_rho, double ln_t) {
   return at;
 }
 
-/* A term from its value and the derivatives of its logarithm with respect to u and l [per dex]. */
-static inline struct opacity_sum term(double kappa, double by_u, double by_l) {
-  const double per_dex = kappa * (1.0 / LXG_LN10);
-  return (struct opacity_sum){kappa, per_dex * by_l, per_dex * (by_u - 3.0 * by_l)};
+/* The four factors of lanes `first` ... */
+LXG_LANES_INLINE void factors_at(const struct kramers_law *law, const struct place *at, size_t first,
+                                 double factor[LANES]) {
+  lanes constant, by_u, by_l, by_t, value;
+  lanes_load(&constant, &law->factor_constant[first]);
+  lanes_load(&by_u, &law->factor_by_u[first]);
+  lanes_load(&by_l, &law->factor_by_l[first]);
+  lanes_load(&by_t, &law->factor_by_t[first]);
+  const lanes exponent = constant + by_u * at->u + by_l * at->l + by_t * at->t;
+  lanes_exp(&value, &exponent);
+  memcpy(factor, &value, sizeof value);
 }
 
-static inline void accumulate(struct opacity_sum *sum, struct opacity_sum more) {
-  sum->kappa += more.kappa;
-  sum->by_lnrho += more.by_lnrho;
-  sum->by_lnt += more.by_lnt;
+/* Value and slopes (per dex, of the logarithm) of the four terms of lanes `first` ..., before switching off. */
+LXG_LANES_INLINE void terms_at(const struct kramers_law *law, const struct place *at, size_t first,
+                               lanes *kappa, lanes *slope_u, lanes *slope_l) {
+  lanes log_t, shift, cool, hot, inverse, trend, constant, by_u, by_l, bend, twist;
+  lanes_load(&log_t, &law->log_t[first]);
+  lanes_load(&shift, &law->shift[first]);
+  const lanes distance = at->u - (log_t + shift * at->t);
+  const lane_bits is_hot = distance > (lanes){0.0, 0.0, 0.0, 0.0};
+  lanes_load(&cool, &law->inverse_cool[first]);
+  lanes_load(&hot, &law->inverse_hot[first]);
+  lanes_choose(&inverse, &is_hot, &hot, &cool);
+  lanes_load(&cool, &law->trend_cool[first]);
+  lanes_load(&hot, &law->trend_hot[first]);
+  lanes_choose(&trend, &is_hot, &hot, &cool);
+  inverse += trend * at->t;
+  const lanes offset = distance * inverse;
+  lanes_load(&constant, &law->constant[first]);
+  lanes_load(&by_u, &law->by_u[first]);
+  lanes_load(&by_l, &law->by_l[first]);
+  lanes_load(&bend, &law->bend[first]);
+  lanes_load(&twist, &law->twist[first]);
+  const lanes exponent =
+      constant + by_u * at->u + by_l * at->l + (at->t * at->t) * (bend + twist * at->t) - offset * offset;
+  lanes_exp(kappa, &exponent);
+  const lanes by_t =
+      at->t * (2.0 * bend + (3.0 * at->t) * twist) - 2.0 * offset * (distance * trend - inverse * shift);
+  *slope_u = by_u - 2.0 * offset * inverse;
+  *slope_l = by_l + by_t * at->dt;
 }
 
-/* Value S and slopes of ln S per dex. */
-struct switched {
-  double value, by_u, by_l;
-};
-
-static inline struct switched switch_at(const struct kramers_switch *s, const struct place *at) {
-  const double w = lxg_fast_exp(s->steepness * (s->log_t + s->shift * at->t - at->u));
-  const double value = 1.0 / (1.0 + w);
-  const double slope = s->steepness * w * value;
-  return (struct switched){value, slope, -slope * s->shift * at->dt};
+/* Derivatives per dex of u and l to those of ln rho and ln T. */
+LXG_LANES_INLINE struct opacity_sum per_dex(double kappa, double by_u, double by_l) {
+  return (struct opacity_sum){kappa, by_l * (1.0 / LXG_LN10), (by_u - 3.0 * by_l) * (1.0 / LXG_LN10)};
 }
 
 /* Scattering on free electrons, with the declines at high T and high density. */
-static inline struct opacity_sum scattering(const struct kramers_law *law, const struct place *at,
-                                            double ln_rho, double ln_t) {
-  const struct switched h = switch_at(&law->hydrogen, at);
-  const struct switched he = switch_at(&law->helium, at);
-  const double from_h = law->hydrogen_electrons * h.value;
-  const double from_he = law->other_electrons * he.value;
-  const double compton = lxg_fast_exp(law->compton_power * (at->u - law->compton_log_t));
-  const double degenerate = lxg_fast_exp(ln_degenerate + ln_rho - 2.0 * ln_t);
-  const double c = 1.0 / (1.0 + compton);
-  const double d = 1.0 / (1.0 + degenerate);
-  const double electrons = from_h + from_he;
-  struct opacity_sum sum = term(from_h, h.by_u, h.by_l);
-  accumulate(&sum, term(from_he, he.by_u, he.by_l));
-  const double factor = c * d;
-  const double lost = degenerate * d; /* -d ln/d ln rho of the density factor */
-  sum.kappa = electrons * factor;
-  sum.by_lnrho = factor * (sum.by_lnrho - electrons * lost);
-  sum.by_lnt = factor * (sum.by_lnt + electrons * (2.0 * lost - law->compton_power / LXG_LN10 * compton * c));
-  return sum;
+LXG_LANES_INLINE struct opacity_sum scattering_at(const struct kramers_law *law, const struct place *at,
+                                                  const double factor[LANES]) {
+  const double one_c = 1.0 + factor[KRAMERS_COMPTON], one_d = 1.0 + factor[KRAMERS_DEGENERATE];
+  const double one_h = 1.0 + factor[KRAMERS_HYDROGEN_SWITCH], one_he = 1.0 + factor[KRAMERS_HELIUM_SWITCH];
+  const double reduced = 1.0 / (one_c * one_d); /* one division for two */
+  const double ionised = 1.0 / (one_h * one_he);
+  const double neutral_h = factor[KRAMERS_HYDROGEN_SWITCH] * ionised * one_he; /* 1 - S_H */
+  const double neutral_he = factor[KRAMERS_HELIUM_SWITCH] * ionised * one_h;
+  const double from_h = law->hydrogen_electrons * reduced * ionised * one_he;
+  const double from_he = law->other_electrons * reduced * ionised * one_h;
+  const double h = from_h * neutral_h, he = from_he * neutral_he;
+  const double kappa = from_h + from_he;
+  const double recoil = law->factor_by_u[KRAMERS_COMPTON] * factor[KRAMERS_COMPTON] * reduced * one_d;
+  const double crowded = LXG_LN10 * factor[KRAMERS_DEGENERATE] * reduced * one_c;
+  const double by_u = -(law->factor_by_u[KRAMERS_HYDROGEN_SWITCH] * h +
+                        law->factor_by_u[KRAMERS_HELIUM_SWITCH] * he + kappa * (recoil + crowded));
+  const double by_l = -(at->dt * (law->factor_by_t[KRAMERS_HYDROGEN_SWITCH] * h +
+                                  law->factor_by_t[KRAMERS_HELIUM_SWITCH] * he) +
+                        kappa * crowded);
+  return per_dex(kappa, by_u, by_l);
 }
 
-static inline struct opacity_sum power_at(const struct kramers_power *power, double weight,
-                                          const struct switched *cool, const struct place *at) {
-  const double kappa =
-      weight * cool->value * lxg_fast_exp(power->ln_scale + power->by_r * at->l + power->by_t * at->u);
-  return term(kappa, power->by_t + cool->by_u, power->by_r + cool->by_l);
-}
-
-static inline struct opacity_sum peak_at(const struct kramers_peak *peak, const struct place *at) {
-  const double distance = at->u - (peak->log_t + peak->shift * at->t);
-  const int side = distance > 0.0;
-  const double inverse = peak->inverse[side] + peak->trend[side] * at->t;
-  const double offset = distance * inverse;
-  const double exponent = peak->ln_height + peak->power * at->l +
-                          at->t * at->t * (peak->bend + peak->twist * at->t) - offset * offset;
-  if (exponent < -LXG_FAST_EXP_LIMIT) {
-    return (struct opacity_sum){0.0, 0.0, 0.0}; /* far below the smallest opacity any other term leaves */
+/* kappa of k_rest and its slopes: all terms, the power laws switched off when cool. */
+LXG_LANES_INLINE struct opacity_sum rest_at(const struct kramers_law *law, const struct place *at,
+                                            double cool) {
+  const double on = 1.0 / (1.0 + cool);
+  const double off_u = -law->factor_by_u[KRAMERS_COOL_SWITCH] * cool * on;
+  const double off_l = -law->factor_by_t[KRAMERS_COOL_SWITCH] * at->dt * cool * on;
+  const lanes fade = {on, on, 1.0, 1.0}, fade_u = {off_u, off_u, 0.0, 0.0}, fade_l = {off_l, off_l, 0.0, 0.0};
+  lanes kappa, slope_u, slope_l;
+  terms_at(law, at, 0, &kappa, &slope_u, &slope_l);
+  kappa *= fade;
+  lanes by_u = kappa * (slope_u + fade_u);
+  lanes by_l = kappa * (slope_l + fade_l);
+  lanes total = kappa;
+  for (size_t first = LANES; first < KRAMERS_TERMS; first += LANES) {
+    terms_at(law, at, first, &kappa, &slope_u, &slope_l);
+    total += kappa;
+    by_u += kappa * slope_u;
+    by_l += kappa * slope_l;
   }
-  const double by_t = at->t * (2.0 * peak->bend + 3.0 * peak->twist * at->t) -
-                      2.0 * offset * (distance * peak->trend[side] - inverse * peak->shift);
-  return term(lxg_fast_exp(exponent), -2.0 * offset * inverse, peak->power + by_t * at->dt);
+  return per_dex(lanes_sum(&total), lanes_sum(&by_u), lanes_sum(&by_l));
 }
 
-/* 2.5e-31-like factor times rho^0.5 T^9 */
-static inline double h_minus_at(const struct kramers_law *law, double ln_rho, double ln_t) {
-  return lxg_fast_exp(law->ln_h_minus + 0.5 * ln_rho + 9.0 * ln_t);
-}
-
-struct opacity_sum lxg_opacity_kramers_at(const struct kramers_law *law, double ln_rho, double ln_t) {
+LXG_LANES_TARGETS struct opacity_sum lxg_opacity_kramers_at(const struct kramers_law *law, double ln_rho,
+                                                            double ln_t) {
   const struct place at = place_of(ln_rho, ln_t);
-  const struct switched cool = switch_at(&law->cool, &at);
-  struct opacity_sum rest = power_at(&law->free_free, law->free_free_weight, &cool, &at);
-  accumulate(&rest, power_at(&law->bound_free, law->bound_free_weight, &cool, &at));
-  for (size_t i = 0; i < law->peaks; i++) {
-    accumulate(&rest, peak_at(&law->peak[i], &at));
-  }
+  double factor[KRAMERS_FACTORS];
+  factors_at(law, &at, 0, factor);
+  factors_at(law, &at, LANES, factor + LANES);
+  struct opacity_sum rest = rest_at(law, &at, factor[KRAMERS_COOL_SWITCH]);
   if (law->in_series) {
     /* 1/kappa = 1/h + 1/rest: each part of the resistance weighs its own slope. */
-    const double h = h_minus_at(law, ln_rho, ln_t);
+    const double h = factor[KRAMERS_H_MINUS];
     const double both = 1.0 / (h + rest.kappa);
     const double pass = h * both;
     const double block = rest.kappa * both;
@@ -239,32 +278,43 @@ struct opacity_sum lxg_opacity_kramers_at(const struct kramers_law *law, double 
     rest.by_lnrho = pass * pass * rest.by_lnrho + block * block * 0.5 * h;
     rest.by_lnt = pass * pass * rest.by_lnt + block * block * 9.0 * h;
   }
-  accumulate(&rest, scattering(law, &at, ln_rho, ln_t));
+  const struct opacity_sum electrons = scattering_at(law, &at, factor);
+  rest.kappa += electrons.kappa;
+  rest.by_lnrho += electrons.by_lnrho;
+  rest.by_lnt += electrons.by_lnt;
   return rest;
 }
 
 void lxg_opacity_kramers_shares(const struct kramers_law *law, double ln_rho, double ln_t,
                                 double share[LXG_OPACITY_SOURCES]) {
   const struct place at = place_of(ln_rho, ln_t);
-  const struct switched cool = switch_at(&law->cool, &at);
+  double factor[KRAMERS_FACTORS], term[KRAMERS_TERMS];
+  factors_at(law, &at, 0, factor);
+  factors_at(law, &at, LANES, factor + LANES);
+  for (size_t first = 0; first < KRAMERS_TERMS; first += LANES) {
+    lanes kappa, slope_u, slope_l;
+    terms_at(law, &at, first, &kappa, &slope_u, &slope_l);
+    memcpy(&term[first], &kappa, sizeof kappa);
+  }
   for (size_t i = 0; i < LXG_OPACITY_SOURCES; i++) {
     share[i] = 0.0;
   }
-  share[LXG_OPACITY_SOURCE_FREE_FREE] = power_at(&law->free_free, law->free_free_weight, &cool, &at).kappa;
-  share[LXG_OPACITY_SOURCE_BOUND_FREE] = power_at(&law->bound_free, law->bound_free_weight, &cool, &at).kappa;
-  for (size_t i = 0; i < law->peaks; i++) {
-    share[law->peak[i].source] += peak_at(&law->peak[i], &at).kappa;
+  const double on = 1.0 / (1.0 + factor[KRAMERS_COOL_SWITCH]);
+  share[LXG_OPACITY_SOURCE_FREE_FREE] = law->present[KRAMERS_FREE_FREE] ? on * term[KRAMERS_FREE_FREE] : 0.0;
+  share[LXG_OPACITY_SOURCE_BOUND_FREE] =
+      law->present[KRAMERS_BOUND_FREE] ? on * term[KRAMERS_BOUND_FREE] : 0.0;
+  for (size_t b = 0; b < KRAMERS_BUMPS; b++) {
+    if (law->present[KRAMERS_FIRST_BUMP + b]) {
+      share[bump_source[b]] += term[KRAMERS_FIRST_BUMP + b];
+    }
   }
   double rest = 0.0;
   for (size_t i = 0; i < LXG_OPACITY_SOURCES; i++) {
     rest += share[i];
   }
-  double pass = 1.0;
-  if (law->in_series) {
-    const double h = h_minus_at(law, ln_rho, ln_t);
-    pass = h / (h + rest);
-  }
-  const double electrons = scattering(law, &at, ln_rho, ln_t).kappa;
+  const double h = factor[KRAMERS_H_MINUS];
+  const double pass = law->in_series ? h / (h + rest) : 1.0;
+  const double electrons = scattering_at(law, &at, factor).kappa;
   const double kappa = electrons + pass * rest;
   /* d ln kappa/d ln k_i: a term in series with another acts through the square of what it lets pass. */
   for (size_t i = 0; i < LXG_OPACITY_SOURCES; i++) {

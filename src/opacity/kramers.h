@@ -37,42 +37,39 @@ struct kramers_coefficients {
 
 extern const struct kramers_coefficients lxg_opacity_kramers_calibrated;
 
-/* exp(ln_scale + by_r l + by_t u), l = log R + 5, u = log T */
-struct kramers_power {
-  double ln_scale; /* ln of [cm^2 g^-1] */
-  double by_r;     /* per dex */
-  double by_t;     /* per dex */
+enum {
+  KRAMERS_FREE_FREE, /* lanes of the terms that add up: the two power laws, then the bumps */
+  KRAMERS_BOUND_FREE,
+  KRAMERS_FIRST_BUMP,
+  KRAMERS_TERMS = KRAMERS_FIRST_BUMP + KRAMERS_BUMPS
 };
 
-/* 1/(1 + exp(steepness (log_t + shift t - u))), t the limited log R: 0 when cool, 1 when hot */
-struct kramers_switch {
-  double log_t;     /* log T of the middle at R = 1e-5 */
-  double shift;     /* per dex */
-  double steepness; /* per dex */
+enum {
+  KRAMERS_COMPTON, /* lanes of the exponentials in factors */
+  KRAMERS_DEGENERATE,
+  KRAMERS_HYDROGEN_SWITCH,
+  KRAMERS_HELIUM_SWITCH,
+  KRAMERS_COOL_SWITCH,
+  KRAMERS_H_MINUS,
+  KRAMERS_FACTORS = 8 /* two spare */
 };
 
-/* One bump with its composition worked in. */
-struct kramers_peak {
-  enum lxg_opacity_source source;
-  double ln_height;          /* ln of [cm^2 g^-1] */
-  double power, bend, twist; /* of l, t^2, t^3, times ln 10 */
-  double log_t, shift;       /* position and its change with t */
-  double inverse[2];         /* 1/width per dex: cool side, hot side */
-  double trend[2];           /* change of 1/width per dex of t */
-};
-
-/* The formula for one composition. Sources that are omitted or absent from the gas have weight or count zero. */
+/* The formula for one composition. Term i is
+ *   exp(constant + by_u u + by_l l + bend t^2 + twist t^3 - ((u - log_t - shift t) (inverse + trend t))^2) [cm^2 g^-1],
+ * inverse and trend of the side of the peak; the power laws have inverse = trend = 0 and are switched off when cool.
+ * Factor i is exp(constant + by_u u + by_l l + by_t t). u = log T, l = log R + 5, t the limited l. */
 struct kramers_law {
-  double hydrogen_electrons; /* 0.4 X [cm^2 g^-1] */
+  double hydrogen_electrons; /* 0.4 X [cm^2 g^-1]; 0 if scattering is omitted */
   double other_electrons;    /* 0.2 (1 - X) [cm^2 g^-1] */
-  double compton_log_t, compton_power;
-  struct kramers_switch hydrogen, helium, cool;
-  struct kramers_power free_free, bound_free;
-  double free_free_weight, bound_free_weight; /* 1, or 0 if omitted or absent */
-  double ln_h_minus;                          /* ln of the factor of rho^0.5 T^9 */
-  bool in_series;                             /* false if h_minus is omitted */
-  size_t peaks;
-  struct kramers_peak peak[KRAMERS_BUMPS];
+  bool in_series;            /* false if h_minus is omitted */
+  bool present[KRAMERS_TERMS];
+  double constant[KRAMERS_TERMS], by_u[KRAMERS_TERMS], by_l[KRAMERS_TERMS];
+  double bend[KRAMERS_TERMS], twist[KRAMERS_TERMS];
+  double log_t[KRAMERS_TERMS], shift[KRAMERS_TERMS];
+  double inverse_cool[KRAMERS_TERMS], inverse_hot[KRAMERS_TERMS];
+  double trend_cool[KRAMERS_TERMS], trend_hot[KRAMERS_TERMS];
+  double factor_constant[KRAMERS_FACTORS], factor_by_u[KRAMERS_FACTORS], factor_by_l[KRAMERS_FACTORS],
+      factor_by_t[KRAMERS_FACTORS];
 };
 
 /* `omit` has the bits LXG_OPACITY_BIT(source). */

@@ -11,13 +11,6 @@
 #include <math.h>
 #include <string.h>
 
-struct lxg_opacity {
-  enum lxg_opacity_formula formula;
-  double scattering; /* 0.2 (1 + X) [cm^2 g^-1] */
-  struct opacity_reference_law reference;
-  struct kramers_law kramers;
-};
-
 /* Limits of opacity.h as natural logarithms. */
 static const double ln_least_t = 2.302585092994046;     /* ln 10 */
 static const double ln_most_t = 27.631021115928547;     /* ln 1e12 */
@@ -73,8 +66,8 @@ static enum lxg_status check_omit(enum lxg_opacity_formula formula, unsigned omi
     return lxg_error_set(error, LXG_INPUT, "opacity-omit", "omit = 0x%x: there are %d sources", omit,
                          LXG_OPACITY_SOURCES);
   }
-  if (law->hydrogen_electrons + law->other_electrons + law->free_free_weight + law->bound_free_weight ==
-      0.0) {
+  if (law->hydrogen_electrons + law->other_electrons == 0.0 && !law->present[KRAMERS_FREE_FREE] &&
+      !law->present[KRAMERS_BOUND_FREE]) {
     return lxg_error_set(
         error, LXG_INPUT, "opacity-omit",
         "omit: keep scattering, free_free or (with metals) bound_free, or gas between the bumps "
@@ -125,6 +118,9 @@ enum lxg_status lxg_opacity_at(const struct lxg_opacity *opacity, double ln_rho,
   if (!in_domain(ln_rho, ln_t)) {
     return LXG_DOMAIN;
   }
+  if (opacity->tabulated) {
+    return lxg_opacity_table_at(opacity, ln_rho, ln_t, value);
+  }
   struct opacity_sum sum = {opacity->scattering, 0.0, 0.0};
   if (opacity->formula == LXG_OPACITY_REFERENCE) {
     sum = lxg_opacity_reference_at(&opacity->reference, ln_rho, ln_t);
@@ -153,9 +149,23 @@ enum lxg_status lxg_opacity_shares(const struct lxg_opacity *opacity, double ln_
   } else if (opacity->formula == LXG_OPACITY_KRAMERS) {
     lxg_opacity_kramers_shares(&opacity->kramers, ln_rho, ln_t, share);
   }
+  if (opacity->tabulated) {
+    struct lxg_opacity_value value;
+    const enum lxg_status status = lxg_opacity_table_at(opacity, ln_rho, ln_t, &value);
+    if (status != LXG_OK) {
+      return status;
+    }
+    *known = 1.0 - value.table_weight;
+    for (size_t i = 0; i < LXG_OPACITY_SOURCES; i++) {
+      share[i] *= *known;
+    }
+  }
   return LXG_OK;
 }
 
 void lxg_opacity_destroy(struct lxg_opacity *opacity) {
-  lxg_free(opacity);
+  if (opacity != NULL) {
+    lxg_opacity_surface_free(&opacity->surface);
+    lxg_free(opacity);
+  }
 }
