@@ -321,6 +321,11 @@ START_TEST(bounds_decide) {
   v = judge(claim, given, &wind);
   ck_assert_int_eq(v.check[LXG_DRIVING_WIND_MASS].outcome, LXG_DRIVING_MET);
   ck_assert_int_eq(v.answer, LXG_DRIVING_SUFFICIENT);
+  /* three times too heavy, but its lower bound fits: not refuted */
+  claim = claim_of(6e-5, 900.0);
+  claim.mass_low = claim.mass / 4.0;
+  v = judge(claim, given, &wind);
+  ck_assert_int_eq(v.check[LXG_DRIVING_WIND_MASS].outcome, LXG_DRIVING_OPEN);
 }
 END_TEST
 
