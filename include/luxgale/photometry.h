@@ -154,8 +154,8 @@ enum { LXG_EXTINCTION_RV_MIN = 2, LXG_EXTINCTION_RV_MAX = 6 }; /* R_V for which 
  * checked against their table 3). LXG_INPUT "extinction-rv"; LXG_DOMAIN "extinction-wavelength" outside 0.1-3.33 um. */
 enum lxg_status lxg_extinction_ratio(double wavelength, double r_v, double *ratio, struct lxg_error *error);
 
-/* A_band [mag] from A_V [mag] >= 0 and R_V. In this law A_B - A_V is 1.04 E(B-V) at the effective wavelengths of B and V for
- * R_V = 3.1: A_V = R_V E(B-V) is kept exact. LXG_INPUT "extinction-value" or "extinction-rv". */
+/* A_band [mag] from A_V [mag] >= 0 and R_V; A_V = R_V E(B-V). The law gives A_B - A_V = E(B-V) at 2.27/um and 1.01 E(B-V) at
+ * the effective wavelength used here. LXG_INPUT "extinction-value" or "extinction-rv". */
 enum lxg_status lxg_extinction_band(enum lxg_band band, double a_v, double r_v, double *a_band,
                                     struct lxg_error *error);
 
@@ -201,7 +201,8 @@ double lxg_photometry_member_magnitude(const struct lxg_photometry_family *famil
                                        double fraction, enum lxg_light *served);
 
 /* All members whose absolute unreddened magnitude is `magnitude`, in the order of the family. Within a segment each
- * light is taken as monotonic (nodes dense enough). LXG_INPUT "members-family" for a bad family; LXG_NO_SOLUTION
+ * light is taken as monotonic (nodes dense enough). LXG_INPUT "members-family" for a bad family, "members-magnitude"
+ * for a magnitude that is no number; LXG_NO_SOLUTION
  * "members-bright" or "members-faint" when the family never shines so; LXG_LIMIT "members-capacity" when more than
  * `capacity` exist (the first are filled in). */
 enum lxg_status lxg_photometry_members(const struct lxg_photometry_family *family, enum lxg_band band,
