@@ -17,8 +17,8 @@ START_TEST(parallax_quantiles) {
                                            reference_posteriors[_i].length, &distance, &error),
                 LXG_OK, &error);
   for (int k = 0; k < 5; k++) {
-    assert_close(lxg_distance_quantile(&distance, level[k]) / LXG_PARSEC, reference_posteriors[_i].quantile[k],
-                 posterior_tolerance);
+    assert_close(lxg_distance_quantile(&distance, level[k]) / LXG_PARSEC,
+                 reference_posteriors[_i].quantile[k], posterior_tolerance);
   }
 }
 END_TEST
@@ -28,7 +28,8 @@ START_TEST(parallax_excellent) {
   struct lxg_distance distance;
   assert_status(lxg_distance_init_parallax(8.0, 8e-6, 1350.0, &distance, NULL), LXG_OK, NULL);
   assert_close(lxg_distance_quantile(&distance, 0.5) / LXG_PARSEC, 125.0, 1e-9);
-  const double width = lxg_distance_quantile(&distance, 0.8413447460685429) - lxg_distance_quantile(&distance, 0.5);
+  const double width =
+      lxg_distance_quantile(&distance, 0.8413447460685429) - lxg_distance_quantile(&distance, 0.5);
   assert_close(width / LXG_PARSEC, 125.0 * 1e-6, 1e-4);
 }
 END_TEST

@@ -32,10 +32,10 @@ END_TEST
 
 START_TEST(wind_thin) {
   const struct lxg_freefree_gas gas = hydrogen_at(reference_freefree[_i].temperature);
-  const struct lxg_freefree_wind wind = {
-      .mass_loss_rate = reference_freefree[_i].mdot_msun_yr * LXG_SOLAR_MASS / LXG_YEAR,
-      .speed = reference_freefree[_i].speed_km_s * LXG_KM,
-      .radius = reference_freefree[_i].radius_rsun * LXG_SOLAR_RADIUS};
+  const struct lxg_freefree_wind wind = {.mass_loss_rate =
+                                             reference_freefree[_i].mdot_msun_yr * LXG_SOLAR_MASS / LXG_YEAR,
+                                         .speed = reference_freefree[_i].speed_km_s * LXG_KM,
+                                         .radius = reference_freefree[_i].radius_rsun * LXG_SOLAR_RADIUS};
   const double frequency = reference_freefree[_i].frequency;
   /* Quadrature at 1e-10; constants of the two sides differ in the electron charge's last digits only. */
   assert_close(lxg_freefree_wind_thin(&gas, &wind, frequency), reference_freefree[_i].thin, 1e-8);
@@ -59,7 +59,8 @@ START_TEST(wind_limits) {
   const double frequency = 5.45e14;
   struct lxg_freefree_wind wind = {1e20, 6e7, 3e12};
   const double depth = lxg_freefree_wind_depth(&gas, &wind, frequency);
-  const double disc = lxg_photometry_planck(frequency, 9400.0) * 4.0 * LXG_PI * LXG_PI * wind.radius * wind.radius;
+  const double disc =
+      lxg_photometry_planck(frequency, 9400.0) * 4.0 * LXG_PI * LXG_PI * wind.radius * wind.radius;
   /* depth scales with Mdot^2 */
   const struct lxg_freefree_wind below = {1e20 * sqrt(0.999e-3 / (1.5 * LXG_PI * depth)), 6e7, 3e12};
   const struct lxg_freefree_wind above = {1e20 * sqrt(1.001e-3 / (1.5 * LXG_PI * depth)), 6e7, 3e12};
@@ -67,8 +68,10 @@ START_TEST(wind_limits) {
   assert_close((lxg_freefree_wind_whole(&gas, &above, frequency) - disc) /
                    (lxg_freefree_wind_whole(&gas, &below, frequency) - disc),
                1.001 / 0.999, 1e-6);
-  wind.mass_loss_rate = 1e20 * sqrt(1e9 / (1.5 * LXG_PI * depth)); /* a = 1e9: the disc is one part in a million */
-  assert_close(lxg_freefree_wind_whole(&gas, &wind, frequency), lxg_freefree_wind_thick(&gas, &wind, frequency), 3e-6);
+  wind.mass_loss_rate =
+      1e20 * sqrt(1e9 / (1.5 * LXG_PI * depth)); /* a = 1e9: the disc is one part in a million */
+  assert_close(lxg_freefree_wind_whole(&gas, &wind, frequency),
+               lxg_freefree_wind_thick(&gas, &wind, frequency), 3e-6);
 }
 END_TEST
 
@@ -82,12 +85,14 @@ START_TEST(radio_law) {
   gas.charges_sq /= weight;
   const struct lxg_freefree_wind wind = {1e-5 * LXG_SOLAR_MASS / LXG_YEAR, 1e8, 1.0};
   const double distance = 1e3 * LXG_PARSEC;
-  const double flux = lxg_freefree_wind_thick(&gas, &wind, 1e10) / (4.0 * LXG_PI * distance * distance) / 1e-26;
+  const double flux =
+      lxg_freefree_wind_thick(&gas, &wind, 1e10) / (4.0 * LXG_PI * distance * distance) / 1e-26;
   assert_close(flux, 5.097, 0.01);
   assert_close(flux, 5.12, 0.01);
   /* spectrum nu^0.6 (both papers): 0.600 is itself approximate */
-  const double slope = log(lxg_freefree_wind_thick(&gas, &wind, 1.1e10) / lxg_freefree_wind_thick(&gas, &wind, 1e10)) /
-                       log(1.1);
+  const double slope =
+      log(lxg_freefree_wind_thick(&gas, &wind, 1.1e10) / lxg_freefree_wind_thick(&gas, &wind, 1e10)) /
+      log(1.1);
   assert_near(slope, 0.6, 0.02);
 }
 END_TEST

@@ -27,11 +27,12 @@ START_TEST(bands) {
 END_TEST
 
 START_TEST(blackbody_magnitudes) {
-  const double m = lxg_photometry_blackbody(reference_magnitudes[_i].band, reference_magnitudes[_i].temperature,
-                                            reference_magnitudes[_i].radius_rsun * LXG_SOLAR_RADIUS);
+  const double m =
+      lxg_photometry_blackbody(reference_magnitudes[_i].band, reference_magnitudes[_i].temperature,
+                               reference_magnitudes[_i].radius_rsun * LXG_SOLAR_RADIUS);
   assert_near(m, reference_magnitudes[_i].magnitude, 1e-9);
-  const double radius = lxg_photometry_blackbody_radius(reference_magnitudes[_i].band,
-                                                        reference_magnitudes[_i].temperature, m);
+  const double radius =
+      lxg_photometry_blackbody_radius(reference_magnitudes[_i].band, reference_magnitudes[_i].temperature, m);
   assert_close(radius, reference_magnitudes[_i].radius_rsun * LXG_SOLAR_RADIUS, 1e-12);
   assert_near(lxg_photometry_magnitude(reference_magnitudes[_i].band,
                                        lxg_photometry_density(reference_magnitudes[_i].band, m)),
@@ -41,11 +42,13 @@ END_TEST
 
 START_TEST(energy_shares) {
   const double kev = 1e3 * LXG_ELECTRON_VOLT;
-  assert_close(lxg_photometry_energy_share(reference_shares[_i].temperature, reference_shares[_i].low_kev * kev,
+  assert_close(lxg_photometry_energy_share(reference_shares[_i].temperature,
+                                           reference_shares[_i].low_kev * kev,
                                            reference_shares[_i].high_kev * kev),
                reference_shares[_i].share, 1e-8);
   if (reference_shares[_i].low_kev == 0.2 && reference_shares[_i].high_kev == 1.0) {
-    assert_close(lxg_photometry_xray_share(reference_shares[_i].temperature), reference_shares[_i].share, 1e-8);
+    assert_close(lxg_photometry_xray_share(reference_shares[_i].temperature), reference_shares[_i].share,
+                 1e-8);
   }
 }
 END_TEST
@@ -54,15 +57,18 @@ END_TEST
 START_TEST(energy_share_limits) {
   const double kt = LXG_BOLTZMANN * 7.3e4;
   assert_close(lxg_photometry_energy_share(7.3e4, 0.0, 60.0 * kt), 1.0, 1e-12);
-  assert_close(lxg_photometry_energy_share(7.3e4, 0.0, 0.9999999 * kt) + lxg_photometry_energy_share(7.3e4, 0.9999999 * kt, 1.0000001 * kt) +
+  assert_close(lxg_photometry_energy_share(7.3e4, 0.0, 0.9999999 * kt) +
+                   lxg_photometry_energy_share(7.3e4, 0.9999999 * kt, 1.0000001 * kt) +
                    lxg_photometry_energy_share(7.3e4, 1.0000001 * kt, 60.0 * kt),
                1.0, 1e-8);
 }
 END_TEST
 
 START_TEST(colour_round_trip) {
-  static const enum lxg_band pairs[4][2] = {
-      {LXG_BAND_B, LXG_BAND_V}, {LXG_BAND_K, LXG_BAND_U}, {LXG_BAND_V, LXG_BAND_I}, {LXG_BAND_UV1455, LXG_BAND_V}};
+  static const enum lxg_band pairs[4][2] = {{LXG_BAND_B, LXG_BAND_V},
+                                            {LXG_BAND_K, LXG_BAND_U},
+                                            {LXG_BAND_V, LXG_BAND_I},
+                                            {LXG_BAND_UV1455, LXG_BAND_V}};
   static const double temperatures[3] = {2480.0, 8371.0, 61300.0};
   for (int k = 0; k < 4; k++) {
     for (int i = 0; i < 3; i++) {
@@ -80,8 +86,8 @@ END_TEST
 /* (B-V) of a black body at 10 000 K: -2.5 log10[(l_V/l_B)^3 (e^(14388/0.55 1e4) - 1)/(e^(14388/0.44 1e4) - 1) 3640/4260] with
  * c2 = 14387.77 um K, worked out by hand to the digits shown. */
 START_TEST(colour_by_hand) {
-  const double ratio = pow(0.55 / 0.44, 3.0) * expm1(14387.77 / (0.55 * 1e4)) / expm1(14387.77 / (0.44 * 1e4)) *
-                       3640.0 / 4260.0;
+  const double ratio = pow(0.55 / 0.44, 3.0) * expm1(14387.77 / (0.55 * 1e4)) /
+                       expm1(14387.77 / (0.44 * 1e4)) * 3640.0 / 4260.0;
   assert_near(lxg_photometry_colour(LXG_BAND_B, LXG_BAND_V, 1e4), -2.5 * log10(ratio), 1e-6);
 }
 END_TEST
@@ -90,18 +96,24 @@ START_TEST(colour_none) {
   struct lxg_error error = {0};
   double t = -1.0;
   const struct lxg_photometry_range range = lxg_photometry_default_range();
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, -0.9, range, &t, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, -0.9, range, &t, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "colour-blue");
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_V, LXG_BAND_B, 0.9, range, &t, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_V, LXG_BAND_B, 0.9, range, &t, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "colour-blue");
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, 9.0, range, &t, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, 9.0, range, &t, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "colour-red");
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_V, LXG_BAND_V, 0.0, range, &t, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_V, LXG_BAND_V, 0.0, range, &t, &error),
+                   LXG_INPUT);
   ck_assert_str_eq(error.code, "colour-bands");
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, NAN, range, &t, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, NAN, range, &t, &error),
+                   LXG_INPUT);
   ck_assert_str_eq(error.code, "colour-value");
   const struct lxg_photometry_range reversed = {9000.0, 5000.0};
-  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, 0.3, reversed, &t, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, 0.3, reversed, &t, &error),
+                   LXG_INPUT);
   ck_assert_str_eq(error.code, "colour-range");
   ck_assert(t == -1.0);
 }
@@ -112,10 +124,8 @@ END_TEST
 START_TEST(fit) {
   const double temperature = 9130.0;
   const double radius = 61.0 * LXG_SOLAR_RADIUS;
-  struct lxg_photometry_measure m[4] = {{LXG_BAND_B, 0.0, 0.031},
-                                        {LXG_BAND_V, 0.0, 0.017},
-                                        {LXG_BAND_I, 0.0, 0.052},
-                                        {LXG_BAND_K, 0.0, 0.07}};
+  struct lxg_photometry_measure m[4] = {
+      {LXG_BAND_B, 0.0, 0.031}, {LXG_BAND_V, 0.0, 0.017}, {LXG_BAND_I, 0.0, 0.052}, {LXG_BAND_K, 0.0, 0.07}};
   for (int i = 0; i < 4; i++) {
     m[i].magnitude = lxg_photometry_blackbody(m[i].band, temperature, radius);
   }
@@ -128,7 +138,9 @@ START_TEST(fit) {
   ck_assert(state.chi_sq < 1e-9 && state.degrees == 2);
   assert_status(lxg_photometry_fit(m, 2, range, &state, NULL), LXG_OK, NULL);
   double t = 0.0;
-  assert_status(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, m[0].magnitude - m[1].magnitude, range, &t, NULL), LXG_OK, NULL);
+  assert_status(lxg_photometry_colour_temperature(LXG_BAND_B, LXG_BAND_V, m[0].magnitude - m[1].magnitude,
+                                                  range, &t, NULL),
+                LXG_OK, NULL);
   assert_close(state.temperature, t, 1e-6);
   double ln_t[2];
   double ln_l[2];
@@ -168,7 +180,8 @@ END_TEST
 START_TEST(bolometric_scale) {
   assert_near(lxg_bolometric_magnitude(LXG_SOLAR_LUMINOSITY), 4.739996, 2e-6);
   assert_close(lxg_bolometric_luminosity(4.739996), LXG_SOLAR_LUMINOSITY, 1e-6);
-  assert_close(lxg_photometry_luminosity(-7.93, 0.0), 1.17e5 * LXG_SOLAR_LUMINOSITY, 0.01); /* V1974 Cyg row: 1.17e5 */
+  assert_close(lxg_photometry_luminosity(-7.93, 0.0), 1.17e5 * LXG_SOLAR_LUMINOSITY,
+               0.01); /* V1974 Cyg row: 1.17e5 */
   assert_near(lxg_bolometric_blackbody(LXG_BAND_V, 5772.0), -0.1, 0.1);
 }
 END_TEST
@@ -181,10 +194,19 @@ START_TEST(bolometric_small_at_f) {
 }
 END_TEST
 
+/* At constant L the visual light of a hot photosphere fades by 7.5 mag per decade of temperature (Bath & Shaviv 1976: T ~ 10^(dV/7.5));
+ * Rayleigh-Jeans light, h nu/kT = 0.05 at 5e5 K: 1 %. */
+START_TEST(constant_luminosity) {
+  const double fade = lxg_bolometric_blackbody(LXG_BAND_V, 5e5) - lxg_bolometric_blackbody(LXG_BAND_V, 1e6);
+  assert_close(fade, 7.5 * log10(2.0), 0.01);
+}
+END_TEST
+
 START_TEST(bolometric_table) {
   static const double keys[4] = {-0.2, 0.05, 0.31, 0.9};
   static const double corrections[4] = {-1.1, -0.25, 0.02, -0.3};
-  struct lxg_bolometric table = {.kind = LXG_BOLOMETRIC_TABLE, .count = 4, .keys = keys, .corrections = corrections};
+  struct lxg_bolometric table = {
+      .kind = LXG_BOLOMETRIC_TABLE, .count = 4, .keys = keys, .corrections = corrections};
   struct lxg_error error = {0};
   double bc = 7.0;
   assert_status(lxg_bolometric_check(&table, &error), LXG_OK, &error);
@@ -218,8 +240,8 @@ END_TEST
  * 4.6/um reaches A/A_V = 3.1 to 3.2 (E(lambda-V)/E(B-V) near 6.5), from memory. */
 static const struct {
   double x, ratio;
-} published[] = {{2.78, 1.569}, {1.82, 1.000}, {1.43, 0.751},
-                 {1.11, 0.479}, {0.80, 0.282}, {0.63, 0.190}, {0.46, 0.114}};
+} published[] = {{2.78, 1.569}, {1.82, 1.000}, {1.43, 0.751}, {1.11, 0.479},
+                 {0.80, 0.282}, {0.63, 0.190}, {0.46, 0.114}};
 
 START_TEST(extinction_law) {
   double ratio = 0.0;
@@ -310,15 +332,18 @@ START_TEST(members_round_trip) {
     struct lxg_photometry_member found[8];
     size_t count = 0;
     struct lxg_error error = {0};
-    assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 8, &count, &error), LXG_OK, &error);
+    assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 8, &count, &error), LXG_OK,
+                  &error);
     int hits = 0;
     for (size_t i = 0; i < count; i++) {
-      assert_near(lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, found[i].segment, found[i].fraction, NULL), m,
-                  1e-9);
+      assert_near(lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, found[i].segment,
+                                                  found[i].fraction, NULL),
+                  m, 1e-9);
       if (found[i].segment == segment && fabs(found[i].fraction - 0.377) < 1e-6) {
         hits++;
         ck_assert_int_eq(found[i].served, served);
-        assert_close(found[i].luminosity, lxg_photometry_stefan(found[i].temperature, found[i].radius), 1e-12);
+        assert_close(found[i].luminosity, lxg_photometry_stefan(found[i].temperature, found[i].radius),
+                     1e-12);
       }
     }
     ck_assert_msg(hits == 1, "segment %zu: %d hits among %zu", segment, hits, count);
@@ -341,18 +366,23 @@ START_TEST(members_all) {
   const double m = lxg_bolometric_magnitude(1.7e38) - lxg_bolometric_blackbody(LXG_BAND_V, 5100.0);
   struct lxg_photometry_member found[4];
   size_t count = 0;
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, NULL), LXG_OK, NULL);
+  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, NULL), LXG_OK,
+                NULL);
   ck_assert_uint_eq(count, 2);
   ck_assert(found[0].temperature > 7000.0 && found[0].segment < found[1].segment);
   assert_close(found[1].temperature, 5100.0, 2e-3); /* constant L is exact only at the nodes */
   const double node = lxg_photometry_blackbody(LXG_BAND_V, arrays.temperature[20], arrays.radius[20]);
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, node, found, 4, &count, NULL), LXG_OK, NULL);
+  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, node, found, 4, &count, NULL), LXG_OK,
+                NULL);
   ck_assert_uint_eq(count, 1);
-  const double last = lxg_photometry_blackbody(LXG_BAND_V, arrays.temperature[MEMBERS - 1], arrays.radius[MEMBERS - 1]);
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, last, found, 4, &count, NULL), LXG_OK, NULL);
+  const double last =
+      lxg_photometry_blackbody(LXG_BAND_V, arrays.temperature[MEMBERS - 1], arrays.radius[MEMBERS - 1]);
+  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, last, found, 4, &count, NULL), LXG_OK,
+                NULL);
   ck_assert(count >= 1 && found[count - 1].segment == MEMBERS - 2);
   struct lxg_error error = {0};
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 1, &count, &error), LXG_LIMIT);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 1, &count, &error),
+                   LXG_LIMIT);
   ck_assert_str_eq(error.code, "members-capacity");
 }
 END_TEST
@@ -376,7 +406,8 @@ START_TEST(members_kink) {
   struct lxg_photometry_member found[4];
   size_t count = 0;
   struct lxg_error error = {0};
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, &error), LXG_OK, &error);
+  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, &error), LXG_OK,
+                &error);
   ck_assert_uint_eq(count, 2);
   ck_assert_int_eq(found[0].served, LXG_LIGHT_PHOTOSPHERE);
   ck_assert_int_eq(found[1].served, LXG_LIGHT_FREEFREE);
@@ -391,20 +422,26 @@ START_TEST(members_none) {
   struct lxg_photometry_member found[4];
   struct lxg_error error = {0};
   size_t count = 9;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -14.0, found, 4, &count, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -14.0, found, 4, &count, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "members-bright");
   ck_assert_uint_eq(count, 0);
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, 3.0, found, 4, &count, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, 3.0, found, 4, &count, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "members-faint");
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, NAN, found, 4, &count, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, NAN, found, 4, &count, &error),
+                   LXG_INPUT);
   ck_assert_str_eq(error.code, "members-magnitude");
   family.speed = NULL;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
+                   LXG_INPUT);
   arrays.radius[11] = -1.0;
   family.speed = arrays.speed;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
+                   LXG_INPUT);
   family.count = 1;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error), LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
+                   LXG_INPUT);
   ck_assert_str_eq(error.code, "members-family");
 }
 END_TEST
@@ -425,6 +462,7 @@ Suite *suite_photometry(void) {
   tcase_add_test(tests, fit_none);
   tcase_add_test(tests, bolometric_scale);
   tcase_add_test(tests, bolometric_small_at_f);
+  tcase_add_test(tests, constant_luminosity);
   tcase_add_test(tests, bolometric_table);
   tcase_add_loop_test(tests, extinction_law, 0, sizeof published / sizeof published[0]);
   tcase_add_test(tests, extinction_joints);

@@ -9,10 +9,8 @@
 #include "luxgale/uncertainty.h"
 
 #include "helpers.h"
-#include "luxgale/memory.h"
 
 #include <stdio.h>
-#include <stdlib.h>
 #include <string.h>
 
 static const struct lxg_uncertainty_source sources[3] = {{"noise", LXG_UNCERTAINTY_EPOCH},
@@ -93,7 +91,8 @@ START_TEST(correlations) {
   const double half = 1.0 - 2.0 / 3.14159265358979; /* variance of a half normal */
   const double expected = 2.0 * half / sqrt(half * (4.0 * half + 1.16));
   assert_near(r.correlation[2], expected, 5.0 * (1.0 - expected * expected) / sqrt(1e4));
-  assert_near(r.correlation[1], 0.0, 5.0 * 1.5 / sqrt(2e4)); /* heavy tails of the product: factor below 1.5 */
+  assert_near(r.correlation[1], 0.0,
+              5.0 * 1.5 / sqrt(2e4)); /* heavy tails of the product: factor below 1.5 */
   for (int i = 0; i < 3; i++) {
     ck_assert(r.correlation[4 * i] == 1.0);
     for (int j = 0; j < 3; j++) {
@@ -245,7 +244,8 @@ static enum lxg_status failing(const void *shared, const struct lxg_uncertainty_
   return LXG_OK;
 }
 
-static enum lxg_status run_failing(const struct failing *how, struct lxg_uncertainty_result *r, struct lxg_error *error) {
+static enum lxg_status run_failing(const struct failing *how, struct lxg_uncertainty_result *r,
+                                   struct lxg_error *error) {
   const struct lxg_uncertainty_problem problem = {
       .sources = sources, .source_count = 1, .output_count = 1, .evaluate = failing, .shared = how};
   const struct lxg_uncertainty_options options = {.seed = 3, .draws = 4000, .split_draws = 500, .threads = 2};
