@@ -321,25 +321,32 @@ static struct lxg_light_options options_for(enum lxg_light light) {
   return options;
 }
 
+static struct lxg_photometry_search prepared(const struct lxg_photometry_family *family,
+                                             enum lxg_light light) {
+  const struct lxg_light_options options = options_for(light);
+  struct lxg_photometry_search search;
+  struct lxg_error error = {0};
+  assert_status(lxg_photometry_search_init(family, LXG_BAND_V, &options, &search, &error), LXG_OK, &error);
+  return search;
+}
+
 /* Round trip: the magnitude of a place finds that place again (among all with this magnitude), for each light. */
 START_TEST(members_round_trip) {
   struct family_arrays arrays;
   const struct lxg_photometry_family family = invented(&arrays);
-  const struct lxg_light_options options = options_for((enum lxg_light)_i);
+  struct lxg_photometry_search search = prepared(&family, (enum lxg_light)_i);
   for (size_t segment = 0; segment + 1 < MEMBERS; segment += 7) {
     enum lxg_light served = LXG_LIGHT_WHOLE;
-    const double m = lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, segment, 0.377, &served);
+    const double m = lxg_photometry_member_magnitude(&search, segment, 0.377, &served);
     struct lxg_photometry_member found[8];
     size_t count = 0;
     struct lxg_error error = {0};
-    assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 8, &count, &error), LXG_OK,
-                  &error);
+    assert_status(lxg_photometry_members(&search, m, found, 8, &count, &error), LXG_OK, &error);
     int hits = 0;
     for (size_t i = 0; i < count; i++) {
-      assert_near(lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, found[i].segment,
-                                                  found[i].fraction, NULL),
-                  m, 1e-9);
-      if (found[i].segment == segment && fabs(found[i].fraction - 0.377) < 1e-6) {
+      assert_near(lxg_photometry_member_magnitude(&search, found[i].segment, found[i].fraction, NULL), m,
+                  1e-11);
+      if (found[i].segment == segment && fabs(found[i].fraction - 0.377) < 1e-9) {
         hits++;
         ck_assert_int_eq(found[i].served, served);
         assert_close(found[i].luminosity, lxg_photometry_stefan(found[i].temperature, found[i].radius),
@@ -348,42 +355,63 @@ START_TEST(members_round_trip) {
     }
     ck_assert_msg(hits == 1, "segment %zu: %d hits among %zu", segment, hits, count);
   }
+  lxg_photometry_search_free(&search);
 }
 END_TEST
 
-/* The visual light of a cooling photosphere of nearly constant L has a maximum near 7000 K (the bolometric correction's): a
- * magnitude just below it has two members, on both sides; a node hit exactly counts once. */
+/* The lights themselves: L_nu of the photosphere by (P1), of the thin and whole wind by freefree.h, each at a node. */
+START_TEST(member_lights) {
+  struct family_arrays a;
+  const struct lxg_photometry_family family = invented(&a);
+  struct lxg_freefree_gas gas = options_for(LXG_LIGHT_WHOLE).gas;
+  gas.temperature = a.temperature[33];
+  const struct lxg_freefree_wind wind = {a.mass_loss_rate[33], a.speed[33], a.radius[33]};
+  const double frequency = lxg_band_frequency(LXG_BAND_V);
+  const double density[4] = {4.0 * LXG_PI * LXG_PI * lxg_photometry_planck(frequency, a.temperature[33]) *
+                                 a.radius[33] * a.radius[33],
+                             lxg_freefree_wind_thin(&gas, &wind, frequency), 0.0,
+                             lxg_freefree_wind_whole(&gas, &wind, frequency)};
+  for (int light = 0; light < 4; light++) {
+    struct lxg_photometry_search search = prepared(&family, (enum lxg_light)light);
+    const double expected = light == LXG_LIGHT_LARGER ? fmax(density[0], density[1]) : density[light];
+    assert_near(lxg_photometry_member_magnitude(&search, 33, 0.0, NULL),
+                lxg_photometry_magnitude(LXG_BAND_V, expected), 1e-10);
+    lxg_photometry_search_free(&search);
+  }
+}
+END_TEST
+
+/* The visual light of a cooling photosphere of constant L has a maximum near 7000 K (the bolometric correction's): a magnitude
+ * just below it has two members, on both sides; a node hit exactly counts once. */
 START_TEST(members_all) {
   struct family_arrays arrays;
   struct lxg_photometry_family family = invented(&arrays);
-  const struct lxg_light_options options = options_for(LXG_LIGHT_PHOTOSPHERE);
   for (int i = 0; i < MEMBERS; i++) { /* down to 3500 K */
     const double s = (double)i / (MEMBERS - 1);
     arrays.temperature[i] = 9e4 * pow(3.5e3 / 9e4, s);
     const double t2 = arrays.temperature[i] * arrays.temperature[i];
     arrays.radius[i] = sqrt(1.7e38 / (4.0 * LXG_PI * LXG_STEFAN_BOLTZMANN * t2 * t2));
   }
+  struct lxg_photometry_search search = prepared(&family, LXG_LIGHT_PHOTOSPHERE);
   const double m = lxg_bolometric_magnitude(1.7e38) - lxg_bolometric_blackbody(LXG_BAND_V, 5100.0);
   struct lxg_photometry_member found[4];
   size_t count = 0;
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, NULL), LXG_OK,
-                NULL);
+  assert_status(lxg_photometry_members(&search, m, found, 4, &count, NULL), LXG_OK, NULL);
   ck_assert_uint_eq(count, 2);
   ck_assert(found[0].temperature > 7000.0 && found[0].segment < found[1].segment);
-  assert_close(found[1].temperature, 5100.0, 2e-3); /* constant L is exact only at the nodes */
-  const double node = lxg_photometry_blackbody(LXG_BAND_V, arrays.temperature[20], arrays.radius[20]);
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, node, found, 4, &count, NULL), LXG_OK,
+  assert_close(found[1].temperature, 5100.0, 1e-9); /* R ~ T^-2 is straight in the logarithms */
+  assert_close(found[1].luminosity, 1.7e38, 1e-9);
+  assert_status(lxg_photometry_members(&search, search.magnitude[0][20], found, 4, &count, NULL), LXG_OK,
                 NULL);
   ck_assert_uint_eq(count, 1);
-  const double last =
-      lxg_photometry_blackbody(LXG_BAND_V, arrays.temperature[MEMBERS - 1], arrays.radius[MEMBERS - 1]);
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, last, found, 4, &count, NULL), LXG_OK,
-                NULL);
-  ck_assert(count >= 1 && found[count - 1].segment == MEMBERS - 2);
+  ck_assert(found[0].segment == 20 && found[0].fraction == 0.0);
+  assert_status(lxg_photometry_members(&search, search.magnitude[0][MEMBERS - 1], found, 4, &count, NULL),
+                LXG_OK, NULL);
+  ck_assert(count >= 1 && found[count - 1].segment == MEMBERS - 2 && found[count - 1].fraction == 1.0);
   struct lxg_error error = {0};
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 1, &count, &error),
-                   LXG_LIMIT);
+  ck_assert_int_eq(lxg_photometry_members(&search, m, found, 1, &count, &error), LXG_LIMIT);
   ck_assert_str_eq(error.code, "members-capacity");
+  lxg_photometry_search_free(&search);
 }
 END_TEST
 
@@ -395,54 +423,52 @@ START_TEST(members_kink) {
   static const double rate[2] = {2e21, 8e21};
   static const double speed[2] = {1e8, 1e8};
   const struct lxg_photometry_family family = {2, temperature, radius, rate, speed};
-  const struct lxg_light_options options = options_for(LXG_LIGHT_LARGER);
+  struct lxg_photometry_search search = prepared(&family, LXG_LIGHT_LARGER);
   enum lxg_light first = LXG_LIGHT_WHOLE;
   enum lxg_light last = LXG_LIGHT_WHOLE;
-  const double start = lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, 0, 0.0, &first);
-  const double end = lxg_photometry_member_magnitude(&family, LXG_BAND_V, &options, 0, 1.0, &last);
+  const double start = lxg_photometry_member_magnitude(&search, 0, 0.0, &first);
+  const double end = lxg_photometry_member_magnitude(&search, 0, 1.0, &last);
   ck_assert_int_eq(first, LXG_LIGHT_PHOTOSPHERE);
   ck_assert_int_eq(last, LXG_LIGHT_FREEFREE);
-  const double m = fmax(start, end) + 0.02;
   struct lxg_photometry_member found[4];
   size_t count = 0;
   struct lxg_error error = {0};
-  assert_status(lxg_photometry_members(&family, LXG_BAND_V, &options, m, found, 4, &count, &error), LXG_OK,
+  assert_status(lxg_photometry_members(&search, fmax(start, end) + 0.02, found, 4, &count, &error), LXG_OK,
                 &error);
   ck_assert_uint_eq(count, 2);
   ck_assert_int_eq(found[0].served, LXG_LIGHT_PHOTOSPHERE);
   ck_assert_int_eq(found[1].served, LXG_LIGHT_FREEFREE);
   ck_assert(found[0].fraction < found[1].fraction);
+  lxg_photometry_search_free(&search);
 }
 END_TEST
 
 START_TEST(members_none) {
   struct family_arrays arrays;
   struct lxg_photometry_family family = invented(&arrays);
-  const struct lxg_light_options options = options_for(LXG_LIGHT_LARGER);
+  struct lxg_photometry_search search = prepared(&family, LXG_LIGHT_LARGER);
   struct lxg_photometry_member found[4];
   struct lxg_error error = {0};
   size_t count = 9;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -14.0, found, 4, &count, &error),
-                   LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_members(&search, -14.0, found, 4, &count, &error), LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "members-bright");
   ck_assert_uint_eq(count, 0);
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, 3.0, found, 4, &count, &error),
-                   LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_photometry_members(&search, 3.0, found, 4, &count, &error), LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "members-faint");
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, NAN, found, 4, &count, &error),
-                   LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_members(&search, NAN, found, 4, &count, &error), LXG_INPUT);
   ck_assert_str_eq(error.code, "members-magnitude");
+  lxg_photometry_search_free(&search);
+  const struct lxg_light_options options = options_for(LXG_LIGHT_FREEFREE);
   family.speed = NULL;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
-                   LXG_INPUT);
-  arrays.radius[11] = -1.0;
+  ck_assert_int_eq(lxg_photometry_search_init(&family, LXG_BAND_V, &options, &search, &error), LXG_INPUT);
   family.speed = arrays.speed;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
-                   LXG_INPUT);
+  arrays.radius[11] = -1.0;
+  ck_assert_int_eq(lxg_photometry_search_init(&family, LXG_BAND_V, &options, &search, &error), LXG_INPUT);
   family.count = 1;
-  ck_assert_int_eq(lxg_photometry_members(&family, LXG_BAND_V, &options, -6.0, found, 4, &count, &error),
-                   LXG_INPUT);
+  ck_assert_int_eq(lxg_photometry_search_init(&family, LXG_BAND_V, &options, &search, &error), LXG_INPUT);
   ck_assert_str_eq(error.code, "members-family");
+  lxg_photometry_search_free(&search);
+  lxg_photometry_search_free(NULL);
 }
 END_TEST
 
@@ -469,6 +495,7 @@ Suite *suite_photometry(void) {
   tcase_add_test(tests, extinction_normalisation);
   tcase_add_test(tests, extinction_bands);
   tcase_add_loop_test(tests, members_round_trip, 0, 4);
+  tcase_add_test(tests, member_lights);
   tcase_add_test(tests, members_all);
   tcase_add_test(tests, members_kink);
   tcase_add_test(tests, members_none);

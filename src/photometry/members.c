@@ -4,16 +4,19 @@
  *
  * Each segment between neighbouring nodes is searched for each component of the light by itself (photosphere,
  * free-free): the brighter of two monotonic lights need not be monotonic, each of them is. A root of a component counts
- * for LARGER when the other component is not brighter there. A node that is hit exactly belongs to the segment after it
+ * for LARGER when the other component is not brighter there. Magnitudes are nearly straight in the fraction of a segment, so the
+ * Illinois form of regula falsi needs five or six evaluations. A node that is hit exactly belongs to the segment after it
  * (the last node to the last segment).
  */
-#include "luxgale/constants.h"
+#include "luxgale/memory.h"
 #include "luxgale/photometry.h"
 
 #include <math.h>
 #include <stdbool.h>
+#include <string.h>
 
-enum { BISECTIONS = 55 };
+static const double fraction_tolerance = 1e-13; /* of the place in a segment */
+enum { ROOT_STEPS = 100 };
 
 struct place {
   double temperature, radius, mass_loss_rate, speed;
@@ -40,7 +43,8 @@ static double component(const struct place *place, enum lxg_band band,
     return lxg_photometry_blackbody(band, place->temperature, place->radius);
   }
   struct lxg_freefree_gas gas = options->gas;
-  gas.temperature = options->gas_temperature > 0.0 ? options->gas_temperature : place->temperature;
+  const bool own = light == LXG_LIGHT_WHOLE || !(options->gas_temperature > 0.0);
+  gas.temperature = own ? place->temperature : options->gas_temperature;
   const struct lxg_freefree_wind wind = {
       .mass_loss_rate = place->mass_loss_rate, .speed = place->speed, .radius = place->radius};
   const double frequency = lxg_band_frequency(band);
@@ -49,20 +53,22 @@ static double component(const struct place *place, enum lxg_band band,
                                             : lxg_freefree_wind_thin(&gas, &wind, frequency));
 }
 
-double lxg_photometry_member_magnitude(const struct lxg_photometry_family *family, enum lxg_band band,
-                                       const struct lxg_light_options *options, size_t segment,
+double lxg_photometry_member_magnitude(const struct lxg_photometry_search *search, size_t segment,
                                        double fraction, enum lxg_light *served) {
-  const struct place place = place_at(family, segment, fraction);
-  enum lxg_light light = options->light;
-  if (light == LXG_LIGHT_LARGER) {
-    const double photosphere = component(&place, band, options, LXG_LIGHT_PHOTOSPHERE);
-    const double freefree = component(&place, band, options, LXG_LIGHT_FREEFREE);
-    light = freefree < photosphere ? LXG_LIGHT_FREEFREE : LXG_LIGHT_PHOTOSPHERE;
+  const struct place place = place_at(&search->family, segment, fraction);
+  double magnitude = component(&place, search->band, &search->options, search->light[0]);
+  enum lxg_light light = search->light[0];
+  if (search->lights == 2) {
+    const double other = component(&place, search->band, &search->options, search->light[1]);
+    if (other < magnitude) {
+      magnitude = other;
+      light = search->light[1];
+    }
   }
   if (served != NULL) {
     *served = light;
   }
-  return component(&place, band, options, light);
+  return magnitude;
 }
 
 static bool positive(const double values[], size_t i) {
@@ -90,110 +96,144 @@ static enum lxg_status check_family(const struct lxg_photometry_family *family,
   return LXG_OK;
 }
 
-/* Root of one component in a segment; false when there is none. */
-static bool root_in(const struct lxg_photometry_family *family, enum lxg_band band,
-                    const struct lxg_light_options *options, enum lxg_light light, double magnitude,
-                    size_t segment, double *fraction) {
-  const struct place start = place_at(family, segment, 0.0);
-  const struct place end = place_at(family, segment, 1.0);
-  const double first = component(&start, band, options, light) - magnitude;
-  const double last = component(&end, band, options, light) - magnitude;
-  const bool final = segment + 2 == family->count;
-  if (first == 0.0 || (last == 0.0 && final)) {
-    *fraction = first == 0.0 ? 0.0 : 1.0;
+static void fill(struct lxg_photometry_search *search) {
+  const size_t count = search->family.count;
+  search->brightest = INFINITY;
+  search->faintest = -INFINITY;
+  for (size_t i = 0; i < count; i++) {
+    const size_t segment = i + 1 < count ? i : i - 1;
+    const struct place place = place_at(&search->family, segment, i == segment ? 0.0 : 1.0);
+    double here = INFINITY;
+    for (size_t k = 0; k < search->lights; k++) {
+      search->magnitude[k][i] = component(&place, search->band, &search->options, search->light[k]);
+      here = fmin(here, search->magnitude[k][i]);
+    }
+    search->brightest = fmin(search->brightest, here);
+    search->faintest = fmax(search->faintest, here);
+  }
+}
+
+enum lxg_status lxg_photometry_search_init(const struct lxg_photometry_family *family, enum lxg_band band,
+                                           const struct lxg_light_options *options,
+                                           struct lxg_photometry_search *search, struct lxg_error *error) {
+  memset(search, 0, sizeof *search);
+  const enum lxg_status status = check_family(family, options, error);
+  if (status != LXG_OK) {
+    return status;
+  }
+  search->family = *family;
+  search->band = band;
+  search->options = *options;
+  search->lights = options->light == LXG_LIGHT_LARGER ? 2 : 1;
+  search->light[0] = options->light == LXG_LIGHT_LARGER ? LXG_LIGHT_PHOTOSPHERE : options->light;
+  search->light[1] = LXG_LIGHT_FREEFREE;
+  for (size_t k = 0; k < search->lights; k++) {
+    search->magnitude[k] = lxg_alloc(family->count, sizeof(double));
+    if (search->magnitude[k] == NULL) {
+      return lxg_error_set(error, LXG_MEMORY, "members-memory", "no memory for %zu members", family->count);
+    }
+  }
+  fill(search);
+  return LXG_OK;
+}
+
+void lxg_photometry_search_free(struct lxg_photometry_search *search) {
+  if (search != NULL) {
+    lxg_free(search->magnitude[0]);
+    lxg_free(search->magnitude[1]);
+    memset(search, 0, sizeof *search);
+  }
+}
+
+/* Root of light k in a segment; false when there is none. */
+static bool root_in(const struct lxg_photometry_search *search, size_t k, double magnitude, size_t segment,
+                    double *fraction) {
+  double at_low = search->magnitude[k][segment] - magnitude;
+  double at_high = search->magnitude[k][segment + 1] - magnitude;
+  const bool final = segment + 2 == search->family.count;
+  if (at_low == 0.0 || (at_high == 0.0 && final)) {
+    *fraction = at_low == 0.0 ? 0.0 : 1.0;
     return true;
   }
-  if (!(first * last < 0.0)) {
+  if (!(at_low * at_high < 0.0)) {
     return false;
   }
   double low = 0.0;
   double high = 1.0;
-  for (int i = 0; i < BISECTIONS; i++) {
-    const double middle = 0.5 * (low + high);
-    const struct place place = place_at(family, segment, middle);
-    if ((component(&place, band, options, light) - magnitude) * first > 0.0) {
-      low = middle;
-    } else {
+  int side = 0; /* which end stayed last time: its value is halved when it stays again */
+  for (int i = 0; i < ROOT_STEPS && high - low > fraction_tolerance; i++) {
+    const double middle = (low * at_high - high * at_low) / (at_high - at_low);
+    const struct place place = place_at(&search->family, segment, middle);
+    const double here = component(&place, search->band, &search->options, search->light[k]) - magnitude;
+    *fraction = middle;
+    if (fabs(here) < fraction_tolerance) {
+      return true;
+    }
+    if (here * at_low < 0.0) {
       high = middle;
+      at_high = here;
+      at_low *= side == 1 ? 0.5 : 1.0;
+      side = 1;
+    } else {
+      low = middle;
+      at_low = here;
+      at_high *= side == -1 ? 0.5 : 1.0;
+      side = -1;
     }
   }
-  *fraction = 0.5 * (low + high);
   return true;
 }
 
 /* Roots of a segment in rising order, at most two. */
-static size_t segment_roots(const struct lxg_photometry_family *family, enum lxg_band band,
-                            const struct lxg_light_options *options, double magnitude, size_t segment,
+static size_t segment_roots(const struct lxg_photometry_search *search, double magnitude, size_t segment,
                             double fraction[2], enum lxg_light light[2]) {
-  if (options->light != LXG_LIGHT_LARGER) {
-    light[0] = options->light;
-    return root_in(family, band, options, light[0], magnitude, segment, &fraction[0]) ? 1 : 0;
-  }
-  static const enum lxg_light lights[2] = {LXG_LIGHT_PHOTOSPHERE, LXG_LIGHT_FREEFREE};
   size_t found = 0;
-  for (int i = 0; i < 2; i++) {
+  for (size_t k = 0; k < search->lights; k++) {
     double at = 0.0;
-    if (!root_in(family, band, options, lights[i], magnitude, segment, &at)) {
+    if (!root_in(search, k, magnitude, segment, &at)) {
       continue;
     }
-    const struct place place = place_at(family, segment, at);
-    const double other = component(&place, band, options, lights[1 - i]);
-    if (other > magnitude || (other == magnitude && i == 0)) {
+    bool shines = true;
+    if (search->lights == 2) {
+      const struct place place = place_at(&search->family, segment, at);
+      const double other = component(&place, search->band, &search->options, search->light[1 - k]);
+      shines = other > magnitude || (other == magnitude && k == 0);
+    }
+    if (shines) {
       fraction[found] = at;
-      light[found] = lights[i];
+      light[found] = search->light[k];
       found++;
     }
   }
   if (found == 2 && fraction[1] < fraction[0]) {
     const double at = fraction[0];
+    const enum lxg_light which = light[0];
     fraction[0] = fraction[1];
+    light[0] = light[1];
     fraction[1] = at;
-    light[0] = LXG_LIGHT_FREEFREE;
-    light[1] = LXG_LIGHT_PHOTOSPHERE;
+    light[1] = which;
   }
   return found;
 }
 
-static enum lxg_status none_found(const struct lxg_photometry_family *family, enum lxg_band band,
-                                  const struct lxg_light_options *options, double magnitude,
-                                  struct lxg_error *error) {
-  double brightest = INFINITY;
-  double faintest = -INFINITY;
-  for (size_t i = 0; i < family->count; i++) {
-    const size_t segment = i + 1 < family->count ? i : i - 1;
-    const double here =
-        lxg_photometry_member_magnitude(family, band, options, segment, i == segment ? 0.0 : 1.0, NULL);
-    brightest = fmin(brightest, here);
-    faintest = fmax(faintest, here);
-  }
-  return lxg_error_set(error, LXG_NO_SOLUTION, magnitude < brightest ? "members-bright" : "members-faint",
-                       "absolute %s magnitude %.4f: this family shines between %.4f and %.4f",
-                       lxg_band_info(band)->name, magnitude, brightest, faintest);
-}
-
-enum lxg_status lxg_photometry_members(const struct lxg_photometry_family *family, enum lxg_band band,
-                                       const struct lxg_light_options *options, double magnitude,
+enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *search, double magnitude,
                                        struct lxg_photometry_member members[], size_t capacity, size_t *count,
                                        struct lxg_error *error) {
   *count = 0;
-  const enum lxg_status status = check_family(family, options, error);
-  if (status != LXG_OK) {
-    return status;
-  }
   if (!isfinite(magnitude)) {
     return lxg_error_set(error, LXG_INPUT, "members-magnitude", "absolute magnitude = %g: a finite number",
                          magnitude);
   }
-  for (size_t segment = 0; segment + 1 < family->count; segment++) {
+  for (size_t segment = 0; segment + 1 < search->family.count; segment++) {
     double fraction[2] = {0.0, 0.0};
-    enum lxg_light light[2] = {options->light, options->light};
-    const size_t found = segment_roots(family, band, options, magnitude, segment, fraction, light);
+    enum lxg_light light[2] = {search->light[0], search->light[0]};
+    const size_t found = segment_roots(search, magnitude, segment, fraction, light);
     for (size_t i = 0; i < found; i++) {
       if (*count == capacity) {
         return lxg_error_set(error, LXG_LIMIT, "members-capacity",
                              "more than %zu members have the magnitude %.4f", capacity, magnitude);
       }
-      const struct place place = place_at(family, segment, fraction[i]);
+      const struct place place = place_at(&search->family, segment, fraction[i]);
       members[*count] =
           (struct lxg_photometry_member){.segment = segment,
                                          .fraction = fraction[i],
@@ -204,5 +244,11 @@ enum lxg_status lxg_photometry_members(const struct lxg_photometry_family *famil
       (*count)++;
     }
   }
-  return *count > 0 ? LXG_OK : none_found(family, band, options, magnitude, error);
+  if (*count > 0) {
+    return LXG_OK;
+  }
+  return lxg_error_set(error, LXG_NO_SOLUTION,
+                       magnitude < search->brightest ? "members-bright" : "members-faint",
+                       "absolute %s magnitude %.4f: this family shines between %.4f and %.4f",
+                       lxg_band_info(search->band)->name, magnitude, search->brightest, search->faintest);
 }
