@@ -195,14 +195,19 @@ struct lxg_photometry_member {
   enum lxg_light served; /* PHOTOSPHERE or FREEFREE when LARGER was asked; else as asked */
 };
 
-/* A family prepared for searching in one band: magnitudes of all its members for each light that counts. */
+/* A family prepared for searching in one band: logarithms of its quantities and magnitudes of its members for each light
+ * that counts. */
 struct lxg_photometry_search {
-  struct lxg_photometry_family family; /* arrays borrowed: they must outlive the search */
+  size_t count; /* members */
   enum lxg_band band;
   struct lxg_light_options options;
-  size_t lights;              /* 1, or 2 for LARGER */
-  enum lxg_light light[2];    /* which they are */
-  double *magnitude[2];       /* [family.count] of each light [mag] */
+  size_t lights;           /* 1, or 2 for LARGER */
+  enum lxg_light light[2]; /* which they are */
+  double *magnitude[2];    /* [count] of each light [mag] */
+  double *ln_quantity
+      [4];        /* [count]: ln of temperature, radius, mass-loss rate, speed; the last two may be NULL */
+  size_t runs[2]; /* stretches of each light that only rise or only fall */
+  size_t *run[2]; /* [runs + 1] members at which they begin, and the last member */
   double brightest, faintest; /* over the members [mag] */
 };
 
@@ -219,9 +224,9 @@ double lxg_photometry_member_magnitude(const struct lxg_photometry_search *searc
                                        double fraction, enum lxg_light *served);
 
 /* All members whose absolute unreddened magnitude is `magnitude`, in the order of the family. Within a segment each
- * light is taken as monotonic (nodes dense enough). About 1 us for 200 members; no allocation; any number of threads.
+ * light is taken as monotonic (nodes dense enough). Well under 1 us each; no allocation; any number of threads.
  * LXG_INPUT "members-magnitude" for a magnitude that is no number; LXG_NO_SOLUTION "members-bright" or "members-faint" when
- * the family never shines so; LXG_LIMIT "members-capacity" when more than `capacity` exist (the first are filled in). */
+ * the family never shines so; LXG_LIMIT "members-capacity" when more than `capacity` exist (`members` is then full). */
 enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *search, double magnitude,
                                        struct lxg_photometry_member members[], size_t capacity, size_t *count,
                                        struct lxg_error *error);

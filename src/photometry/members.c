@@ -2,9 +2,10 @@
  *
  * members.c - all members of a family of winds that have a given absolute magnitude.
  *
- * Each segment between neighbouring nodes is searched for each component of the light by itself (photosphere,
- * free-free): the brighter of two monotonic lights need not be monotonic, each of them is. A root of a component counts
- * for LARGER when the other component is not brighter there. Magnitudes are nearly straight in the fraction of a segment, so the
+ * Each component of the light is searched by itself (photosphere, free-free): the brighter of two monotonic lights need not
+ * be monotonic, each of them is. A component's magnitudes are cut into runs that only rise or only fall, so that a run is
+ * searched by halving; in the segment so found the root is sought. It counts for LARGER when the other component is not
+ * brighter there. Magnitudes are nearly straight in the fraction of a segment, so the
  * Illinois form of regula falsi needs five or six evaluations. A node that is hit exactly belongs to the segment after it
  * (the last node to the last segment).
  */
@@ -15,23 +16,24 @@
 #include <stdbool.h>
 #include <string.h>
 
-static const double fraction_tolerance = 1e-13; /* of the place in a segment */
-enum { ROOT_STEPS = 100 };
+static const double fraction_tolerance = 1e-13;  /* of the place in a segment */
+static const double magnitude_tolerance = 1e-11; /* [mag] */
+enum { ROOT_STEPS = 100, TEMPERATURE = 0, RADIUS, MASS_LOSS_RATE, SPEED, QUANTITIES };
 
 struct place {
   double temperature, radius, mass_loss_rate, speed;
 };
 
-static double between(const double values[], size_t segment, double fraction) {
-  return values[segment] * pow(values[segment + 1] / values[segment], fraction);
+static double between(const double ln_values[], size_t segment, double fraction) {
+  return exp(ln_values[segment] + fraction * (ln_values[segment + 1] - ln_values[segment]));
 }
 
-static struct place place_at(const struct lxg_photometry_family *family, size_t segment, double fraction) {
-  struct place place = {.temperature = between(family->temperature, segment, fraction),
-                        .radius = between(family->radius, segment, fraction)};
-  if (family->mass_loss_rate != NULL && family->speed != NULL) {
-    place.mass_loss_rate = between(family->mass_loss_rate, segment, fraction);
-    place.speed = between(family->speed, segment, fraction);
+static struct place place_at(const struct lxg_photometry_search *search, size_t segment, double fraction) {
+  struct place place = {.temperature = between(search->ln_quantity[TEMPERATURE], segment, fraction),
+                        .radius = between(search->ln_quantity[RADIUS], segment, fraction)};
+  if (search->options.light != LXG_LIGHT_PHOTOSPHERE) {
+    place.mass_loss_rate = between(search->ln_quantity[MASS_LOSS_RATE], segment, fraction);
+    place.speed = between(search->ln_quantity[SPEED], segment, fraction);
   }
   return place;
 }
@@ -55,7 +57,7 @@ static double component(const struct place *place, enum lxg_band band,
 
 double lxg_photometry_member_magnitude(const struct lxg_photometry_search *search, size_t segment,
                                        double fraction, enum lxg_light *served) {
-  const struct place place = place_at(&search->family, segment, fraction);
+  const struct place place = place_at(search, segment, fraction);
   double magnitude = component(&place, search->band, &search->options, search->light[0]);
   enum lxg_light light = search->light[0];
   if (search->lights == 2) {
@@ -96,13 +98,29 @@ static enum lxg_status check_family(const struct lxg_photometry_family *family,
   return LXG_OK;
 }
 
+/* Cuts a light into runs: a member at which its slope changes sign ends one and begins the next. */
+static void find_runs(const double magnitude[], size_t count, size_t run[], size_t *runs) {
+  double direction = 0.0;
+  size_t found = 0;
+  run[0] = 0;
+  for (size_t i = 1; i < count; i++) {
+    const double step = magnitude[i] - magnitude[i - 1];
+    if (step * direction < 0.0) {
+      run[++found] = i - 1;
+    }
+    direction = step != 0.0 ? step : direction;
+  }
+  run[++found] = count - 1;
+  *runs = found;
+}
+
 static void fill(struct lxg_photometry_search *search) {
-  const size_t count = search->family.count;
+  const size_t count = search->count;
   search->brightest = INFINITY;
   search->faintest = -INFINITY;
   for (size_t i = 0; i < count; i++) {
     const size_t segment = i + 1 < count ? i : i - 1;
-    const struct place place = place_at(&search->family, segment, i == segment ? 0.0 : 1.0);
+    const struct place place = place_at(search, segment, i == segment ? 0.0 : 1.0);
     double here = INFINITY;
     for (size_t k = 0; k < search->lights; k++) {
       search->magnitude[k][i] = component(&place, search->band, &search->options, search->light[k]);
@@ -111,6 +129,33 @@ static void fill(struct lxg_photometry_search *search) {
     search->brightest = fmin(search->brightest, here);
     search->faintest = fmax(search->faintest, here);
   }
+  for (size_t k = 0; k < search->lights; k++) {
+    find_runs(search->magnitude[k], count, search->run[k], &search->runs[k]);
+  }
+}
+
+/* Memory of a search, filled with logarithms; false when some is missing. */
+static bool allocate(const struct lxg_photometry_family *family, struct lxg_photometry_search *search) {
+  const double *const values[QUANTITIES] = {family->temperature, family->radius, family->mass_loss_rate,
+                                            family->speed};
+  const size_t quantities = search->options.light == LXG_LIGHT_PHOTOSPHERE ? MASS_LOSS_RATE : QUANTITIES;
+  for (size_t q = 0; q < quantities; q++) {
+    search->ln_quantity[q] = lxg_alloc(family->count, sizeof(double));
+    for (size_t i = 0; search->ln_quantity[q] != NULL && i < family->count; i++) {
+      search->ln_quantity[q][i] = log(values[q][i]);
+    }
+    if (search->ln_quantity[q] == NULL) {
+      return false;
+    }
+  }
+  for (size_t k = 0; k < search->lights; k++) {
+    search->magnitude[k] = lxg_alloc(family->count, sizeof(double));
+    search->run[k] = lxg_alloc(family->count + 1, sizeof(size_t));
+    if (search->magnitude[k] == NULL || search->run[k] == NULL) {
+      return false;
+    }
+  }
+  return true;
 }
 
 enum lxg_status lxg_photometry_search_init(const struct lxg_photometry_family *family, enum lxg_band band,
@@ -121,17 +166,14 @@ enum lxg_status lxg_photometry_search_init(const struct lxg_photometry_family *f
   if (status != LXG_OK) {
     return status;
   }
-  search->family = *family;
+  search->count = family->count;
   search->band = band;
   search->options = *options;
   search->lights = options->light == LXG_LIGHT_LARGER ? 2 : 1;
   search->light[0] = options->light == LXG_LIGHT_LARGER ? LXG_LIGHT_PHOTOSPHERE : options->light;
   search->light[1] = LXG_LIGHT_FREEFREE;
-  for (size_t k = 0; k < search->lights; k++) {
-    search->magnitude[k] = lxg_alloc(family->count, sizeof(double));
-    if (search->magnitude[k] == NULL) {
-      return lxg_error_set(error, LXG_MEMORY, "members-memory", "no memory for %zu members", family->count);
-    }
+  if (!allocate(family, search)) {
+    return lxg_error_set(error, LXG_MEMORY, "members-memory", "no memory for %zu members", family->count);
   }
   fill(search);
   return LXG_OK;
@@ -139,8 +181,13 @@ enum lxg_status lxg_photometry_search_init(const struct lxg_photometry_family *f
 
 void lxg_photometry_search_free(struct lxg_photometry_search *search) {
   if (search != NULL) {
-    lxg_free(search->magnitude[0]);
-    lxg_free(search->magnitude[1]);
+    for (size_t k = 0; k < 2; k++) {
+      lxg_free(search->magnitude[k]);
+      lxg_free(search->run[k]);
+    }
+    for (size_t q = 0; q < QUANTITIES; q++) {
+      lxg_free(search->ln_quantity[q]);
+    }
     memset(search, 0, sizeof *search);
   }
 }
@@ -150,7 +197,7 @@ static bool root_in(const struct lxg_photometry_search *search, size_t k, double
                     double *fraction) {
   double at_low = search->magnitude[k][segment] - magnitude;
   double at_high = search->magnitude[k][segment + 1] - magnitude;
-  const bool final = segment + 2 == search->family.count;
+  const bool final = segment + 2 == search->count;
   if (at_low == 0.0 || (at_high == 0.0 && final)) {
     *fraction = at_low == 0.0 ? 0.0 : 1.0;
     return true;
@@ -163,10 +210,10 @@ static bool root_in(const struct lxg_photometry_search *search, size_t k, double
   int side = 0; /* which end stayed last time: its value is halved when it stays again */
   for (int i = 0; i < ROOT_STEPS && high - low > fraction_tolerance; i++) {
     const double middle = (low * at_high - high * at_low) / (at_high - at_low);
-    const struct place place = place_at(&search->family, segment, middle);
+    const struct place place = place_at(search, segment, middle);
     const double here = component(&place, search->band, &search->options, search->light[k]) - magnitude;
     *fraction = middle;
-    if (fabs(here) < fraction_tolerance) {
+    if (fabs(here) < magnitude_tolerance) {
       return true;
     }
     if (here * at_low < 0.0) {
@@ -184,36 +231,62 @@ static bool root_in(const struct lxg_photometry_search *search, size_t k, double
   return true;
 }
 
-/* Roots of a segment in rising order, at most two. */
-static size_t segment_roots(const struct lxg_photometry_search *search, double magnitude, size_t segment,
-                            double fraction[2], enum lxg_light light[2]) {
-  size_t found = 0;
-  for (size_t k = 0; k < search->lights; k++) {
-    double at = 0.0;
-    if (!root_in(search, k, magnitude, segment, &at)) {
-      continue;
-    }
-    bool shines = true;
-    if (search->lights == 2) {
-      const struct place place = place_at(&search->family, segment, at);
-      const double other = component(&place, search->band, &search->options, search->light[1 - k]);
-      shines = other > magnitude || (other == magnitude && k == 0);
-    }
-    if (shines) {
-      fraction[found] = at;
-      light[found] = search->light[k];
-      found++;
+/* The segment of a run that may hold the magnitude: the last that begins at or before it; false outside the run. */
+static bool segment_in(const double values[], size_t first, size_t last, double magnitude, size_t *segment) {
+  const double sign = values[last] >= values[first] ? 1.0 : -1.0;
+  if (sign * (magnitude - values[first]) < 0.0 || sign * (values[last] - magnitude) < 0.0) {
+    return false;
+  }
+  size_t low = first;
+  size_t high = last;
+  while (high - low > 1) {
+    const size_t middle = low + (high - low) / 2;
+    if (sign * (magnitude - values[middle]) >= 0.0) {
+      low = middle;
+    } else {
+      high = middle;
     }
   }
-  if (found == 2 && fraction[1] < fraction[0]) {
-    const double at = fraction[0];
-    const enum lxg_light which = light[0];
-    fraction[0] = fraction[1];
-    light[0] = light[1];
-    fraction[1] = at;
-    light[1] = which;
+  *segment = low;
+  return true;
+}
+
+/* True if light k, whose magnitude is met at a place, is the one that shines there. */
+static bool shines(const struct lxg_photometry_search *search, size_t k, double magnitude, size_t segment,
+                   double fraction) {
+  if (search->lights == 1) {
+    return true;
   }
-  return found;
+  const struct place place = place_at(search, segment, fraction);
+  const double other = component(&place, search->band, &search->options, search->light[1 - k]);
+  return other > magnitude || (other == magnitude && k == 0);
+}
+
+/* Puts a member into its place in the order of the family. */
+static void insert(const struct lxg_photometry_search *search, size_t k, size_t segment, double fraction,
+                   struct lxg_photometry_member members[], size_t count) {
+  size_t i = count;
+  while (i > 0 && (members[i - 1].segment > segment ||
+                   (members[i - 1].segment == segment && members[i - 1].fraction > fraction))) {
+    members[i] = members[i - 1];
+    i--;
+  }
+  const struct place place = place_at(search, segment, fraction);
+  members[i] =
+      (struct lxg_photometry_member){.segment = segment,
+                                     .fraction = fraction,
+                                     .temperature = place.temperature,
+                                     .radius = place.radius,
+                                     .luminosity = lxg_photometry_stefan(place.temperature, place.radius),
+                                     .served = search->light[k]};
+}
+
+static enum lxg_status none(const struct lxg_photometry_search *search, double magnitude,
+                            struct lxg_error *error) {
+  return lxg_error_set(error, LXG_NO_SOLUTION,
+                       magnitude < search->brightest ? "members-bright" : "members-faint",
+                       "absolute %s magnitude %.4f: this family shines between %.4f and %.4f",
+                       lxg_band_info(search->band)->name, magnitude, search->brightest, search->faintest);
 }
 
 enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *search, double magnitude,
@@ -224,31 +297,22 @@ enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *searc
     return lxg_error_set(error, LXG_INPUT, "members-magnitude", "absolute magnitude = %g: a finite number",
                          magnitude);
   }
-  for (size_t segment = 0; segment + 1 < search->family.count; segment++) {
-    double fraction[2] = {0.0, 0.0};
-    enum lxg_light light[2] = {search->light[0], search->light[0]};
-    const size_t found = segment_roots(search, magnitude, segment, fraction, light);
-    for (size_t i = 0; i < found; i++) {
+  for (size_t k = 0; k < search->lights; k++) {
+    for (size_t r = 0; r < search->runs[k]; r++) {
+      size_t segment = 0;
+      double fraction = 0.0;
+      if (!segment_in(search->magnitude[k], search->run[k][r], search->run[k][r + 1], magnitude, &segment) ||
+          !root_in(search, k, magnitude, segment, &fraction) ||
+          !shines(search, k, magnitude, segment, fraction)) {
+        continue;
+      }
       if (*count == capacity) {
         return lxg_error_set(error, LXG_LIMIT, "members-capacity",
                              "more than %zu members have the magnitude %.4f", capacity, magnitude);
       }
-      const struct place place = place_at(&search->family, segment, fraction[i]);
-      members[*count] =
-          (struct lxg_photometry_member){.segment = segment,
-                                         .fraction = fraction[i],
-                                         .temperature = place.temperature,
-                                         .radius = place.radius,
-                                         .luminosity = lxg_photometry_stefan(place.temperature, place.radius),
-                                         .served = light[i]};
+      insert(search, k, segment, fraction, members, *count);
       (*count)++;
     }
   }
-  if (*count > 0) {
-    return LXG_OK;
-  }
-  return lxg_error_set(error, LXG_NO_SOLUTION,
-                       magnitude < search->brightest ? "members-bright" : "members-faint",
-                       "absolute %s magnitude %.4f: this family shines between %.4f and %.4f",
-                       lxg_band_info(search->band)->name, magnitude, search->brightest, search->faintest);
+  return *count > 0 ? LXG_OK : none(search, magnitude, error);
 }
