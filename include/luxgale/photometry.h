@@ -208,6 +208,8 @@ struct lxg_photometry_search {
       [4];        /* [count]: ln of temperature, radius, mass-loss rate, speed; the last two may be NULL */
   size_t runs[2]; /* stretches of each light that only rise or only fall */
   size_t *run[2]; /* [runs + 1] members at which they begin, and the last member */
+  double theta;   /* h nu/k of the band [K] */
+  double offset;  /* magnitude of a black body with R = 1 cm where exp(theta/T) = 2 [mag] */
   double brightest, faintest; /* over the members [mag] */
 };
 

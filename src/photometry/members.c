@@ -9,6 +9,7 @@
  * Illinois form of regula falsi needs five or six evaluations. A node that is hit exactly belongs to the segment after it
  * (the last node to the last segment).
  */
+#include "luxgale/constants.h"
 #include "luxgale/memory.h"
 #include "luxgale/photometry.h"
 
@@ -38,30 +39,40 @@ static struct place place_at(const struct lxg_photometry_search *search, size_t 
   return place;
 }
 
+/* Black-body magnitude, offset + 2.5 log10(exp(theta/T) - 1) - 5 log10 R: (P1) with as few logarithms as it takes. */
+static double photosphere(const struct lxg_photometry_search *search, size_t segment, double fraction) {
+  const double *ln_t = search->ln_quantity[TEMPERATURE] + segment;
+  const double *ln_r = search->ln_quantity[RADIUS] + segment;
+  const double x = search->theta * exp(-(ln_t[0] + fraction * (ln_t[1] - ln_t[0])));
+  const double ln_radius = ln_r[0] + fraction * (ln_r[1] - ln_r[0]);
+  return search->offset + 2.5 / LXG_LN10 * (log(expm1(x)) - 2.0 * ln_radius);
+}
+
 /* Absolute magnitude of one component at a place. */
-static double component(const struct place *place, enum lxg_band band,
-                        const struct lxg_light_options *options, enum lxg_light light) {
+static double component(const struct lxg_photometry_search *search, enum lxg_light light, size_t segment,
+                        double fraction) {
   if (light == LXG_LIGHT_PHOTOSPHERE) {
-    return lxg_photometry_blackbody(band, place->temperature, place->radius);
+    return photosphere(search, segment, fraction);
   }
+  const struct place place = place_at(search, segment, fraction);
+  const struct lxg_light_options *options = &search->options;
   struct lxg_freefree_gas gas = options->gas;
   const bool own = light == LXG_LIGHT_WHOLE || !(options->gas_temperature > 0.0);
-  gas.temperature = own ? place->temperature : options->gas_temperature;
+  gas.temperature = own ? place.temperature : options->gas_temperature;
   const struct lxg_freefree_wind wind = {
-      .mass_loss_rate = place->mass_loss_rate, .speed = place->speed, .radius = place->radius};
-  const double frequency = lxg_band_frequency(band);
-  return lxg_photometry_magnitude(band, light == LXG_LIGHT_WHOLE
-                                            ? lxg_freefree_wind_whole(&gas, &wind, frequency)
-                                            : lxg_freefree_wind_thin(&gas, &wind, frequency));
+      .mass_loss_rate = place.mass_loss_rate, .speed = place.speed, .radius = place.radius};
+  const double frequency = lxg_band_frequency(search->band);
+  return lxg_photometry_magnitude(search->band, light == LXG_LIGHT_WHOLE
+                                                    ? lxg_freefree_wind_whole(&gas, &wind, frequency)
+                                                    : lxg_freefree_wind_thin(&gas, &wind, frequency));
 }
 
 double lxg_photometry_member_magnitude(const struct lxg_photometry_search *search, size_t segment,
                                        double fraction, enum lxg_light *served) {
-  const struct place place = place_at(search, segment, fraction);
-  double magnitude = component(&place, search->band, &search->options, search->light[0]);
+  double magnitude = component(search, search->light[0], segment, fraction);
   enum lxg_light light = search->light[0];
   if (search->lights == 2) {
-    const double other = component(&place, search->band, &search->options, search->light[1]);
+    const double other = component(search, search->light[1], segment, fraction);
     if (other < magnitude) {
       magnitude = other;
       light = search->light[1];
@@ -120,10 +131,10 @@ static void fill(struct lxg_photometry_search *search) {
   search->faintest = -INFINITY;
   for (size_t i = 0; i < count; i++) {
     const size_t segment = i + 1 < count ? i : i - 1;
-    const struct place place = place_at(search, segment, i == segment ? 0.0 : 1.0);
+    const double fraction = i == segment ? 0.0 : 1.0;
     double here = INFINITY;
     for (size_t k = 0; k < search->lights; k++) {
-      search->magnitude[k][i] = component(&place, search->band, &search->options, search->light[k]);
+      search->magnitude[k][i] = component(search, search->light[k], segment, fraction);
       here = fmin(here, search->magnitude[k][i]);
     }
     search->brightest = fmin(search->brightest, here);
@@ -168,6 +179,8 @@ enum lxg_status lxg_photometry_search_init(const struct lxg_photometry_family *f
   }
   search->count = family->count;
   search->band = band;
+  search->theta = LXG_PLANCK * lxg_band_frequency(band) / LXG_BOLTZMANN;
+  search->offset = lxg_photometry_blackbody(band, search->theta / log(2.0), 1.0);
   search->options = *options;
   search->lights = options->light == LXG_LIGHT_LARGER ? 2 : 1;
   search->light[0] = options->light == LXG_LIGHT_LARGER ? LXG_LIGHT_PHOTOSPHERE : options->light;
@@ -210,8 +223,7 @@ static bool root_in(const struct lxg_photometry_search *search, size_t k, double
   int side = 0; /* which end stayed last time: its value is halved when it stays again */
   for (int i = 0; i < ROOT_STEPS && high - low > fraction_tolerance; i++) {
     const double middle = (low * at_high - high * at_low) / (at_high - at_low);
-    const struct place place = place_at(search, segment, middle);
-    const double here = component(&place, search->band, &search->options, search->light[k]) - magnitude;
+    const double here = component(search, search->light[k], segment, middle) - magnitude;
     *fraction = middle;
     if (fabs(here) < magnitude_tolerance) {
       return true;
@@ -257,8 +269,7 @@ static bool shines(const struct lxg_photometry_search *search, size_t k, double 
   if (search->lights == 1) {
     return true;
   }
-  const struct place place = place_at(search, segment, fraction);
-  const double other = component(&place, search->band, &search->options, search->light[1 - k]);
+  const double other = component(search, search->light[1 - k], segment, fraction);
   return other > magnitude || (other == magnitude && k == 0);
 }
 
