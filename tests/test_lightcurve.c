@@ -142,6 +142,11 @@ START_TEST(dust_dip) {
   ck_assert_uint_eq(d.gap[0].excluded, 5);
   assert_close(d.gap[0].from, 16.0, 1e-12);
   assert_close(d.gap[0].to, 28.0, 1e-12);
+  /* one point left out of an even row: 4 d are no empty gap at day 36, yet the bridge is declared */
+  assert_status(lxg_lightcurve_exclude(&curve, 34.0, 34.0, &count, NULL), LXG_OK, NULL);
+  assert_status(lxg_lightcurve_decline(&curve, &options, &d, NULL), LXG_OK, NULL);
+  ck_assert_uint_eq(d.gap_count, 2);
+  ck_assert_uint_eq(d.gap[1].excluded, 1);
   struct lxg_error error = {0};
   ck_assert_int_eq(lxg_lightcurve_exclude(&curve, 26.0, 18.0, NULL, &error), LXG_INPUT);
   ck_assert_str_eq(error.code, "lightcurve-window");
