@@ -54,7 +54,7 @@ enum lxg_status lxg_extinction_ratio(double wavelength, double r_v, double *rati
   } else if (x < x_uv) {
     a = polynomial(optical_a, 8, x - 1.82);
     b = polynomial(optical_b, 8, x - 1.82);
-  } else if (x < x_far) {
+  } else if (x <= x_far) {
     ultraviolet(x, &a, &b);
   } else {
     a = polynomial(far_a, 4, x - x_far);
