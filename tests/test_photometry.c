@@ -414,6 +414,8 @@ START_TEST(members_all) {
   ck_assert(found[0].temperature > 7000.0 && found[0].segment < found[1].segment);
   assert_close(found[1].temperature, 5100.0, 1e-9); /* R ~ T^-2 is straight in the logarithms */
   assert_close(found[1].luminosity, 1.7e38, 1e-9);
+  ck_assert_uint_eq(lxg_photometry_nearest(found, 2, (double)found[1].segment - 2.0), 1);
+  ck_assert_uint_eq(lxg_photometry_nearest(found, 2, 0.0), 0);
   assert_status(lxg_photometry_members(&search, search.magnitude[0][20], found, 4, &count, NULL), LXG_OK,
                 NULL);
   ck_assert_uint_eq(count, 1);

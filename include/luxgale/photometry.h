@@ -233,6 +233,10 @@ enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *searc
                                        struct lxg_photometry_member members[], size_t capacity, size_t *count,
                                        struct lxg_error *error);
 
+/* Index of the member nearest to a place `segment + fraction` of the family, so that a caller can follow one branch from epoch to
+ * epoch; count >= 1. */
+size_t lxg_photometry_nearest(const struct lxg_photometry_member members[], size_t count, double place);
+
 /* Way (a): L [erg s^-1] = L_0 10^(-0.4 (M_band + BC)). */
 double lxg_photometry_luminosity(double magnitude, double correction);
 

@@ -327,3 +327,16 @@ enum lxg_status lxg_photometry_members(const struct lxg_photometry_search *searc
   }
   return *count > 0 ? LXG_OK : none(search, magnitude, error);
 }
+
+size_t lxg_photometry_nearest(const struct lxg_photometry_member members[], size_t count, double place) {
+  size_t best = 0;
+  double least = INFINITY;
+  for (size_t i = 0; i < count; i++) {
+    const double away = fabs((double)members[i].segment + members[i].fraction - place);
+    if (away < least) {
+      least = away;
+      best = i;
+    }
+  }
+  return best;
+}
