@@ -194,8 +194,8 @@ START_TEST(bolometric_small_at_f) {
 }
 END_TEST
 
-/* At constant L the visual light of a hot photosphere fades by 7.5 mag per decade of temperature (Bath & Shaviv 1976: T ~ 10^(dV/7.5));
- * Rayleigh-Jeans light, h nu/kT = 0.05 at 5e5 K: 1 %. */
+/* At constant L the visual light of a hot photosphere fades by 7.5 mag per decade of temperature (Bath & Shaviv 1976,
+ * T ~ 10^(dV/7.5)); Rayleigh-Jeans light, h nu/kT = 0.05 at 5e5 K: 1 %. */
 START_TEST(constant_luminosity) {
   const double fade = lxg_bolometric_blackbody(LXG_BAND_V, 5e5) - lxg_bolometric_blackbody(LXG_BAND_V, 1e6);
   assert_close(fade, 7.5 * log10(2.0), 0.01);
@@ -237,8 +237,7 @@ START_TEST(bolometric_table) {
 END_TEST
 
 /* Cardelli, Clayton & Mathis 1989, table 3, R_V = 3.1 (from memory): x [1/um] and A/A_V, printed to three digits,
- * x to two: 0.006. Its B is left out (printed 1.337 at x = 2.27, where the law itself gives 1 + 1/R_V, see below). Beyond 3.3/um their figure-level values: the bump at
- * 4.6/um reaches A/A_V = 3.1 to 3.2 (E(lambda-V)/E(B-V) near 6.5), from memory. */
+ * x to two: 0.006. Its B is left out (printed 1.337 at x = 2.27, where the law itself gives 1 + 1/R_V, see below). */
 static const struct {
   double x, ratio;
 } published[] = {{2.78, 1.569}, {1.82, 1.000}, {1.43, 0.751}, {1.11, 0.479},

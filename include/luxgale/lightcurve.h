@@ -75,8 +75,9 @@ struct lxg_lightcurve_options {
 
 /* Fills an unset curve from a table with columns: one of time_d, jd, mjd; band (text); magnitude; error, upper_limit,
  * excluded (0 or 1), the last three optional. Sorted. Errors of table.h; "lightcurve-columns" without exactly one time
- * column, "lightcurve-unit" for a time not in d or a magnitude not in mag, "lightcurve-flag" for a flag other than 0 and 1, "band-unknown", and those of lxg_lightcurve_add, each with the
- * line of the file; "lightcurve-empty" for a table without rows. The curve is valid to free in every case. */
+ * column, "lightcurve-unit" for a time not in d or a magnitude not in mag, "lightcurve-flag" for a flag other than 0 and 1,
+ * "band-unknown", and those of lxg_lightcurve_add, each with the line of the file; "lightcurve-empty" for a table without
+ * rows. The curve is valid to free in every case. */
 enum lxg_status lxg_lightcurve_read(const struct lxg_table *table,
                                     const struct lxg_lightcurve_options *options,
                                     struct lxg_light_curve *curve, struct lxg_error *error);

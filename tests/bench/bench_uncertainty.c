@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * uncertainty.c - time and memory of a Monte Carlo of the size the program promises: 10,000 draws of 1,000 epochs, five
+ * bench_uncertainty.c - time and memory of a Monte Carlo of the size the program promises: 10,000 draws of 1,000 epochs, five
  * sources, variance split with 1,000 rows, intervals of 4 columns at every epoch, two threads. Each epoch
  * is found by its V magnitude (black body) in an invented family of 200 members. Bar: 10 s on two
  * cores, that is 20 s of processor time (other work on the machine does not count), and 200 MiB. Exit status 1 when missed.
