@@ -5,9 +5,9 @@
  * is found by its V magnitude (black body) in an invented family of 200 members. Bar: 10 s on two
  * cores, that is 20 s of processor time (other work on the machine does not count), and 200 MiB. Exit status 1 when missed.
  */
-#include "luxgale/uncertainty.h"
 #include "luxgale/constants.h"
 #include "luxgale/photometry.h"
+#include "luxgale/uncertainty.h"
 
 #include <math.h>
 #include <stdio.h>
