@@ -116,6 +116,9 @@ static double halo(double a) {
   if (a < series_limit) {
     return a * (2.0 - a / 4.0 + 2.0 * a * a / 42.0); /* termwise integration, next term a^4/120 */
   }
+  if (!(a >= 0.0)) {
+    return NAN; /* a wind that is no number */
+  }
   gsl_sf_result share = {0.0, 0.0};
   if (a > 700.0) { /* the complete function to all digits */
     share.val = 1.0;
