@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * test_fit.c - least squares against closed forms (straight line, one-point problems), a certified nonlinear regression
- * problem (NIST StRD "Misra1a", digits from memory, RSS confirmed with SciPy), and the statistics of simulated data.
+ * test_fit.c - least squares against closed forms (straight line, one-point problems), a certified nonlinear
+ * regression problem (NIST StRD "Misra1a", digits from memory, RSS confirmed with SciPy), and the statistics of
+ * simulated data.
  */
 #include "helpers.h"
 #include "luxgale/fit.h"
@@ -43,8 +44,8 @@ static struct line_data a_line(void) {
   return data;
 }
 
-/* Weighted straight line: textbook sums (Bevington 1969, ch. 6). In a linear problem the profile interval is +/- sigma
- * exactly; its ends are located to 1e-3 sigma by default. */
+/* Weighted straight line: textbook sums (Bevington 1969, ch. 6). In a linear problem the profile interval is +/-
+ * sigma exactly; its ends are located to 1e-3 sigma by default. */
 START_TEST(straight_line) {
   struct line_data data = a_line();
   double s = 0.0, sx = 0.0, sy = 0.0, sxx = 0.0, sxy = 0.0;
@@ -84,8 +85,9 @@ START_TEST(straight_line) {
 }
 END_TEST
 
-/* NIST StRD Misra1a: y = b1 (1 - exp(-b2 x)). Certified: b1 = 2.3894212918e2 (s.d. 2.7070075241), b2 = 5.5015643181e-4
- * (s.d. 7.2668688436e-6), RSS = 1.2455138894e-1, start 500, 1e-4; all from memory. s.d. are scaled by RSS/12. */
+/* NIST StRD Misra1a: y = b1 (1 - exp(-b2 x)). Certified: b1 = 2.3894212918e2 (s.d. 2.7070075241), b2 =
+ * 5.5015643181e-4 (s.d. 7.2668688436e-6), RSS = 1.2455138894e-1, start 500, 1e-4; all from memory. s.d. are
+ * scaled by RSS/12. */
 static const double misra_x[] = {77.6,  114.9, 141.1, 190.8, 239.9, 289.0, 332.8,
                                  378.4, 434.8, 477.3, 536.8, 593.1, 689.1, 760.0};
 static const double misra_y[] = {10.07, 14.73, 17.94, 23.93, 29.61, 35.18, 40.02,
@@ -134,7 +136,8 @@ static enum lxg_status square_residual(void *context, const double p[], double r
   return LXG_OK;
 }
 
-/* chi^2 = 1 exactly at sqrt(y +/- sigma); beyond the model's domain the interval ends at its edge. Bisection to 1e-3 sigma. */
+/* chi^2 = 1 exactly at sqrt(y +/- sigma); beyond the model's domain the interval ends at its edge. Bisection to
+ * 1e-3 sigma. */
 START_TEST(profile_of_one_point) {
   struct point point = {.y = 3.1, .sigma = 1.3, .limit = INFINITY};
   const struct lxg_fit_parameter parameter = {.name = "p", .kind = LXG_FIT_POSITIVE, .start = 0.4};
@@ -204,8 +207,8 @@ START_TEST(fewer_data_than_parameters) {
 }
 END_TEST
 
-/* A positive quantity whose datum is below zero, y = -0.4 +/- 1 with p > 0: chi^2 = (0.4 + p)^2, least at p -> 0 (0.16); it has
- * risen by 1 at p = sqrt(1.16) - 0.4. Below there is no limit. */
+/* A positive quantity whose datum is below zero, y = -0.4 +/- 1 with p > 0: chi^2 = (0.4 + p)^2, least at p -> 0
+ * (0.16); it has risen by 1 at p = sqrt(1.16) - 0.4. Below there is no limit. */
 static enum lxg_status limit_residual(void *context, const double p[], double r[]) {
   (void)context;
   r[0] = -0.4 - p[0];
@@ -227,8 +230,8 @@ START_TEST(upper_limit) {
 }
 END_TEST
 
-/* chi^2 of a quartic with two valleys: (p^2 - 4)^2 + (p - 1)/4 ...: start in the higher one; the profile crosses a barrier
- * of less than 1 and the fit begins again in the lower valley near p = -1. */
+/* chi^2 of a quartic with two valleys: (p^2 - 4)^2 + (p - 1)/4 ...: start in the higher one; the profile crosses
+ * a barrier of less than 1 and the fit begins again in the lower valley near p = -1. */
 static enum lxg_status valleys_residual(void *context, const double p[], double r[]) {
   (void)context;
   r[0] = 0.8 * (p[0] * p[0] - 1.0);
@@ -249,8 +252,8 @@ START_TEST(lower_minimum_is_taken) {
 }
 END_TEST
 
-/* Coverage: 400 seeded straight lines with Gaussian noise; the truth lies in the 68.27 % profile interval that often, within
- * 2.6 binomial standard deviations (0.0233). */
+/* Coverage: 400 seeded straight lines with Gaussian noise; the truth lies in the 68.27 % profile interval that
+ * often, within 2.6 binomial standard deviations (0.0233). */
 START_TEST(interval_coverage) {
   gsl_rng *rng = gsl_rng_alloc(gsl_rng_mt19937);
   gsl_rng_set(rng, 20260101);

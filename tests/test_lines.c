@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * test_lines.c - wavelengths against published pairs and two other published dispersion formulas, Doppler shifts against
- * identities of special relativity, error propagation against differences, assignment against Bayes' rule written out, and the
- * naming of bad rows.
+ * test_lines.c - wavelengths against published pairs and two other published dispersion formulas, Doppler shifts
+ * against identities of special relativity, error propagation against differences, assignment against Bayes' rule
+ * written out, and the naming of bad rows.
  */
 #include "helpers.h"
 #include "luxgale/constants.h"
@@ -14,12 +14,14 @@
 
 static const double km = 1e5, angstrom = 1e-8;
 
-/* Air and vacuum wavelengths of a widely used survey line list (SDSS spectroscopic line table, from memory), 0.01 Angstrom. */
+/* Air and vacuum wavelengths of a widely used survey line list (SDSS spectroscopic line table, from memory), 0.01
+ * Angstrom. */
 static const double pairs[][2] = {{4861.363, 4862.721}, {4958.911, 4960.295}, {5006.843, 5008.239},
                                   {6562.80, 6564.61},   {6716.44, 6718.29},   {6730.82, 6732.68}};
 
-/* Ciddor 1996, Appl. Opt. 35, 1566: n - 1 = 0.05792105/(238.0185 - s^2) + 0.00167917/(57.362 - s^2); Edlen 1953 in the form of Morton
- * 1991: n - 1 = 6.4328e-5 + 2.94981e-2/(146 - s^2) + 2.5540e-4/(41 - s^2). Both from memory. */
+/* Ciddor 1996, Appl. Opt. 35, 1566: n - 1 = 0.05792105/(238.0185 - s^2) + 0.00167917/(57.362 - s^2); Edlen 1953
+ * in the form of Morton 1991: n - 1 = 6.4328e-5 + 2.94981e-2/(146 - s^2) + 2.5540e-4/(41 - s^2). Both from
+ * memory. */
 static double ciddor(double vacuum_angstrom) {
   const double s2 = pow(1e4 / vacuum_angstrom, 2.0);
   return 1.0 + 0.05792105 / (238.0185 - s2) + 0.00167917 / (57.362 - s2);
@@ -35,7 +37,8 @@ START_TEST(air_and_vacuum) {
     assert_near(lxg_line_vacuum(pairs[i][0] * angstrom) / angstrom, pairs[i][1], 0.01);
   }
   for (double w = 2100.0; w < 25000.0; w *= 1.17) {
-    /* The three determinations of the index agree to 2e-8 above 3000 Angstrom and 1e-7 below: 0.03 km/s at worst. */
+    /* The three determinations of the index agree to 2e-8 above 3000 Angstrom and 1e-7 below: 0.03 km/s at worst.
+     * */
     const double agreement = w > 3000.0 ? 3e-8 : 1e-7;
     assert_near(lxg_line_refraction(w * angstrom), ciddor(w), agreement);
     assert_near(lxg_line_refraction(w * angstrom), edlen(w), agreement);
@@ -45,7 +48,8 @@ START_TEST(air_and_vacuum) {
 }
 END_TEST
 
-/* Opposite shifts of one speed multiply to 1; speeds add as (a + b)/(1 + ab); first order v/c = q - 1; 0.6 c has q = 2. */
+/* Opposite shifts of one speed multiply to 1; speeds add as (a + b)/(1 + ab); first order v/c = q - 1; 0.6 c has
+ * q = 2. */
 START_TEST(doppler) {
   const double c = LXG_SPEED_OF_LIGHT;
   assert_close(lxg_line_doppler(2.0), 0.6 * c, 1e-15);
@@ -63,7 +67,8 @@ static struct lxg_lines *make(const struct lxg_line_input *input, size_t count) 
   return lines;
 }
 
-/* The first P Cygni line of V1668 Cyg 1978: H alpha at -600 km/s (IAU Circular 3268) in every way of writing it. */
+/* The first P Cygni line of V1668 Cyg 1978: H alpha at -600 km/s (IAU Circular 3268) in every way of writing it.
+ * */
 START_TEST(all_measures_agree) {
   const double rest = 6562.80 * angstrom, vacuum_rest = lxg_line_vacuum(rest);
   const double b = 600.0 * km / LXG_SPEED_OF_LIGHT, q = sqrt((1.0 - b) / (1.0 + b));
@@ -108,7 +113,8 @@ START_TEST(all_measures_agree) {
 }
 END_TEST
 
-/* Errors of both spectral measures by differences of the velocity itself, at a tenth of c where relativity matters. */
+/* Errors of both spectral measures by differences of the velocity itself, at a tenth of c where relativity
+ * matters. */
 START_TEST(error_propagation) {
   const double rest = 1548.2 * angstrom, step = 1e-4 * angstrom;
   for (int k = 0; k < 2; k++) {
@@ -219,7 +225,8 @@ END_TEST
 
 /* ---- models ---- */
 
-/* Speeds of a made-up case: photosphere 500 + t, terminal 900 + t, at depth tau 700 - 100 tau, shell 400 from t = 10 s on [km/s]. */
+/* Speeds of a made-up case: photosphere 500 + t, terminal 900 + t, at depth tau 700 - 100 tau, shell 400 from t =
+ * 10 s on [km/s]. */
 static enum lxg_status speeds(void *context, double epoch, enum lxg_line_model model, double depth,
                               double *velocity, struct lxg_error *reason) {
   if (context != NULL && epoch == *(const double *)context) {
@@ -329,8 +336,9 @@ START_TEST(posterior_of_a_row) {
 }
 END_TEST
 
-/* Named components are judged as one: rows that alone are undecided decide together; a row before there is a shell cannot be it, nor
- * can its component; declared names are taken; peaks tell nothing; a speed far from both is other. */
+/* Named components are judged as one: rows that alone are undecided decide together; a row before there is a
+ * shell cannot be it, nor can its component; declared names are taken; peaks tell nothing; a speed far from both
+ * is other. */
 START_TEST(components) {
   const struct lxg_line_input input[] = {row(50.0, LXG_LINE_ABSORPTION, 425.0, 60.0, "principal"),
                                          row(51.0, LXG_LINE_ABSORPTION, 470.0, 60.0, "principal"),
@@ -370,8 +378,8 @@ START_TEST(components) {
 }
 END_TEST
 
-/* Calibration: 4000 rows drawn from wind, shell or neither with the priors; where the posterior of the shell lies in a band, the share
- * of true shells is its mean, within 4 binomial standard deviations. */
+/* Calibration: 4000 rows drawn from wind, shell or neither with the priors; where the posterior of the shell lies
+ * in a band, the share of true shells is its mean, within 4 binomial standard deviations. */
 START_TEST(posterior_is_calibrated) {
   enum { N = 4000 };
   static struct lxg_line_input input[N];

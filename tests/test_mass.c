@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * test_mass.c - each mass formula against a published number or a second published formula, the error propagation against
- * exact slopes and a Monte Carlo, and the naming of missing data.
+ * test_mass.c - each mass formula against a published number or a second published formula, the error propagation
+ * against exact slopes and a Monte Carlo, and the naming of missing data.
  */
 #include "helpers.h"
 #include "luxgale/constants.h"
@@ -33,8 +33,9 @@ START_TEST(steady_wind) {
 }
 END_TEST
 
-/* 1.0 Msun, GM/R = 2.387e17 erg/g: of 1e46 erg radiated, 0.547 into lifting is 1.15e-5 Msun (Kato, Saio & Hachisu 2022, shares
- * read; mass derived, three digits), so the bound is 1.15e-5/0.547. Also the published rate 0.03185 L6 R/M Msun/yr for a year. */
+/* 1.0 Msun, GM/R = 2.387e17 erg/g: of 1e46 erg radiated, 0.547 into lifting is 1.15e-5 Msun (Kato, Saio & Hachisu
+ * 2022, shares read; mass derived, three digits), so the bound is 1.15e-5/0.547. Also the published rate 0.03185
+ * L6 R/M Msun/yr for a year. */
 START_TEST(tiring) {
   struct lxg_mass_data data = {0};
   give(&data, LXG_MASS_STAR_GM, LXG_SOLAR_GM, 0.0);
@@ -62,7 +63,8 @@ START_TEST(diffusion_time) {
 }
 END_TEST
 
-/* Osterbrock's case-B table (from memory): 4 pi j(H beta)/(n_e n_p) = 2.20, 1.24, 0.66 e-25 at 5000, 10000, 20000 K. */
+/* Osterbrock's case-B table (from memory): 4 pi j(H beta)/(n_e n_p) = 2.20, 1.24, 0.66 e-25 at 5000, 10000, 20000
+ * K. */
 START_TEST(hbeta_emissivity) {
   assert_close(lxg_mass_hbeta_emissivity(5000.0), 2.20e-25, 0.01);
   assert_close(lxg_mass_hbeta_emissivity(10000.0), 1.24e-25, 0.005);
@@ -83,8 +85,9 @@ START_TEST(line_with_density) {
 }
 END_TEST
 
-/* Closure with the density method: pure hydrogen, n_e of the volume method's own mass, M/(m_H f V), put into the other gives
- * the same mass; for X < 1, n_e = (1 + X) rho/(2 m_H). The luminosity comes from a flux and a distance. */
+/* Closure with the density method: pure hydrogen, n_e of the volume method's own mass, M/(m_H f V), put into the
+ * other gives the same mass; for X < 1, n_e = (1 + X) rho/(2 m_H). The luminosity comes from a flux and a
+ * distance. */
 START_TEST(line_with_volume) {
   for (int i = 0; i < 2; i++) {
     const double x = i == 0 ? 1.0 : 0.43, f = 0.083, speed = 1470.0 * LXG_KM, age = 213.0 * LXG_DAY;
@@ -109,9 +112,9 @@ START_TEST(line_with_volume) {
 }
 END_TEST
 
-/* Panagia & Felli 1975, A&A 39, 1 (from memory), written out here: 5.12 mJy (nu/10 GHz)^0.6 (T/1e4)^0.1 (Mdot/1e-5)^(4/3)
- * (mu v/1200)^(-4/3) Z^(2/3) D^-2. Wright & Barlow give 5.097 at the reference point (Gaunt factor 4.6896). Away from it the
- * power law in nu and T stands for the logarithm: 5 % over a decade. */
+/* Panagia & Felli 1975, A&A 39, 1 (from memory), written out here: 5.12 mJy (nu/10 GHz)^0.6 (T/1e4)^0.1
+ * (Mdot/1e-5)^(4/3) (mu v/1200)^(-4/3) Z^(2/3) D^-2. Wright & Barlow give 5.097 at the reference point (Gaunt
+ * factor 4.6896). Away from it the power law in nu and T stands for the logarithm: 5 % over a decade. */
 static double panagia_felli(double rate, double speed, double frequency, double temperature, double kpc,
                             double mu) {
   return 5.12e-3 * pow(frequency / 1e10, 0.6) * pow(temperature / 1e4, 0.1) * pow(rate / 1e-5, 4.0 / 3.0) *
@@ -158,7 +161,8 @@ START_TEST(xray_turn_on) {
 }
 END_TEST
 
-/* Exact slopes of the power laws: volume method 1/2 L, 3/2 v, 3/2 t, 1/2 f, and (1 + 2X)/(2 (1 + X)) X for hydrogen. */
+/* Exact slopes of the power laws: volume method 1/2 L, 3/2 v, 3/2 t, 1/2 f, and (1 + 2X)/(2 (1 + X)) X for
+ * hydrogen. */
 START_TEST(error_propagation) {
   struct lxg_mass_data data = {0};
   struct lxg_mass_summary summary;
@@ -183,8 +187,9 @@ START_TEST(error_propagation) {
 }
 END_TEST
 
-/* The radio method by Monte Carlo: log-normal draws of flux, temperature and speed; scatter of ln M from 40000 draws is known
- * to 1/sqrt(2 n) = 0.35 %, three of them allowed; the temperature enters through the Gaunt factor only. */
+/* The radio method by Monte Carlo: log-normal draws of flux, temperature and speed; scatter of ln M from 40000
+ * draws is known to 1/sqrt(2 n) = 0.35 %, three of them allowed; the temperature enters through the Gaunt factor
+ * only. */
 START_TEST(error_by_sampling) {
   const enum lxg_mass_quantity drawn[] = {LXG_MASS_RADIO_FLUX, LXG_MASS_TEMPERATURE, LXG_MASS_SPEED};
   const double centre[] = {0.012, 1.1e4, 1.3e8}, share[] = {0.06, 0.2, 0.04};
@@ -237,7 +242,8 @@ START_TEST(comparison) {
   const double a = summary.estimate[LXG_MASS_XRAY].mass, b = summary.estimate[LXG_MASS_STEADY_WIND].mass;
   assert_close(summary.spread, b / a, 1e-14);
   assert_close(summary.centre, sqrt(a * b), 1e-13);
-  /* two values: chi^2 = (difference)^2/(sum of variances); 0.1 from the column, 2 x 0.05 from the speed, 0.1 from the rate */
+  /* two values: chi^2 = (difference)^2/(sum of variances); 0.1 from the column, 2 x 0.05 from the speed, 0.1 from
+   * the rate */
   assert_close(summary.chi2, pow(log(b / a), 2.0) / (0.01 + 0.01 + 0.01), 1e-7);
   ck_assert(strstr(summary.reading, "differ by more than the given errors") != NULL && !summary.bound_broken);
   give(&data, LXG_MASS_STAR_GM, LXG_SOLAR_GM, 0.0);

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * test_profile.c - line profiles against the analytic limits of expanding shells, an independent evaluation with SciPy (other
- * variables: p and z on each ray), the photon balance of pure scattering, and each other (surface and rays).
+ * test_profile.c - line profiles against the analytic limits of expanding shells, an independent evaluation with
+ * SciPy (other variables: p and z on each ray), the photon balance of pure scattering, and each other (surface
+ * and rays).
  */
 #include "helpers.h"
 #include "luxgale/constants.h"
@@ -68,7 +69,8 @@ static struct lxg_profile compute(const struct lxg_profile_flow *flow, const str
   return profile;
 }
 
-/* Integrals of Castor's definitions by mpmath with 15 digits; sigma = 0 is closed: beta = (1 - e^-tau)/tau and beta_c = W beta. */
+/* Integrals of Castor's definitions by mpmath with 15 digits; sigma = 0 is closed: beta = (1 - e^-tau)/tau and
+ * beta_c = W beta. */
 static const struct {
   double depth, sigma, ratio, beta, core;
 } escapes[] = {{0.37, -1.0, 1.9, 0.7084713695737, 0.02464369185626},
@@ -104,7 +106,8 @@ START_TEST(line_strength) {
 }
 END_TEST
 
-/* Constant speed, thin: every velocity gets the same light (rectangle), F = 2 pi int r^2 e rho^2/v dr; rho = rho_0 (R/r)^2. */
+/* Constant speed, thin: every velocity gets the same light (rectangle), F = 2 pi int r^2 e rho^2/v dr; rho =
+ * rho_0 (R/r)^2. */
 START_TEST(thin_shell_is_rectangular) {
   const struct test_flow f = {.kind = CONSTANT, .radius = 3.1e12, .speed = 1.37e8, .density = 2.2e-14};
   const struct lxg_profile_flow flow = flow_of(&f, 7.3);
@@ -124,8 +127,9 @@ START_TEST(thin_shell_is_rectangular) {
 }
 END_TEST
 
-/* Constant speed, thick: the light is the projected area of the cone, pi (r_2^2 - R^2) (1 - x^2/v^2) S: a parabola with half
- * width v/sqrt 2. With a dark core the receding side lacks p < R: pi S [r_2^2 (1 - x^2/v^2) - R^2]. */
+/* Constant speed, thick: the light is the projected area of the cone, pi (r_2^2 - R^2) (1 - x^2/v^2) S: a
+ * parabola with half width v/sqrt 2. With a dark core the receding side lacks p < R: pi S [r_2^2 (1 - x^2/v^2) -
+ * R^2]. */
 START_TEST(thick_shell_is_parabolic) {
   const struct test_flow f = {.kind = CONSTANT, .radius = 3.1e12, .speed = 1.37e8, .density = 2.2e-14};
   const struct lxg_profile_flow flow = flow_of(&f, 2.9);
@@ -154,8 +158,8 @@ START_TEST(thick_shell_is_parabolic) {
 }
 END_TEST
 
-/* Homologous shell of constant density, thin: surfaces are planes, F = pi e rho^2 (R/v_0) (r_2^2 - max(R, R|x|/v_0)^2): flat inside
- * v_0, parabolic wings, symmetric. */
+/* Homologous shell of constant density, thin: surfaces are planes, F = pi e rho^2 (R/v_0) (r_2^2 - max(R,
+ * R|x|/v_0)^2): flat inside v_0, parabolic wings, symmetric. */
 START_TEST(homologous_shell) {
   const struct test_flow f = {.kind = HOMOLOGOUS, .radius = 5.7e13, .speed = 0.61e8, .density = 3.3e-16};
   const struct lxg_profile_flow flow = flow_of(&f, 2.3);
@@ -176,8 +180,8 @@ START_TEST(homologous_shell) {
 }
 END_TEST
 
-/* v = v_inf [0.013 + 0.987 (1 - 1/r)], r to 80, k rho r/v with k rho = 2.2/(r^2 v) in units of R and v_inf: F/F_c by SciPy (quad
- * over p, brentq for z, quad for beta and beta_c, tolerance 1e-9). */
+/* v = v_inf [0.013 + 0.987 (1 - 1/r)], r to 80, k rho r/v with k rho = 2.2/(r^2 v) in units of R and v_inf: F/F_c
+ * by SciPy (quad over p, brentq for z, quad for beta and beta_c, tolerance 1e-9). */
 static const struct {
   double x, flux;
 } scipy_profile[] = {{0.93, 0.11702799965382976}, {0.41, 0.47107087501446454}, {0.005, 1.85091983627482},
@@ -203,8 +207,9 @@ START_TEST(independent_profile) {
 }
 END_TEST
 
-/* Pure scattering makes no light: the line takes away what falls back on the core, integral over velocity against integral over
- * volume. Thin to thick, and two acceleration laws. Relative to what is taken away: 2e-6 (quadrature over a profile with corners). */
+/* Pure scattering makes no light: the line takes away what falls back on the core, integral over velocity against
+ * integral over volume. Thin to thick, and two acceleration laws. Relative to what is taken away: 2e-6
+ * (quadrature over a profile with corners). */
 START_TEST(photons_are_conserved) {
   const double scale[] = {3e-3, 0.3, 2.2, 40.0};
   struct test_flow f = beta_flow;
@@ -258,8 +263,8 @@ START_TEST(convergence) {
 }
 END_TEST
 
-/* Rays against the surface: 400 rays cut the ends of the surface off at a ray, so 1 % at velocities away from corners, and
- * closer with 4000. */
+/* Rays against the surface: 400 rays cut the ends of the surface off at a ray, so 1 % at velocities away from
+ * corners, and closer with 4000. */
 START_TEST(rays_agree_with_surface) {
   const struct lxg_profile_flow flow = flow_of(&beta_flow, 30.0);
   const struct lxg_profile_line line = {.strength = strength_for(&beta_flow, 2.2)};
@@ -278,9 +283,10 @@ START_TEST(rays_agree_with_surface) {
 }
 END_TEST
 
-/* A slowing flow, v = v_0 (r/R)^-0.15: thin emission is counted wherever it comes from, int F dv = int e rho^2 dV; a black core hides
- * the shadow. Scattering in a flow that slows as r^-1e-5 looks like one of constant speed; in one that slows as r^-0.15 the
- * neglected coupling shows in the photon balance, which is why both numbers are given. */
+/* A slowing flow, v = v_0 (r/R)^-0.15: thin emission is counted wherever it comes from, int F dv = int e rho^2
+ * dV; a black core hides the shadow. Scattering in a flow that slows as r^-1e-5 looks like one of constant speed;
+ * in one that slows as r^-0.15 the neglected coupling shows in the photon balance, which is why both numbers are
+ * given. */
 START_TEST(slowing_flow) {
   const struct test_flow f = {
       .kind = SLOWING, .radius = 1e12, .speed = 1.1e8, .start = 0.15, .density = 1e-13};
@@ -316,7 +322,8 @@ START_TEST(slowing_flow) {
 }
 END_TEST
 
-/* The same flow from 400 rows: Steffen's interpolation is of second order in the slope near curvature, 1e-3 in the profile. */
+/* The same flow from 400 rows: Steffen's interpolation is of second order in the slope near curvature, 1e-3 in
+ * the profile. */
 START_TEST(flow_from_a_table) {
   enum { ROWS = 400 };
   double r[ROWS], v[ROWS], rho[ROWS];

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * test_shell.c - swept shells against the closed form for two constant winds, conservation laws, and a sticky-particle
- * calculation that moves parcels from collision to collision (a different method: events in time, no hull).
+ * test_shell.c - swept shells against the closed form for two constant winds, conservation laws, and a
+ * sticky-particle calculation that moves parcels from collision to collision (a different method: events in time,
+ * no hull).
  */
 #include "helpers.h"
 #include "luxgale/constants.h"
@@ -62,8 +63,8 @@ START_TEST(two_constant_winds) {
 }
 END_TEST
 
-/* When the slow wind is all swept up, (S2) alone is left. With slow mass A, momentum B and center xA(t) of the slow gas and fast
- * gas from jump to tau = t - X/v2: A (xA - X) + m2 int (v2 (t - tau') - X) dtau' = 0, that is
+/* When the slow wind is all swept up, (S2) alone is left. With slow mass A, momentum B and center xA(t) of the
+ * slow gas and fast gas from jump to tau = t - X/v2: A (xA - X) + m2 int (v2 (t - tau') - X) dtau' = 0, that is
  * m2 v2 (T - X/v2)^2/2 = A (X - xA), T = t - jump: a quadratic in X solved here. */
 START_TEST(slow_wind_used_up) {
   struct lxg_shell_history *history = two_winds(0.0);
@@ -86,8 +87,8 @@ START_TEST(slow_wind_used_up) {
 }
 END_TEST
 
-/* Mass and momentum of shells and free gas together are those that left, to 1e-10 (in fact to rounding): the distribution
- * after sweeping is summed over everything, and its first moment bracketed by very narrow bins. */
+/* Mass and momentum of shells and free gas together are those that left, to 1e-10 (in fact to rounding): the
+ * distribution after sweeping is summed over everything, and its first moment bracketed by very narrow bins. */
 static size_t wavy(size_t count, double *time, double *speed, double *rate) {
   for (size_t i = 0; i < count; i++) {
     const double u = (double)i / (double)(count - 1);
@@ -205,8 +206,9 @@ static int stick(struct parcel *parcel, int n, double t) {
   return left;
 }
 
-/* 1600 parcels of equal departure interval; a shell there is what exceeds 20 parcels. Edges are uncertain by a parcel, so masses
- * agree to 2/20 of the smallest; for the most massive shell to 3e-3, its speed and radius to 1e-3. */
+/* 1600 parcels of equal departure interval; a shell there is what exceeds 20 parcels. Edges are uncertain by a
+ * parcel, so masses agree to 2/20 of the smallest; for the most massive shell to 3e-3, its speed and radius to
+ * 1e-3. */
 START_TEST(sticky_particles) {
   double time[97], speed[97], rate[97];
   struct lxg_shell_history *history = make(wavy(97, time, speed, rate), time, speed, rate, 0.0);
@@ -259,8 +261,8 @@ START_TEST(sticky_particles) {
 }
 END_TEST
 
-/* A ramp: characteristics of v = a + b (tau - tau_0) first cross at tau_0 + a/b, at a^2/b; a jump at once; across a pause where two
- * straight lines meet. */
+/* A ramp: characteristics of v = a + b (tau - tau_0) first cross at tau_0 + a/b, at a^2/b; a jump at once; across
+ * a pause where two straight lines meet. */
 START_TEST(first_crossing) {
   struct lxg_shell_onset onset;
   {
@@ -317,7 +319,8 @@ START_TEST(no_overtaking) {
 }
 END_TEST
 
-/* Constant rate and a linear ramp of speed: dM/dv = Mdot/|v'| before; afterwards the shell's gas sits in one bin. */
+/* Constant rate and a linear ramp of speed: dM/dv = Mdot/|v'| before; afterwards the shell's gas sits in one bin.
+ * */
 START_TEST(speed_distribution) {
   const double time[] = {0.0, 40.0 * day}, speed[] = {5e7, 13e7}, rate[] = {3e21, 3e21};
   struct lxg_shell_history *history = make(2, time, speed, rate, 0.0);

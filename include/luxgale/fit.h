@@ -1,14 +1,16 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * fit.h - least squares with honest errors: best values, covariance, profile-likelihood intervals, and a plain statement
- * of what the data do not constrain.
+ * fit.h - least squares with honest errors: best values, covariance, profile-likelihood intervals, and a plain
+ * statement of what the data do not constrain.
  *
- * Minimises chi^2 = sum of squared residuals, each residual in units of its own sigma (so a rise of 1 is the 68.27 %
- * interval of one parameter). Trust-region Levenberg-Marquardt of GSL in internal coordinates u that have no bounds:
+ * Minimises chi^2 = sum of squared residuals, each residual in units of its own sigma (so a rise of 1 is the
+ * 68.27 % interval of one parameter). Trust-region Levenberg-Marquardt of GSL in internal coordinates u that have
+ * no bounds:
  *   free      u = p          positive  u = ln p          interval  u = ln[(p - low)/(high - p)]
- * Covariance from the Jacobian at the minimum (linear theory); the profile interval of a parameter is where the minimum over
- * all others has risen by `rise`: it needs no linear theory. A trial for which the model has no answer is refused by the
- * step control and marks the edge of an interval; it never ends the fit unless the start itself has none.
+ * Covariance from the Jacobian at the minimum (linear theory); the profile interval of a parameter is where the
+ * minimum over all others has risen by `rise`: it needs no linear theory. A trial for which the model has no
+ * answer is refused by the step control and marks the edge of an interval; it never ends the fit unless the start
+ * itself has none.
  */
 #ifndef LUXGALE_FIT_H
 #define LUXGALE_FIT_H
@@ -32,8 +34,8 @@ struct lxg_fit_parameter {
   double high;  /* of `interval` only */
 };
 
-/* residual[residuals] = (data - model)/sigma at parameter[parameters]. LXG_DOMAIN, LXG_NO_SOLUTION and LXG_NOT_CONVERGED say
- * that the model has no answer there; any other failure ends the fit and is passed on. */
+/* residual[residuals] = (data - model)/sigma at parameter[parameters]. LXG_DOMAIN, LXG_NO_SOLUTION and
+ * LXG_NOT_CONVERGED say that the model has no answer there; any other failure ends the fit and is passed on. */
 typedef enum lxg_status lxg_fit_residual(void *context, const double parameter[], double residual[]);
 
 /* jacobian[i * parameters + j] = d residual_i / d parameter_j. */
@@ -95,20 +97,21 @@ struct lxg_fit_result {
 
 void lxg_fit_defaults(struct lxg_fit_settings *settings);
 
-/* Minimum, covariance and flags. settings NULL: defaults. LXG_INPUT ("fit-parameters", "fit-residuals", "fit-start",
- * "fit-bounds"); LXG_NO_SOLUTION ("fit-start-model") if the model has no answer at the start; LXG_NOT_CONVERGED
- * ("fit-iterations") with the best point so far in `result`; LXG_MEMORY. */
+/* Minimum, covariance and flags. settings NULL: defaults. LXG_INPUT ("fit-parameters", "fit-residuals",
+ * "fit-start", "fit-bounds"); LXG_NO_SOLUTION ("fit-start-model") if the model has no answer at the start;
+ * LXG_NOT_CONVERGED ("fit-iterations") with the best point so far in `result`; LXG_MEMORY. */
 enum lxg_status lxg_fit_solve(const struct lxg_fit_problem *problem, const struct lxg_fit_settings *settings,
                               struct lxg_fit_result *result, struct lxg_error *error);
 
-/* Profile interval of parameter `index`, written into result->estimate[index]; `result` is what lxg_fit_solve returned.
- * LXG_NOT_CONVERGED ("fit-profile-lower") if a lower chi^2 than the solution's is met on the way: then result holds that
- * better point and the caller starts again from it (lxg_fit_run does). */
+/* Profile interval of parameter `index`, written into result->estimate[index]; `result` is what lxg_fit_solve
+ * returned. LXG_NOT_CONVERGED ("fit-profile-lower") if a lower chi^2 than the solution's is met on the way: then
+ * result holds that better point and the caller starts again from it (lxg_fit_run does). */
 enum lxg_status lxg_fit_profile(const struct lxg_fit_problem *problem,
                                 const struct lxg_fit_settings *settings, size_t index,
                                 struct lxg_fit_result *result, struct lxg_error *error);
 
-/* lxg_fit_solve, then lxg_fit_profile for every parameter, begun again from any better minimum met (three times at most). */
+/* lxg_fit_solve, then lxg_fit_profile for every parameter, begun again from any better minimum met (three times
+ * at most). */
 enum lxg_status lxg_fit_run(const struct lxg_fit_problem *problem, const struct lxg_fit_settings *settings,
                             struct lxg_fit_result *result, struct lxg_error *error);
 

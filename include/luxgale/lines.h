@@ -2,10 +2,11 @@
  *
  * lines.h - observed line velocities, and what the winds and shells of a case say about them.
  *
- * A row is one measurement: epoch, line, kind of feature, and a wavelength, a half width or a velocity with its error. All
- * become expansion speeds: the speed with which gas in front of the source approaches, positive outward (an absorption at a
- * radial velocity of -600 km/s has the speed 600 km/s). Widths are speeds; an emission peak keeps its radial velocity (negative
- * approaches). Motion of Earth and system is the user's to remove.
+ * A row is one measurement: epoch, line, kind of feature, and a wavelength, a half width or a velocity with its
+ * error. All become expansion speeds: the speed with which gas in front of the source approaches, positive
+ * outward (an absorption at a radial velocity of -600 km/s has the speed 600 km/s). Widths are speeds; an
+ * emission peak keeps its radial velocity (negative approaches). Motion of Earth and system is the user's to
+ * remove.
  *   (L1) vacuum wavelength = n(lambda_vac) lambda_air, n of Birch & Downs 1994 as adopted by the IAU, in the form of Morton 2000,
  *        ApJS 130, 403 (from memory): n - 1 = 8.34254e-5 + 2.406147e-2/(130 - s^2) + 1.5998e-4/(38.9 - s^2), s = 1 micron/lambda_vac
  *   (L2) q = lambda/lambda_0 (vacuum): v/c = (q^2 - 1)/(q^2 + 1); a half width d: v/c = y/(1 + y^2)^(1/2), y = d/lambda_0
@@ -83,9 +84,10 @@ double lxg_line_doppler(double ratio);
 const char *lxg_line_kind_name(enum lxg_line_kind kind); /* "unknown" out of range */
 enum lxg_line_kind lxg_line_kind_find(const char *name); /* LXG_LINE_KINDS if there is none */
 
-/* Checks and converts `count` >= 1 rows. Bad rows are named, not dropped: LXG_INPUT with the first bad row as the cause, the next
- * ones as contexts and their total in the last line ("line-count", "line-epoch", "line-kind", "line-measure", "line-rest",
- * "line-value", "line-error", "line-redward"). Air wavelengths below 2000 Angstrom are refused: there tables are in vacuum. */
+/* Checks and converts `count` >= 1 rows. Bad rows are named, not dropped: LXG_INPUT with the first bad row as the
+ * cause, the next ones as contexts and their total in the last line ("line-count", "line-epoch", "line-kind",
+ * "line-measure", "line-rest", "line-value", "line-error", "line-redward"). Air wavelengths below 2000 Angstrom
+ * are refused: there tables are in vacuum. */
 enum lxg_status lxg_lines_create(const struct lxg_line_input input[], size_t count, struct lxg_lines **lines,
                                  struct lxg_error *error);
 void lxg_lines_destroy(struct lxg_lines *lines);
@@ -101,9 +103,10 @@ enum lxg_line_model {
   LXG_LINE_MODELS
 };
 
-/* The default table: absorption -> photosphere (the densest gas that is seen against the continuum; common practice for
- * optically thick winds, no single source), blue-edge, half-maximum and zero-intensity -> terminal (the edge of the profile of a
- * wind; a shell of constant speed has its half maximum at 0.71 to 1 of it), emission-peak -> rest (symmetric outflow). */
+/* The default table: absorption -> photosphere (the densest gas that is seen against the continuum; common
+ * practice for optically thick winds, no single source), blue-edge, half-maximum and zero-intensity -> terminal
+ * (the edge of the profile of a wind; a shell of constant speed has its half maximum at 0.71 to 1 of it),
+ * emission-peak -> rest (symmetric outflow). */
 struct lxg_line_map {
   struct {
     enum lxg_line_model model;
@@ -113,13 +116,14 @@ struct lxg_line_map {
 
 void lxg_line_map_default(struct lxg_line_map *map);
 
-/* Overrides one row: kind by name; model "photosphere", "terminal", "shell", "rest" or "depth NUMBER". LXG_INPUT "line-map". */
+/* Overrides one row: kind by name; model "photosphere", "terminal", "shell", "rest" or "depth NUMBER". LXG_INPUT
+ * "line-map". */
 enum lxg_status lxg_line_map_set(struct lxg_line_map *map, const char *kind, const char *model,
                                  struct lxg_error *error);
 const char *lxg_line_model_name(enum lxg_line_model model);
 
-/* Model speed [cm s^-1] at an epoch [s]. LXG_NO_SOLUTION or LXG_DOMAIN: there is none then, with the reason and its code in
- * `reason`; other failures end the comparison. LXG_LINE_MODEL_REST is never asked for. */
+/* Model speed [cm s^-1] at an epoch [s]. LXG_NO_SOLUTION or LXG_DOMAIN: there is none then, with the reason and
+ * its code in `reason`; other failures end the comparison. LXG_LINE_MODEL_REST is never asked for. */
 typedef enum lxg_status lxg_line_velocity(void *context, double epoch, enum lxg_line_model model,
                                           double depth, double *velocity, struct lxg_error *reason);
 
@@ -145,10 +149,10 @@ struct lxg_line_assignment {
 
 void lxg_line_assign_defaults(struct lxg_line_assign_settings *settings);
 
-/* Posterior by Bayes' rule: each system's likelihood is Gaussian in (speed - model) with variance error^2 + scatter^2, `other` is
- * flat. Rows that share a component name are one system and are judged together; unnamed rows one by one. A system without
- * a speed at some epoch of the component cannot be it. settings NULL: defaults. LXG_INPUT "line-prior"; failures of the model;
- * LXG_MEMORY. */
+/* Posterior by Bayes' rule: each system's likelihood is Gaussian in (speed - model) with variance error^2 +
+ * scatter^2, `other` is flat. Rows that share a component name are one system and are judged together; unnamed
+ * rows one by one. A system without a speed at some epoch of the component cannot be it. settings NULL: defaults.
+ * LXG_INPUT "line-prior"; failures of the model; LXG_MEMORY. */
 enum lxg_status lxg_lines_assign(const struct lxg_lines *lines, const struct lxg_line_map *map,
                                  lxg_line_velocity *velocity, void *context,
                                  const struct lxg_line_assign_settings *settings,
@@ -176,9 +180,9 @@ struct lxg_line_chi2 {
   size_t worst;    /* index of the row with the largest |residual|; meaningless if none compared */
 };
 
-/* Residuals with model speeds from a function. assignment NULL: every row by the map; else rows of the shell are compared with the
- * shell's speed and rows of `other` are left out (code "line-other"). scatter [cm s^-1] >= 0. Failures of the model other than
- * "none"; LXG_INPUT "line-scatter". */
+/* Residuals with model speeds from a function. assignment NULL: every row by the map; else rows of the shell are
+ * compared with the shell's speed and rows of `other` are left out (code "line-other"). scatter [cm s^-1] >= 0.
+ * Failures of the model other than "none"; LXG_INPUT "line-scatter". */
 enum lxg_status lxg_lines_compare(const struct lxg_lines *lines, const struct lxg_line_map *map,
                                   const struct lxg_line_assignment assignment[], double scatter,
                                   lxg_line_velocity *velocity, void *context,

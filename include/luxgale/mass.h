@@ -2,10 +2,11 @@
  *
  * mass.h - ejected mass from an expansion speed by every method that the given data allow, side by side.
  *
- * Each method is a product formula M(q_1, q_2, ...) of measured quantities; the methods share inputs and disagree in
- * nature by up to a factor of ten, so the spread is part of the answer. Errors are taken as log-normal and independent:
- * sigma_lnM^2 = sum_i (dlnM/dlnq_i sigma_i/q_i)^2, the slopes exact for the power laws and by central differences where a
- * temperature or frequency enters through a logarithm. A quantity that is not given is named, never guessed.
+ * Each method is a product formula M(q_1, q_2, ...) of measured quantities; the methods share inputs and disagree
+ * in nature by up to a factor of ten, so the spread is part of the answer. Errors are taken as log-normal and
+ * independent: sigma_lnM^2 = sum_i (dlnM/dlnq_i sigma_i/q_i)^2, the slopes exact for the power laws and by
+ * central differences where a temperature or frequency enters through a logarithm. A quantity that is not given
+ * is named, never guessed.
  */
 #ifndef LUXGALE_MASS_H
 #define LUXGALE_MASS_H
@@ -105,8 +106,9 @@ const char *lxg_mass_method_name(enum lxg_mass_method method);
 /* Index of a quantity by its name; LXG_MASS_QUANTITIES if there is none. */
 enum lxg_mass_quantity lxg_mass_quantity_find(const char *name);
 
-/* Gives one quantity. LXG_INPUT "mass-value" or "mass-error" with the quantity named. Fractions (hydrogen, filling_factor)
- * are at most 1; a speed is below c; the temperature lies in 3000 .. 30000 K, where the recombination fit was checked. */
+/* Gives one quantity. LXG_INPUT "mass-value" or "mass-error" with the quantity named. Fractions (hydrogen,
+ * filling_factor) are at most 1; a speed is below c; the temperature lies in 3000 .. 30000 K, where the
+ * recombination fit was checked. */
 enum lxg_status lxg_mass_give(struct lxg_mass_data *data, enum lxg_mass_quantity quantity, double value,
                               double error_1sigma, struct lxg_error *error);
 
@@ -115,15 +117,17 @@ void lxg_mass_estimate_all(const struct lxg_mass_data *data, struct lxg_mass_sum
 
 /* ---- the formulas themselves, CGS ---- */
 
-/* Case-B emissivity 4 pi j(H beta)/(n_e n_p) [erg cm^3 s^-1] at T [K]: alpha_eff = 3.03e-14 T4^(-0.874 - 0.058 ln T4) cm^3/s
- * (Draine 2011, eq. 14.9, from memory) times h nu. Within 1 % of Osterbrock's table at 5000, 10000 and 20000 K. */
+/* Case-B emissivity 4 pi j(H beta)/(n_e n_p) [erg cm^3 s^-1] at T [K]: alpha_eff = 3.03e-14 T4^(-0.874 - 0.058 ln
+ * T4) cm^3/s (Draine 2011, eq. 14.9, from memory) times h nu. Within 1 % of Osterbrock's table at 5000, 10000 and
+ * 20000 K. */
 double lxg_mass_hbeta_emissivity(double temperature);
 
 /* Free-free Gaunt factor 9.77 [1 + 0.13 log10(T^1.5/(Z nu))] (Spitzer 1962, as Wright & Barlow 1975 use it). */
 double lxg_mass_gaunt(double temperature, double charge, double frequency);
 
-/* Radio flux [Jy] of a steady wind: Wright & Barlow 1975, MNRAS 170, 41 (from memory): S = 23.2 (Mdot/(mu v))^(4/3)
- * nu^(2/3) D^-2 (gamma g)^(2/3) Z^(4/3), Mdot in Msun/yr, v in km/s, D in kpc. Arguments here in CGS. */
+/* Radio flux [Jy] of a steady wind: Wright & Barlow 1975, MNRAS 170, 41 (from memory): S = 23.2 (Mdot/(mu
+ * v))^(4/3) nu^(2/3) D^-2 (gamma g)^(2/3) Z^(4/3), Mdot in Msun/yr, v in km/s, D in kpc. Arguments here in CGS.
+ * */
 double lxg_mass_radio_flux(double mass_loss, double speed, double frequency, double temperature,
                            double distance, double mean_weight, double charge, double electrons_per_ion);
 

@@ -2,19 +2,20 @@
  *
  * profile.h - shape of one spectral line of a spherical outflow: Sobolev source function, exact formal integral.
  *
- * Outside a photosphere of radius R (black, intensity I_c) gas flows with speed v(r) and density rho(r). Light of a line meets
- * gas of one resonance surface v_z = v(r) mu = x only (x: velocity towards the observer). With sigma = dlnv/dlnr - 1:
+ * Outside a photosphere of radius R (black, intensity I_c) gas flows with speed v(r) and density rho(r). Light of
+ * a line meets gas of one resonance surface v_z = v(r) mu = x only (x: velocity towards the observer). With sigma
+ * = dlnv/dlnr - 1:
  *   (P1) tau(r, mu) = tau_0/(1 + sigma mu^2), tau_0 = chi r/v; resonance chi = k (r/R)^q rho, recombination chi = a rho^2
  *   (P2) escape probabilities beta = int_0^1 f dmu, beta_c = (1/2) int_mu_c^1 f dmu, f = (1 - e^-tau)/tau,
  *        mu_c = (1 - R^2/r^2)^(1/2)   (Castor 1970, MNRAS 149, 111)
  *   (P3) resonance: pure scattering, S = I_c beta_c/beta; recombination: S = e/a, or emission e rho^2 alone when a = 0
  *   (P4) F(x) = int I 2 pi p dp, I = I_core e^-tau + S (1 - e^-tau) on each ray at its resonance, the core hiding what is behind it.
- * For an outflow that nowhere decelerates the ray integral is taken along the surface, p dp = r (1 + sigma mu^2) dr, and is
- * smooth. A decelerating flow has rays that meet gas of one velocity twice or more: then rays are followed one by one
- * through all their surfaces in order; the source function stays local (radiative coupling between the surfaces is neglected),
- * `coupled` says so and the photon balance shows how much that costs.
- * Photon balance of pure scattering: int (F/F_c - 1) dx = -4 int chi (S/I_c) beta_c (r/R)^2 dr, the photons that fall back on the
- * core: two different integrals, both returned.
+ * For an outflow that nowhere decelerates the ray integral is taken along the surface, p dp = r (1 + sigma mu^2)
+ * dr, and is smooth. A decelerating flow has rays that meet gas of one velocity twice or more: then rays are
+ * followed one by one through all their surfaces in order; the source function stays local (radiative coupling
+ * between the surfaces is neglected), `coupled` says so and the photon balance shows how much that costs. Photon
+ * balance of pure scattering: int (F/F_c - 1) dx = -4 int chi (S/I_c) beta_c (r/R)^2 dr, the photons that fall
+ * back on the core: two different integrals, both returned.
  *
  * Intensities are per velocity interval [erg s^-1 cm^-2 sr^-1 (cm/s)^-1]: I_c = B_nu nu/c.
  */
@@ -45,8 +46,8 @@ struct lxg_profile_flow {
 
 struct lxg_profile_table; /* opaque: a flow from arrays, ln v and ln rho monotone C1 (Steffen 1990) in ln r */
 
-/* Copies count >= 3 rows of radius [cm] rising, speed [cm s^-1] > 0, density [g cm^-3] > 0. LXG_INPUT ("profile-count",
- * "profile-radius", "profile-speed", "profile-density") with the row named; LXG_MEMORY. */
+/* Copies count >= 3 rows of radius [cm] rising, speed [cm s^-1] > 0, density [g cm^-3] > 0. LXG_INPUT
+ * ("profile-count", "profile-radius", "profile-speed", "profile-density") with the row named; LXG_MEMORY. */
 enum lxg_status lxg_profile_table_create(size_t count, const double radius[], const double speed[],
                                          const double density[], struct lxg_profile_table **table,
                                          struct lxg_error *error);
@@ -65,7 +66,8 @@ struct lxg_profile_line {
   double opacity;        /* a of a recombination line [cm^6 g^-2 s^-1], >= 0; 0: optically thin */
 };
 
-/* k = pi e^2/(m_e c) f lambda n with oscillator strength f, wavelength [cm] and absorbing ions per gram of gas. */
+/* k = pi e^2/(m_e c) f lambda n with oscillator strength f, wavelength [cm] and absorbing ions per gram of gas.
+ * */
 double lxg_profile_strength(double oscillator_strength, double wavelength, double ions_per_gram);
 
 struct lxg_profile_core {
@@ -110,8 +112,9 @@ enum lxg_status lxg_profile_flux(const struct lxg_profile_flow *flow, const stru
                                  const struct lxg_profile_settings *settings, double velocity, double *flux,
                                  struct lxg_error *error);
 
-/* The whole profile; `profile` is overwritten and later freed by lxg_profile_free. LXG_INPUT ("profile-flow", "profile-line",
- * "profile-core", "profile-settings"); LXG_DOMAIN ("profile-law") if the law fails or gives impossible gas; LXG_MEMORY. */
+/* The whole profile; `profile` is overwritten and later freed by lxg_profile_free. LXG_INPUT ("profile-flow",
+ * "profile-line", "profile-core", "profile-settings"); LXG_DOMAIN ("profile-law") if the law fails or gives
+ * impossible gas; LXG_MEMORY. */
 enum lxg_status lxg_profile_compute(const struct lxg_profile_flow *flow, const struct lxg_profile_line *line,
                                     const struct lxg_profile_core *core,
                                     const struct lxg_profile_settings *settings, struct lxg_profile *profile,

@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * lines.c - rows of measurements checked and turned into speeds; names and the map of kinds to model speeds (see lines.h).
+ * lines.c - rows of measurements checked and turned into speeds; names and the map of kinds to model speeds (see
+ * lines.h).
  *
- * Errors: dv/dq = 4 c q/(q^2 + 1)^2 for a wavelength, dv/dy = c (1 + y^2)^(-3/2) for a half width. Can fail: bad rows (all
- * of them are looked at, as many as fit are named), memory.
+ * Errors: dv/dq = 4 c q/(q^2 + 1)^2 for a wavelength, dv/dy = c (1 + y^2)^(-3/2) for a half width. Can fail: bad
+ * rows (all of them are looked at, as many as fit are named), memory.
  */
 #include "luxgale/lines.h"
 

@@ -2,9 +2,9 @@
  *
  * lines_assign.c - which system a measurement belongs to, and how sure that is (see lines.h).
  *
- * ln L_wind, ln L_shell = sum over the component's rows of -(v - model)^2/(2 s^2) - ln(s sqrt(2 pi)); ln L_other = -n ln range;
- * posterior = prior L over their sum. Rows compared with rest wavelengths (emission peaks) carry no information and are left out
- * of the sums. Can fail: priors, a model failure that is not "there is none".
+ * ln L_wind, ln L_shell = sum over the component's rows of -(v - model)^2/(2 s^2) - ln(s sqrt(2 pi)); ln L_other
+ * = -n ln range; posterior = prior L over their sum. Rows compared with rest wavelengths (emission peaks) carry
+ * no information and are left out of the sums. Can fail: priors, a model failure that is not "there is none".
  */
 #include "luxgale/constants.h"
 #include "luxgale/lines.h"

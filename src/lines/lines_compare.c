@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * lines_compare.c - residuals of the measured speeds and their chi^2 (see lines.h). Can fail: a model failure that is not
- * "there is none", a bad scatter.
+ * lines_compare.c - residuals of the measured speeds and their chi^2 (see lines.h). Can fail: a model failure
+ * that is not "there is none", a bad scatter.
  */
 #include "luxgale/lines.h"
 

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * lines_wavelength.c - air and vacuum wavelengths and the relativistic Doppler shift (L1, L2 of lines.h). Cannot fail for
- * positive finite wavelengths above 2000 Angstrom.
+ * lines_wavelength.c - air and vacuum wavelengths and the relativistic Doppler shift (L1, L2 of lines.h). Cannot
+ * fail for positive finite wavelengths above 2000 Angstrom.
  */
 #include "luxgale/constants.h"
 #include "luxgale/lines.h"

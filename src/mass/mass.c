@@ -2,8 +2,8 @@
  *
  * mass.c - which methods the data allow, their errors, and the comparison (see mass.h).
  *
- * One quantity may be derived: the H beta luminosity from flux and distance (4 pi D^2 F); its error carries that of the
- * distance. Nothing else is filled in. Can fail: a value or error outside its range (lxg_mass_give).
+ * One quantity may be derived: the H beta luminosity from flux and distance (4 pi D^2 F); its error carries that
+ * of the distance. Nothing else is filled in. Can fail: a value or error outside its range (lxg_mass_give).
  */
 #include "luxgale/constants.h"
 #include "mass/mass_internal.h"

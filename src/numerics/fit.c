@@ -2,10 +2,10 @@
  *
  * fit.c - checks, best point, covariance and the test of what the data see (see fit.h).
  *
- * With J the Jacobian in u, each column divided by its length d_j: J = U S V^T D. Directions with a singular value below
- * settings.rank are unseen: they are left out of C = D^-1 V S^-2 V^T D^-1, and a parameter that takes part in one (by more
- * than `unseen_share`) has no linear error. The covariance of the parameters follows with dp/du on both sides.
- * Can fail: bad description, no model at the start, iteration limit, memory.
+ * With J the Jacobian in u, each column divided by its length d_j: J = U S V^T D. Directions with a singular
+ * value below settings.rank are unseen: they are left out of C = D^-1 V S^-2 V^T D^-1, and a parameter that takes
+ * part in one (by more than `unseen_share`) has no linear error. The covariance of the parameters follows with
+ * dp/du on both sides. Can fail: bad description, no model at the start, iteration limit, memory.
  */
 #include "luxgale/constants.h"
 #include "luxgale/memory.h"
@@ -103,7 +103,8 @@ static void scale_columns(gsl_matrix *a, double *length) {
   }
 }
 
-/* Adds one seen direction to the covariance (in u) and to the decrement g^T C g = sum_k (u_k . f)^2 of that direction. */
+/* Adds one seen direction to the covariance (in u) and to the decrement g^T C g = sum_k (u_k . f)^2 of that
+ * direction. */
 static void add_seen(const double *v, double s, const double *length, size_t count,
                      struct lxg_fit_result *result) {
   for (size_t i = 0; i < count; i++) {

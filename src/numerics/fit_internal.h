@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * fit_internal.h - what the minimisation and the profile interval of fit.h share: one minimisation over the internal
- * coordinates u with some of them held.
+ * fit_internal.h - what the minimisation and the profile interval of fit.h share: one minimisation over the
+ * internal coordinates u with some of them held.
  */
 #ifndef LUXGALE_NUMERICS_FIT_INTERNAL_H
 #define LUXGALE_NUMERICS_FIT_INTERNAL_H
@@ -39,8 +39,9 @@ double lxg_fit_scale(const struct lxg_fit_parameter *parameter, double u);
 /* chi^2 at work->u; infinity where the model has no answer. */
 double lxg_fit_chi2(struct lxg_fit_work *work);
 
-/* Minimises over all coordinates but `held` from work->u. chi2 is infinite if the model has no answer at the start.
- * `jacobian` (rows x free, row-major, may be NULL) and `residual` (rows, may be NULL) are those at the end. */
+/* Minimises over all coordinates but `held` from work->u. chi2 is infinite if the model has no answer at the
+ * start. `jacobian` (rows x free, row-major, may be NULL) and `residual` (rows, may be NULL) are those at the
+ * end. */
 enum lxg_status lxg_fit_minimise(struct lxg_fit_work *work, size_t held, double *chi2, bool *converged,
                                  double *jacobian, double *residual, struct lxg_error *error);
 

@@ -1,9 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * fit_minimise.c - one trust-region minimisation of chi^2 in internal coordinates (see fit.h), on GSL's multifit_nlinear.
+ * fit_minimise.c - one trust-region minimisation of chi^2 in internal coordinates (see fit.h), on GSL's
+ * multifit_nlinear.
  *
- * A trial point without a model answer returns residuals so large that the step control refuses it and shortens the step.
- * Central differences fall back to one side at the edge of the model's domain. Can fail: memory, a fatal callback.
+ * A trial point without a model answer returns residuals so large that the step control refuses it and shortens
+ * the step. Central differences fall back to one side at the edge of the model's domain. Can fail: memory, a
+ * fatal callback.
  */
 #include "luxgale/memory.h"
 #include "numerics/fit_internal.h"
@@ -116,7 +118,8 @@ static int gsl_residual(const gsl_vector *x, void *params, gsl_vector *f) {
   return GSL_SUCCESS;
 }
 
-/* One column by differences about u_j: central, or one-sided against the residuals `here` where one side has no answer. */
+/* One column by differences about u_j: central, or one-sided against the residuals `here` where one side has no
+ * answer. */
 static void difference_column(struct lxg_fit_work *work, size_t j, double *here, gsl_vector *column) {
   const double u = work->u[j];
   const double step = work->settings->difference * fmax(1.0, fabs(u));

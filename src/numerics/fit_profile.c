@@ -1,11 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * fit_profile.c - profile-likelihood intervals (see fit.h): the parameter is held at a trial value, chi^2 minimised over the
- * others, and the value sought where the minimum has risen by settings.rise.
+ * fit_profile.c - profile-likelihood intervals (see fit.h): the parameter is held at a trial value, chi^2
+ * minimised over the others, and the value sought where the minimum has risen by settings.rise.
  *
- * Search outward from the best value in steps of one linear sigma, doubled each time, then bisection (the profile is
- * monotone near a minimum but need not be smooth; each trial starts from the last inner point). Can fail: memory, a fatal
- * callback; a lower minimum met on the way is handed back.
+ * Search outward from the best value in steps of one linear sigma, doubled each time, then bisection (the profile
+ * is monotone near a minimum but need not be smooth; each trial starts from the last inner point). Can fail:
+ * memory, a fatal callback; a lower minimum met on the way is handed back.
  */
 #include "numerics/fit_internal.h"
 

@@ -2,8 +2,9 @@
  *
  * profile.c - checks, the sampled profile, its features, and the photon balance (see profile.h).
  *
- * Features are read off the exact F(x), not off the samples: extrema by golden section about the best sample, edges and half
- * heights by bisection between neighbouring samples. Can fail: bad input, a law without answer, memory.
+ * Features are read off the exact F(x), not off the samples: extrema by golden section about the best sample,
+ * edges and half heights by bisection between neighbouring samples. Can fail: bad input, a law without answer,
+ * memory.
  */
 #include "luxgale/constants.h"
 #include "luxgale/memory.h"
@@ -230,9 +231,9 @@ static void find_emission(struct lxg_profile_problem *problem, struct lxg_profil
   }
 }
 
-/* int (F - F_c) dv by Gauss panels; F has corners at 0, at the speeds of the inner and outer ends, and where
- * the core just covers the surface at the outer end, x = v (1 - R^2/r^2)^(1/2); it bends sharply above the inner speed: graded as
- * t^2 there. */
+/* int (F - F_c) dv by Gauss panels; F has corners at 0, at the speeds of the inner and outer ends, and where the
+ * core just covers the surface at the outer end, x = v (1 - R^2/r^2)^(1/2); it bends sharply above the inner
+ * speed: graded as t^2 there. */
 static double line_flux(struct lxg_profile_problem *problem) {
   const double v1 = problem->inner_speed, v2 = problem->outer_speed,
                ratio = problem->flow.inner / problem->flow.outer;

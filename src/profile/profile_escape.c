@@ -2,8 +2,9 @@
  *
  * profile_escape.c - escape probabilities (P2) and the line at one point of the flow (P1, P3 of profile.h).
  *
- * f(tau_0/w), w = 1 + sigma mu^2, changes over mu ~ 1/sigma^(1/2) when the flow is steep and near mu = 1 when the speed is
- * constant (w -> 0): the Gauss panels are graded accordingly. Can fail: a law that fails or gives impossible gas.
+ * f(tau_0/w), w = 1 + sigma mu^2, changes over mu ~ 1/sigma^(1/2) when the flow is steep and near mu = 1 when the
+ * speed is constant (w -> 0): the Gauss panels are graded accordingly. Can fail: a law that fails or gives
+ * impossible gas.
  */
 #include "luxgale/constants.h"
 #include "profile/profile_internal.h"

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * profile_internal.h - what the files of the profile module share: the checked problem and the two formal integrals.
+ * profile_internal.h - what the files of the profile module share: the checked problem and the two formal
+ * integrals.
  */
 #ifndef LUXGALE_PROFILE_INTERNAL_H
 #define LUXGALE_PROFILE_INTERNAL_H

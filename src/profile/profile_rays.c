@@ -1,9 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * profile_rays.c - the formal integral ray by ray, for flows in which one ray may meet gas of one velocity several times.
+ * profile_rays.c - the formal integral ray by ray, for flows in which one ray may meet gas of one velocity
+ * several times.
  *
- * On the ray at distance p the approach velocity is v_z = v(r) z/r. Each sign change of v_z - x between neighbouring radial
- * nodes is a resonance, found by the secant rule; surfaces are passed from the far end to the near one,
+ * On the ray at distance p the approach velocity is v_z = v(r) z/r. Each sign change of v_z - x between
+ * neighbouring radial nodes is a resonance, found by the secant rule; surfaces are passed from the far end to the
+ * near one,
  *   I <- I e^-tau + S (1 - e^-tau),  tau = tau_0/|1 + sigma mu^2|,
  * starting from I_c on the core. Rays: Gauss panels in p inside the core and, graded outward, outside it.
  */

@@ -2,14 +2,14 @@
  *
  * profile_surface.c - the formal integral along the resonance surface of an outflow that nowhere decelerates.
  *
- * At approach velocity x the surface cos = x/v(r) meets each sphere with v(r) >= |x| once; its distance p from the line of sight
- * rises with r, p dp = r (1 + sigma mu^2) dr. What it adds to the continuum is
+ * At approach velocity x the surface cos = x/v(r) meets each sphere with v(r) >= |x| once; its distance p from
+ * the line of sight rises with r, p dp = r (1 + sigma mu^2) dr. What it adds to the continuum is
  *   int 2 pi r (1 + sigma mu^2) (1 - e^-tau) [S - I_c (in front of the core)] dr,
- * from the start (v = |x|, or R) to where p = R, and on to the end; behind the core (x < 0, p < R) nothing is seen. ln r is graded
- * as t^2 at the lower end of each stretch, where S has the square root of mu_c.
+ * from the start (v = |x|, or R) to where p = R, and on to the end; behind the core (x < 0, p < R) nothing is
+ * seen. ln r is graded as t^2 at the lower end of each stretch, where S has the square root of mu_c.
  *
- * Thin emission needs no order of the surfaces: in any flow it is int 2 pi r^2 (e rho^2/v) dr over all radii with v(r) >= |x|
- * that are not hidden.
+ * Thin emission needs no order of the surfaces: in any flow it is int 2 pi r^2 (e rho^2/v) dr over all radii with
+ * v(r) >= |x| that are not hidden.
  */
 #include "luxgale/constants.h"
 #include "profile/profile_internal.h"

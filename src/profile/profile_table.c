@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * profile_table.c - an outflow from arrays (see profile.h): ln v and ln rho over ln r by Steffen's monotone interpolation
- * (Steffen 1990, A&A 239, 443), so a rising speed stays rising and its slope is continuous. Can fail: bad rows, memory.
+ * profile_table.c - an outflow from arrays (see profile.h): ln v and ln rho over ln r by Steffen's monotone
+ * interpolation (Steffen 1990, A&A 239, 443), so a rising speed stays rising and its slope is continuous. Can
+ * fail: bad rows, memory.
  */
 #include "luxgale/memory.h"
 #include "luxgale/profile.h"

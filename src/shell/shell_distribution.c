@@ -2,8 +2,8 @@
  *
  * shell_distribution.c - ejected mass over speed, dM/dv, as it left and after sweeping (see shell.h).
  *
- * Within a sampling interval the speed is linear in departure time, so each bin takes an interval of departure times and its
- * mass is an exact integral. Can fail: edges out of order, memory.
+ * Within a sampling interval the speed is linear in departure time, so each bin takes an interval of departure
+ * times and its mass is an exact integral. Can fail: edges out of order, memory.
  */
 #include "luxgale/memory.h"
 #include "shell/shell_internal.h"

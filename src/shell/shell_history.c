@@ -1,10 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * shell_history.c - the ejection history as straight pieces, its integrals, and the first overtaking (see shell.h).
+ * shell_history.c - the ejection history as straight pieces, its integrals, and the first overtaking (see
+ * shell.h).
  *
- * First overtaking: within a piece of rising speed, the gas at its start is caught first, t_c = tau + v/v'; between two
- * pieces with gas, parted by a jump or by a pause without gas, t_c = (v_2 tau_2 - v_1 tau_1)/(v_2 - v_1) if v_2 > v_1.
- * Can fail: samples out of order or range, memory.
+ * First overtaking: within a piece of rising speed, the gas at its start is caught first, t_c = tau + v/v';
+ * between two pieces with gas, parted by a jump or by a pause without gas, t_c = (v_2 tau_2 - v_1 tau_1)/(v_2 -
+ * v_1) if v_2 > v_1. Can fail: samples out of order or range, memory.
  */
 #include "luxgale/memory.h"
 #include "shell/shell_internal.h"

@@ -2,12 +2,12 @@
  *
  * shell_hull.c - all shells of an epoch (see shell.h): pooling of gas that has crossed, then the exact edges.
  *
- * The departure times are cut into cells, finer towards the samples, each with its mass and mean ballistic distance. Going
- * inward, a cell farther out than the one before it has crossed it: they are pooled with their mean distance, until distances
- * fall inward again (pool-adjacent-violators: the same as the convex hull of int x dM). Pools of several cells are shells. The
- * distance X of a shell then solves (S2) with edges tau(X) from (S3), each edge being where int Mdot (x - X) dtau is largest
- * within a cell of the pool's edge: a crossing of x = X (a quadratic) or a corner of the history. Newton in X; the slope of
- * (S2) is minus the mass. Can fail: memory.
+ * The departure times are cut into cells, finer towards the samples, each with its mass and mean ballistic
+ * distance. Going inward, a cell farther out than the one before it has crossed it: they are pooled with their
+ * mean distance, until distances fall inward again (pool-adjacent-violators: the same as the convex hull of int x
+ * dM). Pools of several cells are shells. The distance X of a shell then solves (S2) with edges tau(X) from (S3),
+ * each edge being where int Mdot (x - X) dtau is largest within a cell of the pool's edge: a crossing of x = X (a
+ * quadratic) or a corner of the history. Newton in X; the slope of (S2) is minus the mass. Can fail: memory.
  */
 #include "luxgale/constants.h"
 #include "luxgale/memory.h"
@@ -120,7 +120,8 @@ static void try_label(const struct lxg_shell_history *history, double t, double 
   }
 }
 
-/* Both departure times at which gas of this piece is at x: w = t - tau solves v'w^2 - A w + x = 0, A = v + v'w. */
+/* Both departure times at which gas of this piece is at x: w = t - tau solves v'w^2 - A w + x = 0, A = v + v'w.
+ * */
 static void try_cell(const struct lxg_shell_history *history, double t, double x, double pivot, double from,
                      double to, struct edge *edge) {
   const struct lxg_shell_segment *const s =
@@ -178,8 +179,8 @@ static struct exact_shell refine(const struct lxg_shell_history *history, double
   return shell;
 }
 
-/* Energy of motion lost per second at an edge: rate of arriving mass Mdot |dtau/dt| times (v - V)^2/2, with dtau/dt =
- * (v - V)/[v - v'(t - tau)]; for a steady wind Mdot (v - V)^3/(2 v). */
+/* Energy of motion lost per second at an edge: rate of arriving mass Mdot |dtau/dt| times (v - V)^2/2, with
+ * dtau/dt = (v - V)/[v - v'(t - tau)]; for a steady wind Mdot (v - V)^3/(2 v). */
 static double power(double t, const struct edge *edge, double shell_speed) {
   if (!edge->crossing) {
     return 0.0;

@@ -9,7 +9,8 @@
 
 #include "luxgale/shell.h"
 
-/* One stretch between two samples at different times: v = speed + speed_slope u, Mdot = rate + rate_slope u, u = tau - start. */
+/* One stretch between two samples at different times: v = speed + speed_slope u, Mdot = rate + rate_slope u, u =
+ * tau - start. */
 struct lxg_shell_segment {
   double start, end;         /* [s] from the origin */
   double speed, speed_slope; /* [cm s^-1], [cm s^-2] */
