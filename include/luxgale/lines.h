@@ -14,6 +14,7 @@
 #ifndef LUXGALE_LINES_H
 #define LUXGALE_LINES_H
 
+#include "luxgale/checksum.h"
 #include "luxgale/status.h"
 
 #include <stdbool.h>
@@ -91,6 +92,16 @@ enum lxg_line_kind lxg_line_kind_find(const char *name); /* LXG_LINE_KINDS if th
 enum lxg_status lxg_lines_create(const struct lxg_line_input input[], size_t count, struct lxg_lines **lines,
                                  struct lxg_error *error);
 void lxg_lines_destroy(struct lxg_lines *lines);
+
+/* Reads a CSV or ECSV table (table.h); units from its header, else those in brackets. Columns: `time` [d]; `kind`
+ * (names above); `line` and `component`, texts, optional; and in each row exactly one of
+ *   wavelength, half_width [Angstrom] with rest_wavelength [Angstrom] and `medium`, the text air or vacuum
+ *   velocity [km/s]: radial, negative approaches          speed [km/s]: of expansion, positive
+ * with its NAME_error. Other columns are passed over unless their name is a near miss of one of these
+ * ("line-column"). checksum (NULL allowed) receives the SHA-256 of the file. Errors of lxg_table_read and
+ * lxg_table_cgs; bad rows as lxg_lines_create names them, by line of the file. */
+enum lxg_status lxg_lines_read(const char *path, struct lxg_lines **lines, char checksum[LXG_CHECKSUM_SIZE],
+                               struct lxg_error *error);
 
 /* ---- which model speed a kind is compared with ---- */
 

@@ -10,9 +10,9 @@
 
 #include "luxgale/constants.h"
 #include "luxgale/memory.h"
+#include "luxgale/text.h"
 
 #include <math.h>
-#include <stdlib.h>
 #include <string.h>
 
 static const double air_shortest = 2e-5; /* [cm]: below 2000 Angstrom wavelengths are listed in vacuum */
@@ -67,9 +67,9 @@ enum lxg_status lxg_line_map_set(struct lxg_line_map *map, const char *kind, con
   int m = find(model_names, LXG_LINE_MODELS, model);
   double depth = 0.0;
   if (m == LXG_LINE_MODELS && strncmp(model, "depth ", 6) == 0) {
-    char *end = NULL;
-    depth = strtod(model + 6, &end);
-    m = end != model + 6 && *end == '\0' ? LXG_LINE_MODEL_DEPTH : m;
+    const char *const number = model + 6;
+    const bool read = lxg_text_parse_number(number, strlen(number), false, &depth) == LXG_TEXT_NUMBER;
+    m = read ? LXG_LINE_MODEL_DEPTH : m;
   }
   if (m == LXG_LINE_MODELS || (m == LXG_LINE_MODEL_DEPTH && !(depth > 0.0 && isfinite(depth)))) {
     return lxg_error_set(
