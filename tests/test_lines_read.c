@@ -106,7 +106,7 @@ START_TEST(bad_tables) {
   refuse("time,kind,speeed,speed_error\n1,absorption,500,10\n", "line-column", "did you mean speed?");
   refuse("kind,speed,speed_error\nabsorption,500,10\n", "table-column", "time");
   refuse("time,speed,speed_error\n1,500,10\n", "table-column", "kind");
-  refuse("time,kind,speed [parsec],speed_error\n1,absorption,500,10\n", "unit-unknown", "parsec");
+  refuse("time,kind,speed [parsec],speed_error\n1,absorption,500,10\n", "unit-dimension", "parsec");
 }
 END_TEST
 
