@@ -32,6 +32,7 @@ static struct columns decline(void) {
 
 static struct lxg_history_rows rows_of(const struct columns *c) {
   return (struct lxg_history_rows){.kind = LXG_HISTORY_PHOTOSPHERE,
+                                   .gap_fraction = 0.2,
                                    .count = ROWS,
                                    .time = c->time,
                                    .luminosity = c->luminosity,
@@ -106,7 +107,8 @@ START_TEST(several_intervals) {
     time[i] = 1.9e5 * i;
     luminosity[i] = i % 2 == 1 ? 9e38 : 1e38;
   }
-  const struct lxg_history_rows rows = {.count = COUNT, .time = time, .luminosity = luminosity};
+  const struct lxg_history_rows rows = {
+      .count = COUNT, .time = time, .luminosity = luminosity, .gap_fraction = INFINITY};
   struct lxg_history *history = build(&rows);
   struct lxg_history_excess excess = {0};
   ck_assert_int_eq(lxg_history_excess(history, LXG_HISTORY_VALUE, 3e38, &excess, NULL), LXG_OK);
@@ -161,7 +163,8 @@ END_TEST
 
 START_TEST(single_row) {
   const double time = 3.3e5, luminosity = 2.2e38;
-  const struct lxg_history_rows rows = {.count = 1, .time = &time, .luminosity = &luminosity};
+  const struct lxg_history_rows rows = {
+      .count = 1, .time = &time, .luminosity = &luminosity, .gap_fraction = 0.2};
   struct lxg_history *history = build(&rows);
   struct lxg_history_value value = {0};
   ck_assert_int_eq(lxg_history_at(history, LXG_HISTORY_VALUE, time, &value), LXG_OK);
@@ -359,7 +362,7 @@ START_TEST(rows_refused) {
   rows.high = NULL;
   expect_refused(&rows, "history-error", "both");
   rows = rows_of(&good);
-  rows.gap_fraction = NAN;
+  rows.gap_fraction = 0.0;
   expect_refused(&rows, "history-gap-fraction", "gap fraction");
   rows.count = 0;
   expect_refused(&rows, "history-empty", "at least one");

@@ -90,7 +90,8 @@ void lxg_bvp_destroy(struct lxg_bvp *bvp);
 /* Copies mesh, solution and parameters (capacities and sizes must agree: LXG_BUG otherwise). */
 enum lxg_status lxg_bvp_copy(struct lxg_bvp *to, const struct lxg_bvp *from);
 
-/* Sets the mesh (nodes[0..intervals], increasing, containing 0..pieces) and a guess y(x), dy/dx from a callback. */
+/* Sets the mesh (nodes[0..intervals], increasing from a whole number to `pieces`, containing every whole number between) and
+ * a guess y(x), dy/dx from a callback. A chain that starts at 1, say, leaves the first piece and site 0 out. */
 enum lxg_status lxg_bvp_guess(struct lxg_bvp *bvp, const double nodes[], size_t intervals, size_t pieces,
                               void (*guess)(const void *context, double x, double y[], double k[]),
                               const void *context, const double p[]);

@@ -86,7 +86,9 @@ struct lxg_family_options {
   double thin_depth;  /* the thin end: critical optical depth below which diffusion is no description */
   double radius_most; /* the thick end at the latest: photospheric radius [cm] */
   double energy_most; /* the thick end at the latest: energy rate in units of L_Edd */
-  size_t count_most;  /* winds at most */
+  double
+      envelope_most; /* the thick end at the latest: envelope mass over the star's; its own gravity is neglected */
+  size_t count_most; /* winds at most */
 };
 struct lxg_family_options lxg_family_options_default(void);
 

@@ -23,8 +23,6 @@ enum lxg_history_kind { LXG_HISTORY_BASE, LXG_HISTORY_PHOTOSPHERE };
 /* Which curve of a history with luminosity errors. */
 enum lxg_history_curve { LXG_HISTORY_VALUE, LXG_HISTORY_LOW, LXG_HISTORY_HIGH };
 
-#define LXG_HISTORY_GAP_FRACTION 0.2 /* default: an interval longer than a fifth of the whole span is a gap */
-
 /* Rows as they come from a file or another module; borrowed during the call only. */
 struct lxg_history_rows {
   enum lxg_history_kind kind;
@@ -34,7 +32,7 @@ struct lxg_history_rows {
   const double *low;   /* lower 68 % bound [erg s^-1], above 0 and at most the luminosity; NULL: no errors */
   const double *high;  /* upper 68 % bound [erg s^-1], at least the luminosity; NULL exactly when `low` is */
   const size_t *line;  /* line of each row in its file, for messages; NULL: rows are numbered from 1 */
-  double gap_fraction; /* share of the span that makes an interval a gap, above 0; 0 means the default */
+  double gap_fraction; /* share of the whole span beyond which an interval is a gap, > 0; INFINITY: no gaps */
 };
 
 /* An interval without data, between rows `row` and `row + 1` (from 0). */

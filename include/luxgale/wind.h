@@ -146,6 +146,11 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
 void lxg_wind_solver_destroy(struct lxg_wind_solver *solver);
 const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver *solver);
 
+/* With `outer_only` the cold starts that follow leave out everything inside the critical point: a held launch radius does not
+ * need it, and a super-Eddington porous wind may have no static inside at all. Base quantities and the envelope mass are
+ * then NaN. Off at first. */
+void lxg_wind_solver_outer_only(struct lxg_wind_solver *solver, bool outer_only);
+
 /* LXG_INPUT when two held quantities are out of range or are the same one ("hold-value", "hold-dependent", ...). */
 enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                      struct lxg_error *error);

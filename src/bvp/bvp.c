@@ -230,7 +230,7 @@ void lxg_bvp_visit(const struct lxg_bvp *b,
                    void (*visit)(void *context, size_t piece, double x, double weight, const double y[]),
                    void *context) {
   const size_t n = b->n, stages = b->tableau.stages;
-  size_t piece = 0;
+  size_t piece = (size_t)b->x[0];
   for (size_t i = 0; i < b->intervals; i++) {
     const double h = b->x[i + 1] - b->x[i];
     for (size_t j = 0; j < stages; j++) {

@@ -431,12 +431,12 @@ static void substitute_back(const struct sweep *s, const double last[], double d
 static enum lxg_status correction(struct sweep *s, double dy[], double dk[], double dp[]) {
   struct lxg_bvp *b = s->bvp;
   const size_t n = b->n, width = 2 * n + b->m;
-  size_t piece = 0;
+  size_t piece = (size_t)b->x[0];
   for (size_t r = 0; r < s->problem->integrals; r++) {
     memset(s->border[r], 0, sizeof s->border[r]);
     s->border_rhs[r] = 1.0;
   }
-  enum lxg_status status = site_rows(s, 0, 0);
+  enum lxg_status status = site_rows(s, piece, 0);
   for (size_t i = 0; status == LXG_OK && i < b->intervals; i++) {
     double *rhs = b->rhs + i * BVP_ROWS;
     status = condense(s, piece, i);

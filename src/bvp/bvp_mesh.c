@@ -41,7 +41,7 @@ static void sample(const struct lxg_bvp *b, size_t i, size_t j, double y[], doub
 double lxg_bvp_mesh_residual(const struct lxg_bvp *b, const struct lxg_bvp_problem *problem,
                              double residual[], double *worst_x) {
   double largest = 0.0;
-  size_t piece = 0;
+  size_t piece = (size_t)b->x[0];
   for (size_t i = 0; i < b->intervals; i++) {
     double worst = 0.0;
     for (size_t j = 0; j < b->samples.count; j++) {
@@ -177,7 +177,7 @@ enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *b, const double residual[], d
   size_t count = 0;
   size_t first = 0;
   b->new_x[0] = b->x[0];
-  for (size_t piece = 1; piece <= b->pieces; piece++) {
+  for (size_t piece = (size_t)b->x[0] + 1; piece <= b->pieces; piece++) {
     size_t last = first + 1;
     while (b->x[last] < (double)piece) {
       last++;

@@ -26,6 +26,41 @@ static int rank(enum lxg_held quantity) {
   return i;
 }
 
+/* Walks the family of hold[first] and catches the winds with the other held value. */
+static enum lxg_status search(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                              size_t first, struct family_catch *found, struct lxg_wind *winds,
+                              struct lxg_error *error) {
+  struct lxg_family_options options = lxg_family_options_default();
+  options.tolerance = coarse;
+  struct lxg_family family;
+  const enum lxg_status status =
+      lxg_family_trace_catching(solver, &hold[first], &options, found, &family, error);
+  if (status != LXG_OK) {
+    winds[0].reason = LXG_WIND_NOT_FOUND;
+    return status;
+  }
+  if (found->count == 0) {
+    const struct lxg_wind_hold *other = &hold[1 - first];
+    winds[0].reason = lxg_family_missing(&family, (enum lxg_family_quantity)other->quantity, other->value);
+    lxg_family_free(&family);
+    return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(winds[0].reason), "%s",
+                         lxg_wind_reason_text(winds[0].reason));
+  }
+  lxg_family_free(&family);
+  return LXG_OK;
+}
+
+/* A pair of quantities that live at or outside the critical point, one of them its radius. */
+static bool needs_no_inside(const struct lxg_wind_hold hold[2]) {
+  bool radius = false, inner = false;
+  for (size_t i = 0; i < 2; i++) {
+    radius = radius || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS;
+    inner = inner || hold[i].quantity == LXG_HELD_BASE_TEMPERATURE ||
+            hold[i].quantity == LXG_HELD_BASE_LUMINOSITY || hold[i].quantity == LXG_HELD_ENVELOPE_MASS;
+  }
+  return radius && !inner;
+}
+
 enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                    enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
                                    size_t *count, struct lxg_error *error) {
@@ -37,30 +72,22 @@ enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct 
   }
   struct family_catch found = {
       .target = &hold[1 - first], .wind = winds, .capacity = capacity, .thick = branch == LXG_BRANCH_THICK};
-  struct lxg_family_options options = lxg_family_options_default();
-  options.tolerance = coarse;
-  struct lxg_family family;
-  status = lxg_family_trace_catching(solver, &hold[first], &options, &found, &family, error);
-  if (status != LXG_OK) {
-    winds[0].reason = LXG_WIND_NOT_FOUND;
-    return status;
+  status = search(solver, hold, first, &found, winds, error);
+  if (status == LXG_NO_SOLUTION && needs_no_inside(hold)) {
+    lxg_wind_solver_outer_only(solver, true);
+    status = search(solver, hold, first, &found, winds, error);
+    lxg_wind_solver_outer_only(solver, false);
   }
   *count = found.count;
-  if (found.count == 0) {
-    winds[0].reason = lxg_family_missing(&family, (enum lxg_family_quantity)hold[1 - first].quantity,
-                                         hold[1 - first].value);
-    status = lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(winds[0].reason), "%s",
-                           lxg_wind_reason_text(winds[0].reason));
-  } else {
-    for (size_t i = 1; i < found.count && i < capacity; i++) {
-      if (winds[i].value[LXG_HELD_MASS_LOSS_RATE] == found.best_rate) {
-        const struct lxg_wind swap = winds[0];
-        winds[0] = winds[i];
-        winds[i] = swap;
-      }
-    }
-    status = lxg_wind_recall(solver, SLOT_BEST);
+  if (status != LXG_OK) {
+    return status;
   }
-  lxg_family_free(&family);
-  return status;
+  for (size_t i = 1; i < found.count && i < capacity; i++) {
+    if (winds[i].value[LXG_HELD_MASS_LOSS_RATE] == found.best_rate) {
+      const struct lxg_wind swap = winds[0];
+      winds[0] = winds[i];
+      winds[i] = swap;
+    }
+  }
+  return lxg_wind_recall(solver, SLOT_BEST);
 }

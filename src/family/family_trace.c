@@ -27,6 +27,7 @@ struct lxg_family_options lxg_family_options_default(void) {
                                              .thin_depth = 5.0,
                                              .radius_most = 1e5 * LXG_SOLAR_RADIUS,
                                              .energy_most = 30.0,
+                                             .envelope_most = 0.1,
                                              .count_most = 4000};
   return options;
 }
@@ -44,6 +45,7 @@ struct tracer {
   const struct lxg_wind_hold *hold;
   const struct lxg_family_options *options;
   double l_edd;
+  double star_mass; /* [g] */
   int newton_steps;
   bool entered;               /* the walk has been inside the limits */
   struct family_catch *found; /* winds with a second held value, or NULL */
@@ -112,7 +114,8 @@ static enum lxg_wind_reason beyond(const struct tracer *tracer, const struct lxg
     return LXG_WIND_BELOW_THIN_END;
   }
   return wind->photosphere.radius > tracer->options->radius_most ||
-                 wind->value[LXG_HELD_ENERGY_RATE] > tracer->options->energy_most * tracer->l_edd
+                 wind->value[LXG_HELD_ENERGY_RATE] > tracer->options->energy_most * tracer->l_edd ||
+                 wind->value[LXG_HELD_ENVELOPE_MASS] > tracer->options->envelope_most * tracer->star_mass
              ? LXG_WIND_BEYOND_LIMIT
              : LXG_WIND_SOLVED;
 }
@@ -278,6 +281,7 @@ enum lxg_status lxg_family_trace_catching(struct lxg_wind_solver *solver, const 
                           .hold = hold,
                           .options = options != NULL ? options : &standard,
                           .l_edd = lxg_star_eddington_luminosity(&model->star, &model->composition),
+                          .star_mass = model->star.gm / LXG_GRAVITATION,
                           .found = found};
   struct trail thin = {0}, thick = {0};
   struct lxg_wind first;

@@ -77,7 +77,7 @@ static enum lxg_status check_rows(const struct lxg_history_rows *rows, struct lx
     return lxg_error_set(error, LXG_INPUT, "history-error",
                          "only one of the two luminosity bounds is given: give both or none");
   }
-  if (!(rows->gap_fraction >= 0.0)) {
+  if (!(rows->gap_fraction > 0.0)) {
     return lxg_error_set(error, LXG_INPUT, "history-gap-fraction", "gap fraction = %.10g: above 0",
                          rows->gap_fraction);
   }
@@ -120,7 +120,8 @@ done:
 
 static enum lxg_status find_gaps(struct lxg_history *history, double fraction, struct lxg_error *error) {
   const size_t count = history->count;
-  const double longest = fraction * (history->time[count - 1] - history->time[0]);
+  const double span = history->time[count - 1] - history->time[0];
+  const double longest = span > 0.0 ? fraction * span : INFINITY;
   for (int pass = 0; pass < 2; pass++) { /* count, then store */
     size_t found = 0;
     for (size_t i = 0; i + 1 < count; i++) {
@@ -160,8 +161,7 @@ static enum lxg_status fill(struct lxg_history *history, const struct lxg_histor
     status = take_curve(history, rows->high, &history->high, &history->ln_high, error);
   }
   if (status == LXG_OK) {
-    const double fraction = rows->gap_fraction == 0.0 ? LXG_HISTORY_GAP_FRACTION : rows->gap_fraction;
-    status = find_gaps(history, fraction, error);
+    status = find_gaps(history, rows->gap_fraction, error);
   }
   return status;
 }

@@ -147,6 +147,14 @@ static double carried(const struct wind_constants *constants, const struct wind_
   return exp(from->ln_mdot) * lxg_eos_radiation_enthalpy(exp(from->ln_t), rho) / constants->l_edd;
 }
 
+double lxg_wind_coast_luminosity(const struct wind_constants *constants, const struct wind_place *photosphere,
+                                 const struct wind_coast_point *point) {
+  const double g = constants->gm / exp(point->ln_r);
+  const double v = exp(point->ln_v), c_t2 = constants->c_t2_per_k * exp(point->ln_t);
+  return photosphere->lambda - carried(constants, photosphere) -
+         exp(photosphere->ln_mdot) / constants->l_edd * (0.5 * v * v + 2.5 * c_t2 - g);
+}
+
 static enum lxg_status march(struct wind_coast *coast, struct lxg_ivp *ivp, lxg_ivp_slope *slope,
                              const struct wind_place *from, struct recorder *recorder, double y[]) {
   coast->from = *from;

@@ -35,6 +35,9 @@ static double approximate(const struct lxg_wind_solver *solver, int kind, double
   const size_t last = outer->count - 1;
   const double *end = outer->y[last];
   const size_t deep = solver->inner.count - 1;
+  if (solver->outer_only && (lxg_wind_row_site(kind) == 0 || kind == LXG_HELD_ENVELOPE_MASS)) {
+    return NAN;
+  }
   switch (kind) {
   case LXG_HELD_LAUNCH_RADIUS:
     return outer->ln_r[0];
@@ -73,14 +76,15 @@ static double approximate(const struct lxg_wind_solver *solver, int kind, double
   }
 }
 
-/* Marches at (r_c, T_c); false if there is no approximate wind with an inside down to the star. */
+/* Marches at (r_c, T_c); false if there is no approximate wind with an inside down to the star (if that is wanted). */
 static bool march(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double accuracy,
                   double *ln_mdot, double *lambda) {
   const struct wind_constants *constants = &solver->problem.constants;
   return lxg_wind_start_outer(constants, solver->ivp, ln_rc, ln_tc, accuracy, &solver->outer,
                               &solver->scratch, ln_mdot, lambda) == LXG_OK &&
-         lxg_wind_start_inner(constants, solver->ivp, ln_rc, ln_tc, *ln_mdot, &solver->inner) == LXG_OK &&
-         solver->inner.count >= 2;
+         (solver->outer_only ||
+          (lxg_wind_start_inner(constants, solver->ivp, ln_rc, ln_tc, *ln_mdot, &solver->inner) == LXG_OK &&
+           solver->inner.count >= 2));
 }
 
 struct guess_map {
@@ -107,11 +111,12 @@ static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, doub
   }
   const struct guess_map map = {solver, ln_rc, solver->outer.ln_r[solver->outer.count - 1]};
   double nodes[2 * GUESS_INTERVALS + 1];
-  for (size_t i = 0; i <= 2 * GUESS_INTERVALS; i++) {
-    nodes[i] = (double)i / GUESS_INTERVALS;
+  const size_t intervals = (solver->outer_only ? 1 : 2) * GUESS_INTERVALS;
+  for (size_t i = 0; i <= intervals; i++) {
+    nodes[i] = (solver->outer_only ? 1.0 : 0.0) + (double)i / GUESS_INTERVALS;
   }
   const double p[WIND_P_COUNT] = {ln_rc, ln_mdot, lambda, map.ln_rph, 0.0};
-  const enum lxg_status status = lxg_bvp_guess(solver->now, nodes, 2 * GUESS_INTERVALS, 2, guess, &map, p);
+  const enum lxg_status status = lxg_bvp_guess(solver->now, nodes, intervals, 2, guess, &map, p);
   if (status != LXG_OK) {
     return status;
   }

@@ -72,8 +72,10 @@ struct wind_problem {
   struct lxg_bvp_problem bvp;
 };
 
-/* Sets the two held rows and the sizes that follow from them. */
-void lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row row[2]);
+/* Sets the two held rows and the sizes that follow from them. LXG_NO_SOLUTION when a row lives in the inner piece and that
+ * is left out. */
+enum lxg_status lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row row[2],
+                                     bool outer_only);
 size_t lxg_wind_row_site(int kind);
 double lxg_wind_ln_r(const struct wind_constants *constants, double x, const double p[]);
 
@@ -95,6 +97,10 @@ enum lxg_status lxg_wind_coast_gradient(struct wind_coast *coast, const struct w
  * where the flow stalled. */
 enum lxg_status lxg_wind_coast_track(struct wind_coast *coast, const struct wind_place *from,
                                      struct wind_coast_point point[], size_t capacity, size_t *count);
+
+/* L/L_Edd of the coasting gas at a point, for the photosphere it comes from. */
+double lxg_wind_coast_luminosity(const struct wind_constants *constants, const struct wind_place *photosphere,
+                                 const struct wind_coast_point *point);
 
 /* A recorded march, from the critical point away. */
 enum { WIND_TRACK_POINTS = 2048 };
@@ -127,6 +133,7 @@ struct lxg_wind_solver {
   struct lxg_ivp *ivp;
   struct wind_track outer, inner, scratch;
   bool have;        /* `kept` holds a wind */
+  bool outer_only;  /* new winds are solved outside the critical point only */
   int newton_steps; /* since the search began */
   double residual;  /* of the kept wind */
 };

@@ -4,7 +4,7 @@
  *
  * Unknowns y = (ln v, ln T) on two pieces: x in [0, 1] from R_0 to r_c, x in [1, 2] from r_c to R_ph, ln r linear in x on
  * each. Parameters p = (ln r_c, ln Mdot, lambda = Lambda/L_Edd, ln R_ph, ln M_env); the last only when the envelope mass is
- * held. Conditions: v = c_T and N = 0 at r_c; 4 pi R^2 sigma T^4 = L and kappa rho R = 8/3 at R_ph; two held rows, each
+ * held. A chain that starts at x = 1 leaves the inner piece out. Conditions: v = c_T and N = 0 at r_c; 4 pi R^2 sigma T^4 = L and kappa rho R = 8/3 at R_ph; two held rows, each
  * at the site where its quantity lives.
  */
 #include "wind/wind_internal.h"
@@ -267,7 +267,8 @@ static enum lxg_status condition(const void *context, size_t site, const double 
   return status;
 }
 
-void lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row row[2]) {
+enum lxg_status lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row row[2],
+                                     bool outer_only) {
   const bool mass = row[0].kind == LXG_HELD_ENVELOPE_MASS || row[1].kind == LXG_HELD_ENVELOPE_MASS;
   problem->bvp = (struct lxg_bvp_problem){.unknowns = 2,
                                           .parameters = mass ? WIND_P_COUNT : WIND_P_LNMENV,
@@ -282,4 +283,5 @@ void lxg_wind_problem_set(struct wind_problem *problem, const struct wind_row ro
     problem->row[i] = row[i];
     problem->bvp.conditions[lxg_wind_row_site(row[i].kind)]++;
   }
+  return outer_only && (mass || problem->bvp.conditions[0] > 0) ? LXG_NO_SOLUTION : LXG_OK;
 }

@@ -63,7 +63,8 @@ struct gather {
   double depth;     /* integral of kappa rho dr over the outer piece */
   double flow_time; /* over the outer piece [s] */
   double radiation; /* energy of radiation in the outer piece [erg] */
-  double table_share;
+  double table_share, weights;
+  bool inside; /* the inner piece was solved */
   bool failed;
 };
 
@@ -82,7 +83,8 @@ static void visit(void *context, size_t piece, double x, double weight, const do
   }
   const double r = exp(at.ln_r), t = exp(at.ln_t), rho = exp(l.ln_rho), dlnr = weight * g->length[piece];
   g->mass += 4.0 * LXG_PI * r * r * r * rho * dlnr;
-  g->table_share += 0.5 * weight * l.table_weight;
+  g->table_share += weight * l.table_weight;
+  g->weights += weight;
   if (piece == 1) {
     g->depth += l.kappa * rho * r * dlnr;
     g->flow_time += r / exp(at.ln_v) * dlnr;
@@ -139,12 +141,7 @@ static enum lxg_status coast(const struct lxg_wind_solver *solver, const struct 
   const struct wind_coast_point *last = &point[count - 1];
   const double v = exp(last->ln_v);
   wind->value[LXG_HELD_TERMINAL_SPEED] = v;
-  const double c_t2 = constants->c_t2_per_k * exp(last->ln_t);
-  const double rate = exp(photosphere->ln_mdot);
-  const double carried =
-      rate * lxg_eos_radiation_enthalpy(wind->photosphere.temperature, wind->photosphere.density);
-  wind->luminosity_infinity = photosphere->lambda * constants->l_edd - carried -
-                              rate * (0.5 * v * v + 2.5 * c_t2 - constants->gm / exp(last->ln_r));
+  wind->luminosity_infinity = constants->l_edd * lxg_wind_coast_luminosity(constants, photosphere, last);
   return LXG_OK;
 }
 
@@ -161,7 +158,7 @@ static void derived(const struct lxg_wind_solver *solver, const struct gather *g
   value[LXG_HELD_PHOTOSPHERE_RADIUS] = wind->photosphere.radius;
   value[LXG_HELD_MASS_LOSS_RATE] = rate;
   value[LXG_HELD_ENERGY_RATE] = p[WIND_P_LAMBDA] * constants->l_edd;
-  value[LXG_HELD_ENVELOPE_MASS] = g->mass;
+  value[LXG_HELD_ENVELOPE_MASS] = g->inside ? g->mass : NAN;
   const double v = value[LXG_HELD_TERMINAL_SPEED];
   wind->critical.optical_depth = g->depth + 2.0 / 3.0;
   wind->lifting_rate = rate * constants->gm / constants->model.star.radius;
@@ -170,7 +167,7 @@ static void derived(const struct lxg_wind_solver *solver, const struct gather *g
   wind->diffusion_time = g->radiation / wind->photosphere.luminosity;
   wind->tiring_number = wind->lifting_rate / wind->base.luminosity;
   wind->wind_performance = rate * v * LXG_SPEED_OF_LIGHT / wind->photosphere.luminosity;
-  wind->table_share = g->table_share;
+  wind->table_share = g->table_share / g->weights;
   wind->residual = solver->residual;
   wind->mesh_points = lxg_bvp_intervals(solver->kept);
   wind->newton_steps = solver->newton_steps;
@@ -184,10 +181,13 @@ enum lxg_status lxg_wind_result(const struct lxg_wind_solver *solver, struct lxg
       .wind = wind,
       .length = {p[WIND_P_LNRC] - solver->problem.constants.ln_r0, p[WIND_P_LNRPH] - p[WIND_P_LNRC]}};
   lxg_bvp_visit(solver->kept, visit, &g);
-  const struct wind_place base = place_at(solver, 0.0), critical = place_at(solver, 1.0),
-                          photosphere = place_at(solver, 2.0);
-  if (g.failed || site_of(solver, &base, &wind->base) != LXG_OK ||
-      site_of(solver, &critical, &wind->critical) != LXG_OK ||
+  const struct wind_place critical = place_at(solver, 1.0), photosphere = place_at(solver, 2.0);
+  g.inside = lxg_bvp_nodes(solver->kept)[0] < 1.0;
+  if (g.inside) {
+    const struct wind_place base = place_at(solver, 0.0);
+    g.failed = g.failed || site_of(solver, &base, &wind->base) != LXG_OK;
+  }
+  if (g.failed || site_of(solver, &critical, &wind->critical) != LXG_OK ||
       site_of(solver, &photosphere, &wind->photosphere) != LXG_OK) {
     return LXG_DOMAIN;
   }
@@ -212,6 +212,10 @@ static void visit_mass(void *context, size_t piece, double x, double weight, con
 
 double lxg_wind_kept_value(const struct lxg_wind_solver *solver, int kind) {
   const double *p = lxg_bvp_parameters_const(solver->kept);
+  const bool inside = lxg_bvp_nodes(solver->kept)[0] < 1.0;
+  if (!inside && (lxg_wind_row_site(kind) == 0 || kind == LXG_HELD_ENVELOPE_MASS)) {
+    return NAN;
+  }
   const struct wind_place base = place_at(solver, 0.0), photosphere = place_at(solver, 2.0);
   struct wind_local l;
   double gradient[WIND_ARGUMENTS], ln_speed;

@@ -68,6 +68,10 @@ const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver 
   return &solver->problem.constants.model;
 }
 
+void lxg_wind_solver_outer_only(struct lxg_wind_solver *solver, bool outer_only) {
+  solver->outer_only = outer_only;
+}
+
 enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct wind_row row[2], double residual,
                                 bool fresh) {
   if (!fresh) {
@@ -76,7 +80,10 @@ enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct win
       return copied;
     }
   }
-  lxg_wind_problem_set(&solver->problem, row);
+  enum lxg_status status = lxg_wind_problem_set(&solver->problem, row, lxg_bvp_nodes(solver->now)[0] >= 1.0);
+  if (status != LXG_OK) {
+    return status;
+  }
   if (solver->problem.bvp.integrals > 0 && solver->have) {
     lxg_bvp_parameters(solver->now)[WIND_P_LNMENV] = lxg_wind_kept_value(solver, LXG_HELD_ENVELOPE_MASS);
   }
@@ -86,7 +93,7 @@ enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct win
                                           .mesh_limit = MESH_LIMIT,
                                           .damping_floor = damping_floor};
   struct lxg_bvp_statistics statistics;
-  const enum lxg_status status = lxg_bvp_solve(solver->now, &solver->problem.bvp, &options, &statistics);
+  status = lxg_bvp_solve(solver->now, &solver->problem.bvp, &options, &statistics);
   solver->newton_steps += statistics.newton_steps;
   if (status != LXG_OK) {
     return status;
