@@ -50,11 +50,13 @@ struct lxg_table {
   struct lxg_column *column;
   uint32_t *line;                   /* [rows], line of the file; NULL in a table that was built */
   struct lxg_buffer texts;          /* all text fields, each terminated */
-  struct lxg_document *meta;        /* ECSV header or, when building, what goes under `meta`; NULL if none */
+  struct lxg_document *document;    /* holds the ECSV header, or the meta of a built table; NULL if none */
+  struct lxg_node *meta;            /* mapping under `meta`; NULL if none */
   char checksum[LXG_CHECKSUM_SIZE]; /* SHA-256 of the file; "" if built */
 };
 
-/* What to take from a file; all-zero takes every column and refuses nan and inf. */
+/* What to take from a file; all-zero takes every column and refuses nan and inf. A field that
+ * is no number, or not finite, in a column of numbers is an error once lxg_table_cgs asks for that column. */
 struct lxg_table_options {
   const char *const *keep; /* names of the columns to keep (absent ones are no error); NULL keeps all */
   size_t keep_count;
@@ -66,8 +68,7 @@ struct lxg_table_options {
 /* ---- reading ---- */
 
 /* Reads a file; `-` is standard input; ECSV is recognised by its first line. `options` may be NULL. `*table` is NULL on
- * failure. LXG_INPUT (table-header, table-ragged, table-quote, table-byte, table-number, table-empty, table-duplicate,
- * table-type), LXG_LIMIT (table-limit), LXG_IO, LXG_MEMORY. */
+ * failure. LXG_INPUT (table-header, table-ragged, table-quote, table-byte, table-empty), LXG_LIMIT (table-limit), LXG_IO, LXG_MEMORY. */
 enum lxg_status lxg_table_read(const char *path, const struct lxg_table_options *options,
                                struct lxg_table **table, struct lxg_error *error);
 
