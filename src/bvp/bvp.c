@@ -162,7 +162,7 @@ enum lxg_status lxg_bvp_solve(struct lxg_bvp *b, const struct lxg_bvp_problem *p
     if (statistics->meshes >= options->mesh_limit) {
       return LXG_LIMIT;
     }
-    status = lxg_bvp_mesh_adapt(b, residual, options->residual_tolerance, statistics->meshes > 1);
+    status = lxg_bvp_mesh_adapt(b, residual, options, statistics->meshes > 1);
     if (status != LXG_OK) {
       return status;
     }
