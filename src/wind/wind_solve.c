@@ -225,7 +225,7 @@ static bool scannable(int kind) {
 /* Any wind with one held row at one critical radius, kept. */
 static enum lxg_status first_at(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
   if (scannable(row->kind)) {
-    return lxg_wind_cold(solver, ln_rc, row, false);
+    return lxg_wind_cold(solver, ln_rc, row);
   }
   enum lxg_status status = lxg_wind_cold_any(solver, ln_rc);
   if (status == LXG_OK) {
