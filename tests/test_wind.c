@@ -204,7 +204,7 @@ END_TEST
 static const double chilly = 1000.0; /* [K] */
 
 static enum lxg_status parker_slope(const void *context, double ln_r, const double y[], double dydx[]) {
-  const struct wind_place at = {ln_r, y[0], log(chilly), 40.0, 1e-12};
+  const struct wind_place at = {ln_r, y[0], log(chilly), 30.0, 1e-12};
   struct wind_local l;
   const enum lxg_status status = lxg_wind_local(context, &at, &l);
   if (status == LXG_OK) {
@@ -223,7 +223,7 @@ START_TEST(isothermal_wind) {
   const struct wind_constants *constants = &s.solver->problem.constants;
   const double c = sqrt(constants->c_t2_per_k * chilly);
   const double ln_rc = log(constants->gm / (2.0 * c * c));
-  const struct wind_place critical = {ln_rc, log(c), log(chilly), 40.0, 1e-12};
+  const struct wind_place critical = {ln_rc, log(c), log(chilly), 30.0, 1e-12};
   struct wind_local l;
   ck_assert_int_eq(lxg_wind_local(constants, &critical, &l), LXG_OK);
   assert_near(l.n, 0.0, 1e-7);

@@ -25,7 +25,7 @@ typedef int64_t lane_bits __attribute__((vector_size(32)));
 
 /* Whole registers of the machine that runs it: chosen once, when the program starts. */
 #if defined(__x86_64__) && defined(__gnu_linux__) && !defined(__SANITIZE_ADDRESS__) &&                       \
-    !defined(LXG_ONE_TARGET)
+    !defined(__clang__) && !defined(LXG_ONE_TARGET)
 #define LXG_LANES_TARGETS __attribute__((target_clones("avx2", "default")))
 #else
 #define LXG_LANES_TARGETS
