@@ -74,4 +74,4 @@ check-symbols: $(LIB)
 clean:
 	rm -rf $(BUILD)
 
--include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d)
+-include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d) $(PROGRAMS:=.d)

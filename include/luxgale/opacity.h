@@ -29,7 +29,7 @@ enum lxg_opacity_source {
   LXG_OPACITY_SOURCE_SCATTERING, /* free electrons */
   LXG_OPACITY_SOURCE_FREE_FREE,
   LXG_OPACITY_SOURCE_BOUND_FREE, /* metals of all kinds, Z + cno */
-  LXG_OPACITY_SOURCE_H_MINUS,    /* in series with the rest: it limits the opacity of cool gas */
+  LXG_OPACITY_SOURCE_H_MINUS,    /* of cool gas; in series with the rest near log T = 4 */
   LXG_OPACITY_SOURCE_HYDROGEN,   /* bumps from here on */
   LXG_OPACITY_SOURCE_HELIUM,
   LXG_OPACITY_SOURCE_IRON, /* follows Z alone */
@@ -69,9 +69,9 @@ enum lxg_status lxg_opacity_create_without(enum lxg_opacity_formula formula, uns
                                            const struct lxg_composition *composition,
                                            struct lxg_opacity **opacity, struct lxg_error *error);
 
-/* The share of each source at a point, d ln kappa/d ln k_source: they sum to 1. A table and the reference law do not know
- * their sources; where they answer, `known` is the part (table weight taken off) of kappa that the shares describe:
- * 1 for the formula, 0 for a table, and the shares sum to it. LXG_DOMAIN as lxg_opacity_at. */
+/* The share of each source at a point; they sum to 1. A source in series with H-minus (log T < 4) has what passes of it,
+ * H-minus what it adds and what it holds back. A table and the reference law do not know their sources: `known` is the part
+ * of kappa that the shares describe and sum to, 1 for the formula, 0 for a table. LXG_DOMAIN as lxg_opacity_at. */
 enum lxg_status lxg_opacity_shares(const struct lxg_opacity *opacity, double ln_rho, double ln_t,
                                    double share[LXG_OPACITY_SOURCES], double *known);
 
