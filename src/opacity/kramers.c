@@ -13,7 +13,9 @@
  *            limits the other sources where hydrogen turns neutral (in series, log T < 4)
  *   k_cold = k_0/(1 + (k_0/cap)^2), k_0 = 2.5e-31 (Z/0.02)(X/0.7) rho^0.5 T^9: the textbook law (from memory) below 4500 K
  *   bump   = 10^(a + p l + p_2 t^2 + p_3 t^3) (element)^q ((1 + X)/1.7)^r exp(-((u - u_b - s t)/w)^2),
- *            1/w = (1/w_0)(1 + b t/5), w_0 and b different on the two sides of the peak.
+  *            1/w = (1/w_0)(1 + b t/5), w_0 and b different on the two sides of the peak: with d the distance from it,
+ *            the value turns from the cool to the hot one as d/(|d| + 0.05), so that the law has three continuous
+ *            derivatives and a solver's mesh need not look for its peaks.
  * Powers of R below one are no accident: the Rosseland mean of scattering plus absorption exceeds the sum of the two
  * means, and the fit of a sum takes that up. Each element's bumps follow its own mass fraction: hydrogen X, helium Y,
  * iron Z alone, deep Z'. Coefficients: kramers.def. Nothing here can fail; the caller checks the domain.
@@ -35,6 +37,8 @@
 _Static_assert(KRAMERS_TERMS % LANES == 0, "terms fill whole lanes");
 
 static const double limit = 5.0; /* dex of R over which t follows l */
+static const double turn =
+    0.05; /* dex of T over which the width of a bump turns from its cool to its hot value */
 static const double pivot = 2.0; /* l at R = 1e-3, where the power laws are anchored */
 
 const struct kramers_coefficients lxg_opacity_kramers_calibrated = {
@@ -88,10 +92,12 @@ static void init_bumps(struct kramers_law *law, const struct kramers_coefficient
     law->twist[i] = LXG_LN10 * c[KRAMERS_twist];
     law->log_t[i] = c[KRAMERS_log_t];
     law->shift[i] = c[KRAMERS_shift];
-    law->inverse_cool[i] = c[KRAMERS_cool];
-    law->inverse_hot[i] = c[KRAMERS_hot];
-    law->trend_cool[i] = c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit;
-    law->trend_hot[i] = c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit;
+    const double cool_trend = c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit;
+    const double hot_trend = c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit;
+    law->inverse_middle[i] = 0.5 * (c[KRAMERS_hot] + c[KRAMERS_cool]);
+    law->inverse_half[i] = 0.5 * (c[KRAMERS_hot] - c[KRAMERS_cool]);
+    law->trend_middle[i] = 0.5 * (hot_trend + cool_trend);
+    law->trend_half[i] = 0.5 * (hot_trend - cool_trend);
   }
 }
 
@@ -197,19 +203,23 @@ LXG_LANES_INLINE void factors_at(const struct kramers_law *law, const struct pla
 /* Value and slopes (per dex, of the logarithm) of the four terms of lanes `first` ..., before switching off. */
 LXG_LANES_INLINE void terms_at(const struct kramers_law *law, const struct place *at, size_t first,
                                lanes *kappa, lanes *slope_u, lanes *slope_l) {
-  lanes log_t, shift, cool, hot, inverse, trend, constant, by_u, by_l, bend, twist;
+  lanes log_t, shift, middle, half, trend_middle, trend_half, constant, by_u, by_l, bend, twist;
   lanes_load(&log_t, &law->log_t[first]);
   lanes_load(&shift, &law->shift[first]);
   const lanes distance = at->u - (log_t + shift * at->t);
-  const lane_bits is_hot = distance > (lanes){0.0, 0.0, 0.0, 0.0};
-  lanes_load(&cool, &law->inverse_cool[first]);
-  lanes_load(&hot, &law->inverse_hot[first]);
-  lanes_choose(&inverse, &is_hot, &hot, &cool);
-  lanes_load(&cool, &law->trend_cool[first]);
-  lanes_load(&hot, &law->trend_hot[first]);
-  lanes_choose(&trend, &is_hot, &hot, &cool);
-  inverse += trend * at->t;
+  lanes size;
+  lanes_magnitude(&size, &distance);
+  const lanes reach = 1.0 / (size + turn);
+  const lanes side = distance * reach; /* from -1, cool, to 1, hot */
+  lanes_load(&middle, &law->inverse_middle[first]);
+  lanes_load(&half, &law->inverse_half[first]);
+  lanes_load(&trend_middle, &law->trend_middle[first]);
+  lanes_load(&trend_half, &law->trend_half[first]);
+  const lanes trend = trend_middle + side * trend_half;
+  const lanes inverse = middle + side * half + trend * at->t;
+  const lanes turning = (half + trend_half * at->t) * (turn * reach * reach);
   const lanes offset = distance * inverse;
+  const lanes by_distance = inverse + distance * turning; /* of the offset */
   lanes_load(&constant, &law->constant[first]);
   lanes_load(&by_u, &law->by_u[first]);
   lanes_load(&by_l, &law->by_l[first]);
@@ -219,8 +229,8 @@ LXG_LANES_INLINE void terms_at(const struct kramers_law *law, const struct place
   const lanes exponent = constant + by_u * at->u + by_l * at->l + (at->t * at->t) * bent - offset * offset;
   lanes_exp_floored(kappa, &exponent);
   const lanes by_t =
-      at->t * (2.0 * bent + at->t * twist) - 2.0 * offset * (distance * trend - inverse * shift);
-  *slope_u = by_u - 2.0 * offset * inverse;
+      at->t * (2.0 * bent + at->t * twist) - 2.0 * offset * (distance * trend - by_distance * shift);
+  *slope_u = by_u - 2.0 * offset * by_distance;
   *slope_l = by_l + by_t * at->dt;
 }
 

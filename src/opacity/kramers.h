@@ -68,8 +68,8 @@ struct kramers_law {
   double constant[KRAMERS_TERMS], by_u[KRAMERS_TERMS], by_l[KRAMERS_TERMS];
   double bend[KRAMERS_TERMS], twist[KRAMERS_TERMS];
   double log_t[KRAMERS_TERMS], shift[KRAMERS_TERMS];
-  double inverse_cool[KRAMERS_TERMS], inverse_hot[KRAMERS_TERMS];
-  double trend_cool[KRAMERS_TERMS], trend_hot[KRAMERS_TERMS];
+  double inverse_middle[KRAMERS_TERMS], inverse_half[KRAMERS_TERMS];
+  double trend_middle[KRAMERS_TERMS], trend_half[KRAMERS_TERMS];
   double factor_constant[KRAMERS_FACTORS], factor_by_u[KRAMERS_FACTORS], factor_by_l[KRAMERS_FACTORS],
       factor_by_t[KRAMERS_FACTORS];
 };

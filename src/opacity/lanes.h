@@ -42,6 +42,12 @@ LXG_LANES_INLINE void lanes_choose(lanes *to, const lane_bits *mask, const lanes
   *to = (lanes)((*mask & (lane_bits)*a) | (~*mask & (lane_bits)*b));
 }
 
+/* Without the sign bits. */
+LXG_LANES_INLINE void lanes_magnitude(lanes *to, const lanes *from) {
+  static const int64_t mask = INT64_MAX;
+  *to = (lanes)((lane_bits)*from & (lane_bits){mask, mask, mask, mask});
+}
+
 LXG_LANES_INLINE double lanes_sum(const lanes *x) {
   return ((*x)[0] + (*x)[1]) + ((*x)[2] + (*x)[3]);
 }
