@@ -13,6 +13,7 @@
 #include "luxgale/status.h"
 
 #include <stdbool.h>
+#include <stddef.h>
 
 /* Value and slopes travel together. */
 struct lxg_opacity_value {
@@ -82,5 +83,26 @@ enum lxg_status lxg_opacity_at(const struct lxg_opacity *opacity, double ln_rho,
 
 /* NULL is allowed. */
 void lxg_opacity_destroy(struct lxg_opacity *opacity);
+
+struct lxg_node;
+struct lxg_files;
+
+/* What a case says about opacity. */
+struct lxg_opacity_choice {
+  enum lxg_opacity_formula formula;
+  unsigned omit; /* LXG_OPACITY_BIT of the sources left out */
+  size_t tables; /* how many tables were read; 0: the formula alone */
+  int outside;   /* enum lxg_opacity_outside of opacity_table.h; used with tables only */
+};
+
+/* "kramers", "scattering", "reference"; "join", "clamp", "refuse"; never NULL. */
+const char *lxg_opacity_formula_name(enum lxg_opacity_formula formula);
+const char *lxg_opacity_outside_name(int outside);
+
+/* Reads the section `opacity` of a case (NULL: the formula `kramers`), with the tables it names, and builds what it asks for.
+ * LXG_INPUT with the place ("opacity-unused" for keys that exclude one another); LXG_IO, LXG_MEMORY. */
+enum lxg_status lxg_opacity_read(struct lxg_node *section, struct lxg_files *files,
+                                 const struct lxg_composition *composition, struct lxg_opacity_choice *choice,
+                                 struct lxg_opacity **opacity, struct lxg_error *error);
 
 #endif
