@@ -81,8 +81,12 @@ START_TEST(longest_name_and_relative_path) {
   name[255] = '\0';
   assert_status(lxg_output_write(in_folder(name), "long", 4, &error), LXG_OK, &error);
   check_content(in_folder(name), "long");
+  const int home = open(".", O_RDONLY | O_DIRECTORY);
   ck_assert_int_eq(chdir(folder), 0);
-  assert_status(lxg_output_write("-x", "dash", 4, &error), LXG_OK, &error);
+  const enum lxg_status status = lxg_output_write("-x", "dash", 4, &error);
+  ck_assert_int_eq(fchdir(home), 0);
+  close(home);
+  ck_assert_int_eq(status, LXG_OK);
   check_content(in_folder("-x"), "dash");
 }
 END_TEST
