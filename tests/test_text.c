@@ -232,6 +232,9 @@ END_TEST
 
 START_TEST(nearest_names) {
   static const char *const names[] = {"mass", "radius", "composition", "opacity"};
+  static const char *const close[] = {"time_s", "times", "time"};
+  ck_assert_str_eq(lxg_text_nearest("time_", close, 3), "time_s"); /* the first of equals */
+  ck_assert_str_eq(lxg_text_nearest("tme", close, 3), "time");     /* the nearest of three */
   ck_assert_str_eq(lxg_text_nearest("mas", names, 4), "mass");
   ck_assert_str_eq(lxg_text_nearest("raduis", names, 4), "radius");
   ck_assert_str_eq(lxg_text_nearest("Opacities", names, 4), "opacity");
