@@ -83,6 +83,7 @@ check-cli: $(BUILD)/luxgale
 
 check-python: $(BUILD)/luxgale
 	@$(PYTHON) tests/python/check_outputs.py $(BUILD)/luxgale
+	@$(PYTHON) tests/python/readme.py $(BUILD)/luxgale
 
 check-clang:
 	@$(MAKE) --no-print-directory -s -j$(JOBS) CC=clang OPT=-O0 BUILD=build-clang all tests
