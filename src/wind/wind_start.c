@@ -14,6 +14,7 @@
 #include "luxgale/constants.h"
 
 #include <math.h>
+#include <string.h>
 
 static const double start_offset = 1e-3;     /* first step off the critical point, in ln r */
 static const double start_reach = 14.0;      /* farthest march outward, in ln r */
@@ -24,7 +25,7 @@ static const double start_agreement = 0.15;  /* of the ends, in ln r */
 static const double start_rate_low = -34.0;  /* ln of the lowest rate tried, in units of L_Edd r_c/(G M) */
 static const double start_rate_high = 9.0;   /* ln of the highest */
 static const double start_rate_step = 0.7;   /* of the scan */
-enum { START_STEPS = 1500, START_BISECTIONS = 44, START_SEGMENTS = 12 };
+enum { START_STEPS = 1500, START_BISECTIONS = 44, START_SEGMENTS = 12, INNER_STEPS = 2000 };
 
 /* Why an outward march ended. */
 enum march_end { MARCH_ON, MARCH_PLUNGED, MARCH_TRANSPARENT, MARCH_STALLED, MARCH_FAILED };
@@ -50,7 +51,16 @@ static enum lxg_status slope(const void *context, double ln_r, const double y[],
 }
 
 static void record(struct wind_track *track, double ln_r, const double y[], const double dydr[]) {
-  if (track != NULL && track->count < WIND_TRACK_POINTS) {
+  if (track != NULL &&
+      track->count == WIND_TRACK_POINTS) { /* full: every second point goes, the first and last stay */
+    for (size_t i = 1; i < WIND_TRACK_POINTS / 2; i++) {
+      track->ln_r[i] = track->ln_r[2 * i];
+      memcpy(track->y[i], track->y[2 * i], sizeof track->y[i]);
+      memcpy(track->dydr[i], track->dydr[2 * i], sizeof track->dydr[i]);
+    }
+    track->count = WIND_TRACK_POINTS / 2;
+  }
+  if (track != NULL) {
     track->ln_r[track->count] = ln_r;
     for (int i = 0; i < 2; i++) {
       track->y[track->count][i] = y[i];
@@ -169,7 +179,7 @@ static enum march_end march_from(struct march *march, struct lxg_ivp *ivp, doubl
   int stopped = MARCH_ON;
   const enum lxg_status status =
       lxg_ivp_march(ivp, slope, march, direction > 0 ? watch_outward : watch_inward, march, &ln_r,
-                    march->ln_end, start_first_step, START_STEPS, y, &stopped);
+                    march->ln_end, start_first_step, direction > 0 ? START_STEPS : INNER_STEPS, y, &stopped);
   march->ended = ln_r;
   return status == LXG_OK ? (enum march_end)stopped : MARCH_FAILED;
 }
