@@ -16,6 +16,7 @@
 #include "luxgale/constants.h"
 
 #include <math.h>
+#include <stdbool.h>
 #include <string.h>
 
 static const double start_temperature = 1.0e8; /* base temperature of the first wind without burning [K] */
@@ -24,6 +25,7 @@ static const double start_match = 0.05;  /* of ln(heat/L_0): near enough to begi
 static const double start_stride = 0.15; /* longest step of ln(base temperature) in the search */
 static const double start_residual = 1e-4;        /* relative residual on the way */
 static const double start_smallest = 1.0 / 256.0; /* smallest step of s */
+static const double start_critical[] = {5.6, 5.5, 5.7, 5.4}; /* log10 of critical temperatures tried [K] */
 static const double start_radii[] = {1.0, 1.4, 0.7, 1.8}; /* log10(r_c/R_0) tried */
 enum { START_SEARCH = 24 };
 
@@ -175,13 +177,23 @@ static void visit(void *context, size_t piece, double x, double weight, const do
 /* Searches among winds without burning, at one launch radius, for the one whose shell would give `base` less than its own
  * luminosity at R_0; `plain` keeps it. */
 static enum lxg_status matched(const struct lxg_wind_solver *solver, struct lxg_wind_solver *plain,
-                               double ln_rc, double base) {
+                               double ln_rc, double base, bool thorough) {
   const struct wind_constants *constants = &solver->problem.constants;
   struct lxg_wind wind;
   double ln_t = log(start_temperature), above = NAN, below = NAN;
   struct lxg_wind_hold hold[2] = {{LXG_HELD_BASE_TEMPERATURE, start_temperature},
                                   {LXG_HELD_LAUNCH_RADIUS, exp(ln_rc)}};
-  enum lxg_status status = lxg_wind_solve(plain, hold, &wind, NULL);
+  enum lxg_status status = LXG_NO_SOLUTION;
+  for (size_t i = 0; i < sizeof start_critical / sizeof start_critical[0] && status != LXG_OK; i++) {
+    plain->have = false;
+    status = lxg_wind_cold_at(plain, ln_rc, start_critical[i] * LXG_LN10);
+  }
+  if (status == LXG_OK) {
+    status = lxg_wind_follow(plain, hold, &wind, NULL);
+  }
+  if (status != LXG_OK && thorough) {
+    status = lxg_wind_solve(plain, hold, &wind, NULL);
+  }
   for (int i = 0; status == LXG_OK && i < START_SEARCH; i++) {
     struct heat heat = {constants, lxg_bvp_parameters_const(plain->kept), 0.0};
     lxg_bvp_visit(plain->kept, visit, &heat);
@@ -253,9 +265,10 @@ enum lxg_status lxg_wind_burning_first(struct lxg_wind_solver *solver, double ba
   if (status != LXG_OK) {
     return status;
   }
-  for (size_t i = 0; i < sizeof start_radii / sizeof start_radii[0]; i++) {
-    const double ln_rc = solver->problem.constants.ln_r0 + start_radii[i] * LXG_LN10;
-    status = matched(solver, plain, ln_rc, base);
+  const size_t radii = sizeof start_radii / sizeof start_radii[0];
+  for (size_t i = 0; i < 2 * radii; i++) { /* quick tries at every radius, then thorough ones */
+    const double ln_rc = solver->problem.constants.ln_r0 + start_radii[i % radii] * LXG_LN10;
+    status = matched(solver, plain, ln_rc, base, i >= radii);
     if (status == LXG_OK) {
       status = kindle(solver, plain, base);
     }

@@ -174,6 +174,9 @@ enum lxg_status lxg_wind_burning_rate(const struct wind_constants *constants, co
 /* A first burning wind with luminosity `base` (in L_Edd) at R_0; it is kept. */
 enum lxg_status lxg_wind_burning_first(struct lxg_wind_solver *solver, double base);
 
+/* The wind at that launch radius and critical temperature, without a scan; it is kept. */
+enum lxg_status lxg_wind_cold_at(struct lxg_wind_solver *solver, double ln_rc, double ln_tc);
+
 /* Any wind at that launch radius, the one whose critical temperature is nearest to the iron bump first; it is kept. */
 enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc);
 
