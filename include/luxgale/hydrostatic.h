@@ -7,8 +7,8 @@
  *   (H3) dL/dlnr = 4 pi r^3 rho eps,   L(R_0) = 0            (W5 at rest)
  *   (H4) at R_ph: L = 4 pi R_ph^2 sigma T^4 and P_gas = (2/3)(G M/R_ph^2)(1 - Gamma)/kappa,  Gamma = kappa L/(4 pi G M c)
  * with the opacity, gas, burning and porosity of the wind model. One number selects an envelope. The sequence in
- * envelope mass runs from cool, extended, massive envelopes to the smallest one that burns steadily: there the mass has a
- * minimum (a fold) and the star turns off. Radiative transport only, no degeneracy, no gravity of the envelope itself.
+ * envelope mass runs from the largest envelope that can be at rest, where the iron bump brings Gamma near one (a fold, where
+ * the winds begin), to the smallest one that burns steadily: there the mass has its minimum and the star turns off. Radiative transport only, no degeneracy, no gravity of the envelope itself.
  *
  * Call order: lxg_hydrostatic_solver_create -> lxg_hydrostatic_trace -> lxg_hydrostatic_family_free,
  * lxg_hydrostatic_solver_destroy. One solver a thread.
@@ -40,7 +40,7 @@ struct lxg_hydrostatic {
 
 /* How a traced sequence ends. */
 enum lxg_hydrostatic_end {
-  LXG_HYDROSTATIC_FOLD,    /* smallest envelope mass: turn-off */
+  LXG_HYDROSTATIC_FOLD,    /* hot end: smallest envelope mass, turn-off; cool end: largest mass at rest */
   LXG_HYDROSTATIC_REACHED, /* the stated limit */
   LXG_HYDROSTATIC_LOST     /* no further envelope was found: at the cool end radiation pressure lifts the photosphere */
 };

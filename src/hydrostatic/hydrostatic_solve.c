@@ -11,7 +11,7 @@
 
 enum { NEWTON_LIMIT = 30, MESH_LIMIT = 14 };
 static const double damping_floor = 1e-3;
-static const double march_tolerance = 1e-7; /* local error of the marches that start the search */
+static const double march_tolerance = 1e-6; /* local error of the marches that start the search */
 
 struct lxg_hydrostatic_options lxg_hydrostatic_options_default(void) {
   const struct lxg_hydrostatic_options options = {.stages = 5,

@@ -16,7 +16,7 @@ static const double start_radii[] = {3.0, 2.0, 5.0, 1.5, 10.0}; /* R_ph/R_0 trie
 static const double start_brightest = 1.6, start_faintest = 0.02; /* L/L_Edd tried */
 static const double start_factor = 0.95;                          /* of the luminosity, in the scan */
 static const double start_dark = -3.0;      /* L/L_Edd at which a march ends: far too much burning */
-static const double start_accuracy = 1e-10; /* of ln L */
+static const double start_accuracy = 1e-5;  /* of ln L */
 static const double start_first_step = 1e-5; /* in ln r */
 enum { START_STEPS = STATIC_TRACK_POINTS - 2, START_BISECTIONS = 50, GUESS_INTERVALS = 60 };
 

@@ -2,8 +2,9 @@
  *
  * hydrostatic_trace.c - the sequence of envelopes at rest, by pseudo-arclength in (ln M_env, ln R_ph, ln T_ph).
  *
- * From a first envelope in both senses: towards larger mass to the stated limit, towards smaller mass to the fold, whose place
- * is found by a parabola through the last three members. Step control as in family_trace.c: the error of linear
+ * From a first envelope in both senses: towards larger mass to the stated limit or the largest mass, towards smaller mass
+ * to the smallest. Beyond the largest mass lie bloated envelopes that the iron bump holds at Gamma = 1; beyond the smallest, faint
+ * ones that are unstable. The place of a fold is found by a parabola through the last three members. Step control as in family_trace.c: the error of linear
  * interpolation between neighbours stays below the tolerance.
  */
 #include "hydrostatic/hydrostatic_internal.h"
@@ -105,7 +106,7 @@ static enum lxg_status accepted(struct lxg_hydrostatic_solver *solver, struct tr
   }
 }
 
-/* The last member replaced by the envelope at the minimum of the parabola of ln M_env through the last three. */
+/* The last member replaced by the envelope at the extreme of the parabola of ln M_env through the last three. */
 static enum lxg_status refine_fold(struct lxg_hydrostatic_solver *solver, struct trail *trail) {
   const size_t n = trail->count;
   if (n < 3) {
@@ -117,7 +118,7 @@ static enum lxg_status refine_fold(struct lxg_hydrostatic_solver *solver, struct
   const double second = (s1 - s0) / (c->arc - a->arc);
   const double bottom = 0.5 * (a->arc + b->arc) - 0.5 * s0 / second;
   const double t = (bottom - b->arc) / (c->arc - b->arc);
-  if (!(t > 0.0 && t < 1.0)) { /* the minimum is the middle one, or before it: the last is superfluous */
+  if (!(t > 0.0 && t < 1.0)) { /* the extreme is the middle one, or before it: the last is superfluous */
     trail->count = n - 1;
     return LXG_OK;
   }
@@ -166,7 +167,7 @@ static enum lxg_status walk(struct lxg_hydrostatic_solver *solver, const struct 
       trail->end = LXG_HYDROSTATIC_REACHED;
       return refine_limit(solver, trail, limit);
     }
-    if (sense < 0.0 && last->c[STATIC_C_MASS] > (last - 1)->c[STATIC_C_MASS]) {
+    if (sense * (last->c[STATIC_C_MASS] - (last - 1)->c[STATIC_C_MASS]) < 0.0) {
       trail->end = LXG_HYDROSTATIC_FOLD;
       return refine_fold(solver, trail);
     }
