@@ -26,7 +26,14 @@ CLI_OBJ   := $(CLI_SRC:%.c=$(BUILD)/%.o)
 TEST_OBJ  := $(TEST_SRC:%.c=$(BUILD)/%.o) $(SUPPORT_SRC:%.c=$(BUILD)/%.o)
 LIB       := $(BUILD)/libluxgale.a
 
+JOBS      ?= 2
+
+# Suites that run again under the address and undefined-behaviour sanitizers; the others are too slow for that.
+SLOW      ?= wind family
+QUICK      = $(filter-out $(SLOW),$(SUITES))
+
 .PHONY: all tests programs clean format format-check check-layers check-symbols
+.PHONY: demo check check-cli check-python check-clang check-sanitizers check-units docs
 all: $(BUILD)/luxgale $(LIB)
 
 $(BUILD)/%.o: %.c
@@ -71,7 +78,41 @@ check-layers:
 check-symbols: $(LIB)
 	@.ci/check-symbols $(LIB)
 
-clean:
-	rm -rf $(BUILD)
+check-cli: $(BUILD)/luxgale
+	@tests/cli/run $(BUILD)/luxgale
 
--include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d)
+check-python: $(BUILD)/luxgale
+	@for t in $(sort $(wildcard tests/python/check_*.py)); do echo "$$t"; $(PYTHON) $$t $(BUILD)/luxgale || exit 1; done
+
+check-clang:
+	@$(MAKE) --no-print-directory -s -j$(JOBS) CC=clang OPT=-O0 BUILD=build-clang all tests
+
+check-sanitizers:
+	@$(MAKE) --no-print-directory -s -j$(JOBS) OPT='-O1 -fsanitize=address,undefined -fno-sanitize-recover=undefined' \
+	  BUILD=build-sanitize all tests
+	CK_FORK=no build-sanitize/run-tests $(QUICK)
+	@tests/cli/run build-sanitize/luxgale wrong-input options
+
+check-units: tests
+	$(BUILD)/run-tests
+
+# Everything, the unit tests last: their summary ends the output.
+check:
+	@.ci/need check
+	@$(MAKE) --no-print-directory -s -j$(JOBS) all tests
+	@$(MAKE) --no-print-directory format-check check-layers check-symbols check-clang check-sanitizers check-cli check-python
+	@$(MAKE) --no-print-directory check-units
+
+demo:
+	@.ci/need demo
+	@$(MAKE) --no-print-directory -s -j$(JOBS) all
+	@examples/demo.sh $(BUILD)/luxgale demo-output
+
+docs: $(BUILD)/luxgale
+	@mkdir -p docs
+	$(BUILD)/luxgale help case.md > docs/inputs.md
+
+clean:
+	rm -rf $(BUILD) build-clang build-sanitize demo-output
+
+-include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d) $(PROGRAMS:=.d)

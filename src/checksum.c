@@ -32,20 +32,25 @@ static void mix_block(uint32_t state[8], const unsigned char block[64]) {
     const uint32_t s1 = rotate(w[t - 2], 17) ^ rotate(w[t - 2], 19) ^ w[t - 2] >> 10;
     w[t] = s1 + w[t - 7] + s0 + w[t - 16];
   }
-  uint32_t v[8]; /* a ... h */
-  memcpy(v, state, sizeof v);
+  uint32_t a = state[0], b = state[1], c = state[2], d = state[3];
+  uint32_t e = state[4], f = state[5], g = state[6], h = state[7];
   for (size_t t = 0; t < 64; t++) {
-    const uint32_t big1 = rotate(v[4], 6) ^ rotate(v[4], 11) ^ rotate(v[4], 25);
-    const uint32_t choose = (v[4] & v[5]) ^ (~v[4] & v[6]);
-    const uint32_t t1 = v[7] + big1 + choose + round_constant[t] + w[t];
-    const uint32_t big0 = rotate(v[0], 2) ^ rotate(v[0], 13) ^ rotate(v[0], 22);
-    const uint32_t majority = (v[0] & v[1]) ^ (v[0] & v[2]) ^ (v[1] & v[2]);
-    memmove(v + 1, v, 7 * sizeof v[0]);
-    v[4] += t1;
-    v[0] = t1 + big0 + majority;
+    const uint32_t big1 = rotate(e, 6) ^ rotate(e, 11) ^ rotate(e, 25);
+    const uint32_t t1 = h + big1 + ((e & f) ^ (~e & g)) + round_constant[t] + w[t];
+    const uint32_t big0 = rotate(a, 2) ^ rotate(a, 13) ^ rotate(a, 22);
+    const uint32_t t2 = big0 + ((a & b) ^ (a & c) ^ (b & c));
+    h = g;
+    g = f;
+    f = e;
+    e = d + t1;
+    d = c;
+    c = b;
+    b = a;
+    a = t1 + t2;
   }
+  const uint32_t mixed[8] = {a, b, c, d, e, f, g, h};
   for (size_t i = 0; i < 8; i++) {
-    state[i] += v[i];
+    state[i] += mixed[i];
   }
 }
 

@@ -8,7 +8,7 @@
 #include <stdbool.h>
 #include <string.h>
 
-static const struct lxg_bvp_options exact = {1e-12, 0.0, 30, 12, 1e-4};
+static const struct lxg_bvp_options exact = {1e-12, 0.0, 0.0, 30, 12, 1e-4};
 
 static void zero(const void *context, double x, double y[], double k[]) {
   (void)context;

@@ -67,9 +67,10 @@ struct lxg_bvp_options {
   double newton_tolerance; /* largest correction of any unknown accepted as converged */
   double
       residual_tolerance; /* largest relative residual between the collocation points; <= 0: mesh is kept */
-  int newton_limit;       /* Newton steps a mesh */
-  int mesh_limit;         /* meshes */
-  double damping_floor;   /* smallest damping factor before giving up */
+  double residual_aim;  /* what a new mesh aims at: below the tolerance, so that neighbours need no new one */
+  int newton_limit;     /* Newton steps a mesh */
+  int mesh_limit;       /* meshes */
+  double damping_floor; /* smallest damping factor before giving up */
 };
 
 /* What a solve did. */

@@ -26,4 +26,11 @@ double lxg_composition_mu(const struct lxg_composition *composition);
 /* Reference electron-scattering opacity kappa_e = 0.2 (1 + X) [cm^2 g^-1]. */
 double lxg_composition_kappa_e(const struct lxg_composition *composition);
 
+struct lxg_node;
+
+/* Reads the section `composition` of a case. Absent: cno 0, metals 0.02, helium what is left to 1. LXG_INPUT with the place in
+ * the file. */
+enum lxg_status lxg_composition_read(struct lxg_node *section, struct lxg_composition *composition,
+                                     struct lxg_error *error);
+
 #endif

@@ -136,4 +136,22 @@ enum lxg_status lxg_history_sample(const struct lxg_history *history,
 /* NULL is allowed. */
 void lxg_history_samples_destroy(struct lxg_history_samples *samples);
 
+struct lxg_node;
+struct lxg_files;
+struct lxg_composition;
+
+/* What reading a history needs from the rest of the case; all borrowed. */
+struct lxg_history_reading {
+  struct lxg_files *files;                   /* where names start; the file read is recorded here */
+  const struct lxg_composition *composition; /* defaults of a formula */
+  double l_edd;                              /* the unit Ledd [erg s^-1] */
+  double gap_fraction;                       /* as in struct lxg_history_rows */
+};
+
+/* Reads the section `luminosity` of a case; absent: `*history` is NULL and LXG_OK. LXG_INPUT with the place in the case or in the
+ * table ("luminosity-unused" for a key that the kind has no use for, "not-available", those of documents, tables and
+ * histories), LXG_IO, LXG_MEMORY. */
+enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_history_reading *reading,
+                                 struct lxg_history **history, struct lxg_error *error);
+
 #endif

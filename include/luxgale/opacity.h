@@ -13,6 +13,7 @@
 #include "luxgale/status.h"
 
 #include <stdbool.h>
+#include <stddef.h>
 
 /* Value and slopes travel together. */
 struct lxg_opacity_value {
@@ -29,7 +30,7 @@ enum lxg_opacity_source {
   LXG_OPACITY_SOURCE_SCATTERING, /* free electrons */
   LXG_OPACITY_SOURCE_FREE_FREE,
   LXG_OPACITY_SOURCE_BOUND_FREE, /* metals of all kinds, Z + cno */
-  LXG_OPACITY_SOURCE_H_MINUS,    /* in series with the rest: it limits the opacity of cool gas */
+  LXG_OPACITY_SOURCE_H_MINUS,    /* of cool gas; in series with the rest near log T = 4 */
   LXG_OPACITY_SOURCE_HYDROGEN,   /* bumps from here on */
   LXG_OPACITY_SOURCE_HELIUM,
   LXG_OPACITY_SOURCE_IRON, /* follows Z alone */
@@ -69,9 +70,9 @@ enum lxg_status lxg_opacity_create_without(enum lxg_opacity_formula formula, uns
                                            const struct lxg_composition *composition,
                                            struct lxg_opacity **opacity, struct lxg_error *error);
 
-/* The share of each source at a point, d ln kappa/d ln k_source: they sum to 1. A table and the reference law do not know
- * their sources; where they answer, `known` is the part (table weight taken off) of kappa that the shares describe:
- * 1 for the formula, 0 for a table, and the shares sum to it. LXG_DOMAIN as lxg_opacity_at. */
+/* The share of each source at a point; they sum to 1. A source in series with H-minus (log T < 4) has what passes of it,
+ * H-minus what it adds and what it holds back. A table and the reference law do not know their sources: `known` is the part
+ * of kappa that the shares describe and sum to, 1 for the formula, 0 for a table. LXG_DOMAIN as lxg_opacity_at. */
 enum lxg_status lxg_opacity_shares(const struct lxg_opacity *opacity, double ln_rho, double ln_t,
                                    double share[LXG_OPACITY_SOURCES], double *known);
 
@@ -82,5 +83,26 @@ enum lxg_status lxg_opacity_at(const struct lxg_opacity *opacity, double ln_rho,
 
 /* NULL is allowed. */
 void lxg_opacity_destroy(struct lxg_opacity *opacity);
+
+struct lxg_node;
+struct lxg_files;
+
+/* What a case says about opacity. */
+struct lxg_opacity_choice {
+  enum lxg_opacity_formula formula;
+  unsigned omit; /* LXG_OPACITY_BIT of the sources left out */
+  size_t tables; /* how many tables were read; 0: the formula alone */
+  int outside;   /* enum lxg_opacity_outside of opacity_table.h; used with tables only */
+};
+
+/* "kramers", "scattering", "reference"; "join", "clamp", "refuse"; never NULL. */
+const char *lxg_opacity_formula_name(enum lxg_opacity_formula formula);
+const char *lxg_opacity_outside_name(int outside);
+
+/* Reads the section `opacity` of a case (NULL: the formula `kramers`), with the tables it names, and builds what it asks for.
+ * LXG_INPUT with the place ("opacity-unused" for keys that exclude one another); LXG_IO, LXG_MEMORY. */
+enum lxg_status lxg_opacity_read(struct lxg_node *section, struct lxg_files *files,
+                                 const struct lxg_composition *composition, struct lxg_opacity_choice *choice,
+                                 struct lxg_opacity **opacity, struct lxg_error *error);
 
 #endif

@@ -121,6 +121,18 @@ enum lxg_status lxg_opacity_create_table(const struct lxg_opacity_set *set,
                                          const struct lxg_opacity_table_options *options,
                                          struct lxg_opacity **opacity, struct lxg_error *error);
 
+/* An opacity in the variables of tables. */
+struct lxg_opacity_point {
+  double log_kappa;   /* log10 of [cm^2 g^-1] */
+  double dlogk_dlogt; /* at constant R */
+  double dlogk_dlogr; /* at constant T */
+  double table_weight;
+};
+
+/* Any opacity at log10 T [K] and log10 R. Status and guarantees of lxg_opacity_at. */
+enum lxg_status lxg_opacity_at_log(const struct lxg_opacity *opacity, double log_t, double log_r,
+                                   struct lxg_opacity_point *point);
+
 /* Evaluates any opacity on a grid: a table of its own (node values as lxg_opacity_at gives them; missing where it refuses).
  * Axes are copied. LXG_INPUT as lxg_opacity_grid_validate, LXG_MEMORY. */
 enum lxg_status lxg_opacity_tabulate(const struct lxg_opacity *opacity,
@@ -139,6 +151,15 @@ enum lxg_status lxg_opacity_grid_read(const char *path, struct lxg_opacity_grid 
 /* Writes an own file in one step (the old one stays if anything fails). Missing nodes are left empty. */
 enum lxg_status lxg_opacity_grid_write(const struct lxg_opacity_grid *grid, const char *path,
                                        struct lxg_error *error);
+
+/* Reads own files into a set. Errors as above and "opacity-set-duplicate"; on failure `set` is empty. */
+enum lxg_status lxg_opacity_set_read(const char *const *paths, size_t count, struct lxg_opacity_set *set,
+                                     struct lxg_error *error);
+
+/* Writes each grid of a set into a folder that exists, as x0.7000-cno0.0000-z0.0200.ecsv (mass fractions, four decimals; more
+ * where two would share a name). Errors as lxg_opacity_grid_write. */
+enum lxg_status lxg_opacity_set_write(const struct lxg_opacity_set *set, const char *directory,
+                                      struct lxg_error *error);
 
 /* ---- checking ---- */
 

@@ -86,4 +86,11 @@ enum lxg_status lxg_porosity_critical_depth(const struct lxg_porosity *porosity,
 enum lxg_status lxg_porosity_mass_loss(const struct lxg_porosity *porosity, double gamma, double luminosity,
                                        double sound_speed, double *mass_loss, struct lxg_error *error);
 
+struct lxg_node;
+
+/* Reads the section `porosity` of a case (NULL: no porosity): law none, reduction (factor) or length (scale and, for a power
+ * law of blob depths, power). A number that the law does not use is refused ("porosity-unused"). LXG_INPUT with the place. */
+enum lxg_status lxg_porosity_read(struct lxg_node *section, struct lxg_porosity *porosity,
+                                  struct lxg_error *error);
+
 #endif

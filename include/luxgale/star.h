@@ -8,6 +8,8 @@
 #include "luxgale/composition.h"
 #include "luxgale/status.h"
 
+#include <stdbool.h>
+
 /* Mass and radius; everything else is derived from them and from the envelope's composition. */
 struct lxg_star {
   double gm;     /* G M [cm^3 s^-2] */
@@ -32,5 +34,12 @@ double lxg_star_tiring_rate(const struct lxg_star *star, double luminosity);
 
 /* Envelope mass 4 pi R_0^4 P/(G M) [g] whose weight is the pressure P [dyn cm^-2] at the base (thin shell). */
 double lxg_star_envelope_mass(const struct lxg_star *star, double pressure);
+
+struct lxg_node;
+
+/* Reads the section `star` of a case: mass, and a radius or `white-dwarf` (the default; then `*dwarf` is true and the radius
+ * follows from the mass). LXG_INPUT with the place in the file. */
+enum lxg_status lxg_star_read(struct lxg_node *section, struct lxg_star *star, bool *dwarf,
+                              struct lxg_error *error);
 
 #endif

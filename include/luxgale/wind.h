@@ -20,6 +20,7 @@
 #include "luxgale/porosity.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
+#include "luxgale/units.h"
 
 #include <stdbool.h>
 #include <stddef.h>
@@ -209,5 +210,15 @@ struct lxg_wind_row {
 enum lxg_status lxg_wind_structure(const struct lxg_wind_solver *solver, struct lxg_wind_row **rows,
                                    size_t *count, size_t *critical, size_t *photosphere,
                                    struct lxg_error *error);
+
+struct lxg_node;
+
+/* Reads the section `hold` of a case (NULL: nothing held): at most two quantities, in the order of the case. LXG_INPUT with the
+ * place: "hold-value", "hold-launch-radius" (inside the star), "hold-many" and those of reading. `l_edd` is the unit Ledd. */
+enum lxg_status lxg_wind_hold_read(struct lxg_node *section, const struct lxg_star *star, double l_edd,
+                                   struct lxg_wind_hold hold[2], size_t *count, struct lxg_error *error);
+
+/* Dimension of a held quantity, in which a case and a report give it. */
+enum lxg_dimension lxg_held_dimension(enum lxg_held quantity);
 
 #endif

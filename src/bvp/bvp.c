@@ -124,7 +124,9 @@ enum lxg_status lxg_bvp_guess(struct lxg_bvp *b, const double nodes[], size_t in
   b->pieces = pieces;
   b->intervals = intervals;
   memcpy(b->x, nodes, (intervals + 1) * sizeof(double));
-  memcpy(b->p, p, b->m * sizeof(double));
+  if (b->m > 0) {
+    memcpy(b->p, p, b->m * sizeof(double));
+  }
   double unused[LXG_BVP_MAX_UNKNOWNS];
   for (size_t i = 0; i <= intervals; i++) {
     guess(context, nodes[i], b->y + i * n, unused);
@@ -162,7 +164,7 @@ enum lxg_status lxg_bvp_solve(struct lxg_bvp *b, const struct lxg_bvp_problem *p
     if (statistics->meshes >= options->mesh_limit) {
       return LXG_LIMIT;
     }
-    status = lxg_bvp_mesh_adapt(b, residual, options->residual_tolerance, statistics->meshes > 1);
+    status = lxg_bvp_mesh_adapt(b, residual, options, statistics->meshes > 1);
     if (status != LXG_OK) {
       return status;
     }

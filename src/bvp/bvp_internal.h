@@ -101,8 +101,8 @@ enum lxg_status lxg_bvp_newton(struct lxg_bvp *bvp, const struct lxg_bvp_problem
 
 /* New mesh for the residual measured by interval: equidistributed, or (`again`, or few fail) the failing intervals split.
  * LXG_LIMIT if the capacity is too small. */
-enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *bvp, const double residual[], double tolerance,
-                                   bool again);
+enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *bvp, const double residual[],
+                                   const struct lxg_bvp_options *options, bool again);
 /* Largest relative residual of each interval into residual[intervals]; returns the largest. */
 double lxg_bvp_mesh_residual(const struct lxg_bvp *bvp, const struct lxg_bvp_problem *problem,
                              double residual[], double *worst_x);

@@ -2,8 +2,8 @@
  *
  * bvp_mesh.c - residual off the mesh, and the mesh that equidistributes it.
  *
- * Between its s collocation points the residual of an interval scales as h^s. With e_i the residual measured in interval
- * i and t the tolerance, the interval wants (e_i/(f t))^(1/s) parts, f < 1 a safety factor; the piecewise constant density
+ * Between its s collocation points the residual of an interval scales as h^s. With e_i the residual measured in interval i
+ * and t the aim, the interval wants (e_i/t)^(1/s) parts; the piecewise constant density
  * of wanted parts is smoothed (neighbours differ by a bounded ratio) and integrated for the new nodes (Ascher, Mattheij &
  * Russell 1995, sect. 9.2). That law fails around a kink of the equations (a table's cell edge, say), where moving nodes about
  * would never end; so a second and later remeshing, or one where few intervals fail, only splits the failing intervals.
@@ -14,7 +14,6 @@
 #include <stdbool.h>
 #include <string.h>
 
-static const double residual_safety = 0.3; /* share of the tolerance that a new mesh aims at */
 static const double parts_least =
     0.45; /* an interval shrinks to this many parts at the least in one remeshing */
 static const double parts_most = 6.0;      /* ... and at the most */
@@ -72,11 +71,10 @@ double lxg_bvp_mesh_residual(const struct lxg_bvp *b, const struct lxg_bvp_probl
 }
 
 /* Wanted parts per unit of x in each interval, smoothed within each piece. */
-static void wanted_density(const struct lxg_bvp *b, const double residual[], double tolerance,
-                           double density[]) {
+static void wanted_density(const struct lxg_bvp *b, const double residual[], double aim, double density[]) {
   const double power = 1.0 / (double)b->tableau.stages;
   for (size_t i = 0; i < b->intervals; i++) {
-    const double parts = pow(residual[i] / (residual_safety * tolerance) + 1e-300, power);
+    const double parts = pow(residual[i] / aim + 1e-300, power);
     density[i] = fmin(fmax(parts, parts_least), parts_most) / (b->x[i + 1] - b->x[i]);
   }
   for (size_t i = 1; i < b->intervals; i++) {
@@ -137,12 +135,12 @@ static void transfer(struct lxg_bvp *b, size_t count) {
 }
 
 /* Splits the intervals whose residual is too large; the others stay. */
-static enum lxg_status split(struct lxg_bvp *b, const double residual[], double tolerance) {
+static enum lxg_status split(struct lxg_bvp *b, const double residual[], double tolerance, double aim) {
   const double power = 1.0 / (double)b->tableau.stages;
   size_t count = 0;
   b->new_x[0] = b->x[0];
   for (size_t i = 0; i < b->intervals; i++) {
-    const double wanted = ceil(pow(residual[i] / (residual_safety * tolerance) + 1e-300, power));
+    const double wanted = ceil(pow(residual[i] / aim + 1e-300, power));
     const size_t parts = residual[i] > tolerance ? (size_t)fmin(fmax(wanted, 2.0), split_most) : 1;
     if (count + parts > b->capacity) {
       return LXG_LIMIT;
@@ -158,22 +156,25 @@ static enum lxg_status split(struct lxg_bvp *b, const double residual[], double 
 }
 
 /* Few intervals fail, and the mesh is not much finer than it need be. */
-static bool nearly_good(const struct lxg_bvp *b, const double residual[], double tolerance) {
+static bool nearly_good(const struct lxg_bvp *b, const double residual[], double tolerance, double aim) {
   const double power = 1.0 / (double)b->tableau.stages;
   double wanted = 0.0;
   size_t failing = 0;
   for (size_t i = 0; i < b->intervals; i++) {
-    wanted += fmax(pow(residual[i] / (residual_safety * tolerance) + 1e-300, power), 0.2);
+    wanted += fmax(pow(residual[i] / aim + 1e-300, power), 0.2);
     failing += residual[i] > tolerance;
   }
   return (double)failing <= few_share * (double)b->intervals && (double)b->intervals <= waste_most * wanted;
 }
 
-enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *b, const double residual[], double tolerance, bool again) {
-  if (again || nearly_good(b, residual, tolerance)) {
-    return split(b, residual, tolerance);
+enum lxg_status lxg_bvp_mesh_adapt(struct lxg_bvp *b, const double residual[],
+                                   const struct lxg_bvp_options *options, bool again) {
+  const double tolerance = options->residual_tolerance;
+  const double aim = options->residual_aim > 0.0 ? fmin(options->residual_aim, tolerance) : 0.3 * tolerance;
+  if (again || nearly_good(b, residual, tolerance, aim)) {
+    return split(b, residual, tolerance, aim);
   }
-  wanted_density(b, residual, tolerance, b->density);
+  wanted_density(b, residual, aim, b->density);
   size_t count = 0;
   size_t first = 0;
   b->new_x[0] = b->x[0];

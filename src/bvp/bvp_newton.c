@@ -9,6 +9,9 @@
 #include <stdbool.h>
 #include <string.h>
 
+static const double near =
+    0.05; /* a full step that leaves less than this share of its size is close to the solution */
+
 /* Largest component of y and p parts; the unknowns are expected to be of order one (logarithms). Infinite if any
  * component is not finite. */
 static double size_of(const double y[], size_t count, const double p[], size_t m) {
@@ -112,6 +115,31 @@ static double predict(const struct lxg_bvp *b, size_t count, double lambda, doub
   return fmin(1.0, lambda * last_size * last_bar / fmax(change * size, 1e-300));
 }
 
+/* Near the solution the old Jacobian serves on: simplified corrections are added while each is much smaller than the last.
+ * Starts from an accepted trial whose correction is in bar_*; true once that correction is within the tolerance. */
+static bool polish(struct lxg_bvp *b, const struct lxg_bvp_problem *problem,
+                   const struct lxg_bvp_options *options, double *bar) {
+  static const double contraction = 0.1; /* slower than this a new Jacobian is cheaper */
+  const size_t count = (b->intervals + 1) * b->n, stages = b->intervals * b->n * b->tableau.stages;
+  for (;;) {
+    accept(b, count, stages, 1.0);
+    if (*bar <= options->newton_tolerance) {
+      return true;
+    }
+    memcpy(b->trial_y, b->y, count * sizeof(double));
+    memcpy(b->trial_k, b->k, stages * sizeof(double));
+    memcpy(b->trial_p, b->p, sizeof b->p);
+    const double last = *bar;
+    if (lxg_bvp_linear_simplified(b, problem) != LXG_OK) {
+      return false;
+    }
+    *bar = size_of(b->bar_y, count, b->bar_p, b->m);
+    if (!(*bar <= contraction * last)) {
+      return false;
+    }
+  }
+}
+
 enum lxg_status lxg_bvp_newton(struct lxg_bvp *b, const struct lxg_bvp_problem *problem,
                                const struct lxg_bvp_options *options, struct lxg_bvp_statistics *statistics) {
   const size_t count = (b->intervals + 1) * b->n, stages = b->intervals * b->n * b->tableau.stages;
@@ -127,7 +155,7 @@ enum lxg_status lxg_bvp_newton(struct lxg_bvp *b, const struct lxg_bvp_problem *
     if (!isfinite(size)) {
       return LXG_SINGULAR;
     }
-    if (iteration > 0) {
+    if (iteration > 0 && last_bar > 0.0) {
       lambda = predict(b, count, lambda, last_size, last_bar, size);
     }
     if (size <= options->newton_tolerance) {
@@ -142,14 +170,17 @@ enum lxg_status lxg_bvp_newton(struct lxg_bvp *b, const struct lxg_bvp_problem *
     if (status != LXG_OK) {
       return status;
     }
-    const bool done = lambda >= 1.0 && bar <= options->newton_tolerance;
-    accept(b, count, stages, done ? 1.0 : 0.0);
-    if (done) {
-      statistics->correction = bar;
-      return LXG_OK;
-    }
     last_size = size;
     last_bar = bar;
+    if (lambda < 1.0 || bar > near * size) {
+      accept(b, count, stages, 0.0);
+    } else if (polish(b, problem, options, &bar)) {
+      statistics->correction = bar;
+      return LXG_OK;
+    } else {
+      lambda = 1.0;
+      last_bar = 0.0; /* bar_* has moved on: no prediction from it */
+    }
   }
   return LXG_NOT_CONVERGED;
 }

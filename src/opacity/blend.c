@@ -11,9 +11,7 @@
  */
 #include "opacity/blend.h"
 
-#include "luxgale/constants.h"
 #include "luxgale/memory.h"
-#include "opacity/sum.h"
 
 #include <math.h>
 #include <stdio.h>
@@ -160,11 +158,10 @@ static enum lxg_status add_formula(struct lxg_opacity_grid *grid, const struct l
     return status;
   }
   for (size_t k = 0; k < grid->temperatures * grid->densities; k++) {
-    struct lxg_opacity_value value;
-    const double ln_t = grid->log_t[k / grid->densities] * LXG_LN10;
-    const double ln_rho = grid->log_r[k % grid->densities] * LXG_LN10 + 3.0 * (ln_t - LXG_OPACITY_LN_T6);
-    const bool known = lxg_opacity_at(formula, ln_rho, ln_t, &value) == LXG_OK;
-    grid->log_kappa[k] += known ? factor * log10(value.kappa) : NAN;
+    struct lxg_opacity_point point;
+    const bool known = lxg_opacity_at_log(formula, grid->log_t[k / grid->densities],
+                                          grid->log_r[k % grid->densities], &point) == LXG_OK;
+    grid->log_kappa[k] += known ? factor * point.log_kappa : NAN;
   }
   lxg_opacity_destroy(formula);
   return LXG_OK;

@@ -2,15 +2,12 @@
  *
  * check.c - looks an opacity table over: holes, spikes, suspicious slopes, distance from the built-in formula.
  *
- * Spike: a node off the parabola-free line through its two neighbours by more than the limit along log T and along log R,
+ * Spike: a node off the straight line through its two neighbours by more than the limit along log T and along log R,
  * with the same sign: a bump of nature is sharp along log T only. Slope: at fixed T kappa of a gas rises with density
  * or stays flat; degenerate gas (2.7e11 rho/T^2 > 0.1) and cool gas (log T < 4.3), where it may fall, are left alone. The
  * comparison with the formula is for people: it says where a table is unusual, not that it is wrong.
  */
 #include "luxgale/opacity_table.h"
-
-#include "luxgale/constants.h"
-#include "opacity/sum.h"
 
 #include <math.h>
 #include <string.h>
@@ -21,7 +18,7 @@ static const double degenerate_share = 0.1; /* of 2.7e11 rho/T^2 */
 static const double compared_log_r = -2.0;  /* the formula is calibrated up to here */
 
 struct lxg_opacity_check_options lxg_opacity_check_defaults(void) {
-  return (struct lxg_opacity_check_options){.spike = 0.15, .slope = -0.05, .difference = 0.3};
+  return (struct lxg_opacity_check_options){.spike = 0.3, .slope = -0.05, .difference = 0.3};
 }
 
 static double node(const struct lxg_opacity_grid *grid, size_t i, size_t j) {
@@ -123,14 +120,12 @@ struct comparison {
 static void compare(const struct lxg_opacity_grid *grid, const struct lxg_opacity *formula, size_t i,
                     size_t j, double limit, struct comparison *comparison,
                     struct lxg_opacity_findings *findings) {
-  struct lxg_opacity_value value;
-  const double ln_t = grid->log_t[i] * LXG_LN10;
-  const double ln_rho = grid->log_r[j] * LXG_LN10 + 3.0 * (ln_t - LXG_OPACITY_LN_T6);
+  struct lxg_opacity_point point;
   if (grid->log_r[j] > compared_log_r + 1e-9 || grid->log_t[i] < cool_log_t - 1e-9 ||
-      lxg_opacity_at(formula, ln_rho, ln_t, &value) != LXG_OK) {
+      lxg_opacity_at_log(formula, grid->log_t[i], grid->log_r[j], &point) != LXG_OK) {
     return;
   }
-  const double difference = node(grid, i, j) - log10(value.kappa);
+  const double difference = node(grid, i, j) - point.log_kappa;
   comparison->squares += difference * difference;
   comparison->count++;
   if (fabs(difference) > fabs(findings->formula_most)) {

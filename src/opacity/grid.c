@@ -167,6 +167,21 @@ void lxg_opacity_set_free(struct lxg_opacity_set *set) {
 
 /* ---- tabulating ---- */
 
+enum lxg_status lxg_opacity_at_log(const struct lxg_opacity *opacity, double log_t, double log_r,
+                                   struct lxg_opacity_point *point) {
+  struct lxg_opacity_value value;
+  const double ln_t = log_t * LXG_LN10;
+  const double ln_rho = log_r * LXG_LN10 + 3.0 * (ln_t - LXG_OPACITY_LN_T6);
+  const enum lxg_status status = lxg_opacity_at(opacity, ln_rho, ln_t, &value);
+  if (status == LXG_OK) {
+    point->log_kappa = log10(value.kappa);
+    point->dlogk_dlogr = value.dlnk_dlnrho;
+    point->dlogk_dlogt = value.dlnk_dlnt + 3.0 * value.dlnk_dlnrho;
+    point->table_weight = value.table_weight;
+  }
+  return status;
+}
+
 enum lxg_status lxg_opacity_tabulate(const struct lxg_opacity *opacity,
                                      const struct lxg_composition *composition, const double *log_t,
                                      size_t temperatures, const double *log_r, size_t densities,
@@ -186,11 +201,9 @@ enum lxg_status lxg_opacity_tabulate(const struct lxg_opacity *opacity,
   for (size_t i = 0; i < temperatures; i++) {
     made->log_t[i] = log_t[i];
     for (size_t j = 0; j < densities; j++) {
-      struct lxg_opacity_value value;
-      const double ln_t = log_t[i] * LXG_LN10;
-      const double ln_rho = log_r[j] * LXG_LN10 + 3.0 * (ln_t - LXG_OPACITY_LN_T6);
-      if (lxg_opacity_at(opacity, ln_rho, ln_t, &value) == LXG_OK) {
-        made->log_kappa[i * densities + j] = log10(value.kappa);
+      struct lxg_opacity_point point;
+      if (lxg_opacity_at_log(opacity, log_t[i], log_r[j], &point) == LXG_OK) {
+        made->log_kappa[i * densities + j] = point.log_kappa;
       }
     }
   }

@@ -144,7 +144,7 @@ static void note_text(struct importer *in, const char *line, size_t size) {
     in->z = has_z ? z : 0.0;
     in->cno = carbon + oxygen;
     in->composition_line = in->line;
-  } else if (in->set->count == 0 && in->block_line == 0) {
+  } else if (in->composition_line == 0 && in->block_line == 0) {
     const size_t used = strlen(in->title);
     snprintf(in->title + used, sizeof in->title - used, "%s%.*s", used > 0 ? " " : "", (int)size, line);
   }
@@ -244,21 +244,21 @@ static enum lxg_status open_block(struct importer *in, struct word *words, size_
   return LXG_OK;
 }
 
-/* Column of the heading that stands nearest above the end of a word; SIZE_MAX if none is near or two are. */
+/* The one column of the heading whose value ends within `slack` text columns of where the word ends; SIZE_MAX if none does or
+ * two do. Headings and rows of one file are often set with different widths, but not by more than that. */
 static size_t heading_above(const struct importer *in, const struct word *word) {
+  static const size_t slack = 2;
   const size_t end = word->column + word->size;
-  size_t best = SIZE_MAX;
-  size_t least = SIZE_MAX;
-  bool tie = false;
+  size_t found = SIZE_MAX;
   for (size_t j = 0; j < in->densities; j++) {
-    const size_t distance = end > in->ends[j] ? end - in->ends[j] : in->ends[j] - end;
-    tie = distance == least || (tie && distance >= least);
-    if (distance < least) {
-      least = distance;
-      best = j;
+    if (end <= in->ends[j] + slack && in->ends[j] <= end + slack) {
+      if (found != SIZE_MAX) {
+        return SIZE_MAX;
+      }
+      found = j;
     }
   }
-  return tie ? SIZE_MAX : best;
+  return found;
 }
 
 static enum lxg_status grow_rows(struct importer *in) {

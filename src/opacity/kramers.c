@@ -4,18 +4,29 @@
  *
  * With u = log T, l = log R + 5, R = rho/(T/1e6 K)^3, t = l/(1 + (l/5)^2)^(1/2) (log R, limited so that nothing runs
  * away outside the data) and 1/[...] a smooth switch S(u) = 1/(1 + exp(n ln 10 (u_0 + s t - u))):
- *   kappa  = k_es + 1/(1/k_hminus + 1/k_rest),   k_rest = (k_ff + k_bf) S_cut + sum of bumps            [cm^2 g^-1]
+ *   kappa  = k_es + k_cold + 1/(1/k_hminus + 1/k_rest),   k_rest = (k_ff + k_bf) S_cut + sum of bumps   [cm^2 g^-1]
  *   k_es   = [0.4 X S_H + 0.2 (1 - X) S_He] / {[1 + 2.7e11 rho/T^2] [1 + (T/T_C)^a]}
  *            shape of Paczynski 1983, ApJ 267, 315 (from memory); fully ionised it is 0.2 (1 + X)
  *   k_ff   = (1 + X) 10^c (R/1e-3)^p (T/1e6 K)^q
  *   k_bf   = 10^c 4.34e25 (1 + X) 0.02 (Z'/0.02)^z (Kramers' rho T^-3.5 with fitted powers), Z' = Z + cno
  *   k_hminus = 10^c 2.5e-31 (z_0 + Z/0.02)(X/0.7 + x_0) rho^0.5 T^9
+ *            limits the other sources where hydrogen turns neutral (in series, log T < 4)
+ *   k_cold = k_0/(1 + (k_0/cap)^2), k_0 = 2.5e-31 (Z/0.02)(X/0.7) rho^0.5 T^9: the textbook law (from memory) below 4500 K
  *   bump   = 10^(a + p l + p_2 t^2 + p_3 t^3) (element)^q ((1 + X)/1.7)^r exp(-((u - u_b - s t)/w)^2),
- *            1/w = (1/w_0)(1 + b t/5), w_0 and b different on the two sides of the peak.
+  *            1/w = (1/w_0)(1 + b t/5), w_0 and b different on the two sides of the peak: with d the distance from it,
+ *            the value turns from the cool to the hot one as d/(|d| + 0.05), so that the law has three continuous
+ *            derivatives and a solver's mesh need not look for its peaks.
  * Powers of R below one are no accident: the Rosseland mean of scattering plus absorption exceeds the sum of the two
  * means, and the fit of a sum takes that up. Each element's bumps follow its own mass fraction: hydrogen X, helium Y,
  * iron Z alone, deep Z'. Coefficients: kramers.def. Nothing here can fail; the caller checks the domain.
  */
+/* Fused multiply-add where the processor has it; see lanes.h. */
+#if defined(__GNUC__) && !defined(__clang__)
+#pragma GCC optimize("fp-contract=fast")
+#else
+#pragma STDC FP_CONTRACT ON
+#endif
+
 #include "opacity/kramers.h"
 
 #include "luxgale/constants.h"
@@ -26,6 +37,8 @@
 _Static_assert(KRAMERS_TERMS % LANES == 0, "terms fill whole lanes");
 
 static const double limit = 5.0; /* dex of R over which t follows l */
+static const double turn =
+    0.05; /* dex of T over which the width of a bump turns from its cool to its hot value */
 static const double pivot = 2.0; /* l at R = 1e-3, where the power laws are anchored */
 
 const struct kramers_coefficients lxg_opacity_kramers_calibrated = {
@@ -79,10 +92,12 @@ static void init_bumps(struct kramers_law *law, const struct kramers_coefficient
     law->twist[i] = LXG_LN10 * c[KRAMERS_twist];
     law->log_t[i] = c[KRAMERS_log_t];
     law->shift[i] = c[KRAMERS_shift];
-    law->inverse_cool[i] = c[KRAMERS_cool];
-    law->inverse_hot[i] = c[KRAMERS_hot];
-    law->trend_cool[i] = c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit;
-    law->trend_hot[i] = c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit;
+    const double cool_trend = c[KRAMERS_cool] * c[KRAMERS_cool_trend] / limit;
+    const double hot_trend = c[KRAMERS_hot] * c[KRAMERS_hot_trend] / limit;
+    law->inverse_middle[i] = 0.5 * (c[KRAMERS_hot] + c[KRAMERS_cool]);
+    law->inverse_half[i] = 0.5 * (c[KRAMERS_hot] - c[KRAMERS_cool]);
+    law->trend_middle[i] = 0.5 * (hot_trend + cool_trend);
+    law->trend_half[i] = 0.5 * (hot_trend - cool_trend);
   }
 }
 
@@ -117,6 +132,10 @@ static void init_factors(struct kramers_law *law, const double *c, double hydrog
   law->factor_constant[KRAMERS_H_MINUS] = LXG_LN10 * (c[KRAMERS_h_minus_scale] - 11.5) + log(2.5e-31) +
                                           log(c[KRAMERS_h_minus_metals] + metals / 0.02) +
                                           log(hydrogen / 0.7 + c[KRAMERS_h_minus_floor]);
+  const double limiting = pow(10.0, c[KRAMERS_h_minus_scale]) * (c[KRAMERS_h_minus_metals] + metals / 0.02) *
+                          (hydrogen / 0.7 + c[KRAMERS_h_minus_floor]);
+  law->cold_ratio = metals / 0.02 * hydrogen / 0.7 / limiting;
+  law->cold_per_cap = law->cold_ratio / c[KRAMERS_h_minus_cap];
   law->factor_by_u[KRAMERS_H_MINUS] = 10.5 * LXG_LN10; /* rho^0.5 T^9 */
   law->factor_by_l[KRAMERS_H_MINUS] = 0.5 * LXG_LN10;
 }
@@ -184,30 +203,34 @@ LXG_LANES_INLINE void factors_at(const struct kramers_law *law, const struct pla
 /* Value and slopes (per dex, of the logarithm) of the four terms of lanes `first` ..., before switching off. */
 LXG_LANES_INLINE void terms_at(const struct kramers_law *law, const struct place *at, size_t first,
                                lanes *kappa, lanes *slope_u, lanes *slope_l) {
-  lanes log_t, shift, cool, hot, inverse, trend, constant, by_u, by_l, bend, twist;
+  lanes log_t, shift, middle, half, trend_middle, trend_half, constant, by_u, by_l, bend, twist;
   lanes_load(&log_t, &law->log_t[first]);
   lanes_load(&shift, &law->shift[first]);
   const lanes distance = at->u - (log_t + shift * at->t);
-  const lane_bits is_hot = distance > (lanes){0.0, 0.0, 0.0, 0.0};
-  lanes_load(&cool, &law->inverse_cool[first]);
-  lanes_load(&hot, &law->inverse_hot[first]);
-  lanes_choose(&inverse, &is_hot, &hot, &cool);
-  lanes_load(&cool, &law->trend_cool[first]);
-  lanes_load(&hot, &law->trend_hot[first]);
-  lanes_choose(&trend, &is_hot, &hot, &cool);
-  inverse += trend * at->t;
+  lanes size;
+  lanes_magnitude(&size, &distance);
+  const lanes reach = 1.0 / (size + turn);
+  const lanes side = distance * reach; /* from -1, cool, to 1, hot */
+  lanes_load(&middle, &law->inverse_middle[first]);
+  lanes_load(&half, &law->inverse_half[first]);
+  lanes_load(&trend_middle, &law->trend_middle[first]);
+  lanes_load(&trend_half, &law->trend_half[first]);
+  const lanes trend = trend_middle + side * trend_half;
+  const lanes inverse = middle + side * half + trend * at->t;
+  const lanes turning = (half + trend_half * at->t) * (turn * reach * reach);
   const lanes offset = distance * inverse;
+  const lanes by_distance = inverse + distance * turning; /* of the offset */
   lanes_load(&constant, &law->constant[first]);
   lanes_load(&by_u, &law->by_u[first]);
   lanes_load(&by_l, &law->by_l[first]);
   lanes_load(&bend, &law->bend[first]);
   lanes_load(&twist, &law->twist[first]);
-  const lanes exponent =
-      constant + by_u * at->u + by_l * at->l + (at->t * at->t) * (bend + twist * at->t) - offset * offset;
-  lanes_exp(kappa, &exponent);
+  const lanes bent = bend + twist * at->t;
+  const lanes exponent = constant + by_u * at->u + by_l * at->l + (at->t * at->t) * bent - offset * offset;
+  lanes_exp_floored(kappa, &exponent);
   const lanes by_t =
-      at->t * (2.0 * bend + (3.0 * at->t) * twist) - 2.0 * offset * (distance * trend - inverse * shift);
-  *slope_u = by_u - 2.0 * offset * inverse;
+      at->t * (2.0 * bent + at->t * twist) - 2.0 * offset * (distance * trend - by_distance * shift);
+  *slope_u = by_u - 2.0 * offset * by_distance;
   *slope_l = by_l + by_t * at->dt;
 }
 
@@ -219,18 +242,17 @@ LXG_LANES_INLINE struct opacity_sum per_dex(double kappa, double by_u, double by
 /* Scattering on free electrons, with the declines at high T and high density. */
 LXG_LANES_INLINE struct opacity_sum scattering_at(const struct kramers_law *law, const struct place *at,
                                                   const double factor[LANES]) {
-  const double one_c = 1.0 + factor[KRAMERS_COMPTON], one_d = 1.0 + factor[KRAMERS_DEGENERATE];
-  const double one_h = 1.0 + factor[KRAMERS_HYDROGEN_SWITCH], one_he = 1.0 + factor[KRAMERS_HELIUM_SWITCH];
-  const double reduced = 1.0 / (one_c * one_d); /* one division for two */
-  const double ionised = 1.0 / (one_h * one_he);
-  const double neutral_h = factor[KRAMERS_HYDROGEN_SWITCH] * ionised * one_he; /* 1 - S_H */
-  const double neutral_he = factor[KRAMERS_HELIUM_SWITCH] * ionised * one_h;
-  const double from_h = law->hydrogen_electrons * reduced * ionised * one_he;
-  const double from_he = law->other_electrons * reduced * ionised * one_h;
-  const double h = from_h * neutral_h, he = from_he * neutral_he;
+  lanes f;
+  lanes_load(&f, factor);
+  const lanes left = 1.0 / (1.0 + f); /* what each of the four factors leaves */
+  const lanes lost = f * left;
+  const double reduced = left[KRAMERS_COMPTON] * left[KRAMERS_DEGENERATE];
+  const double from_h = law->hydrogen_electrons * reduced * left[KRAMERS_HYDROGEN_SWITCH];
+  const double from_he = law->other_electrons * reduced * left[KRAMERS_HELIUM_SWITCH];
+  const double h = from_h * lost[KRAMERS_HYDROGEN_SWITCH], he = from_he * lost[KRAMERS_HELIUM_SWITCH];
   const double kappa = from_h + from_he;
-  const double recoil = law->factor_by_u[KRAMERS_COMPTON] * factor[KRAMERS_COMPTON] * reduced * one_d;
-  const double crowded = LXG_LN10 * factor[KRAMERS_DEGENERATE] * reduced * one_c;
+  const double recoil = law->factor_by_u[KRAMERS_COMPTON] * lost[KRAMERS_COMPTON];
+  const double crowded = LXG_LN10 * lost[KRAMERS_DEGENERATE];
   const double by_u = -(law->factor_by_u[KRAMERS_HYDROGEN_SWITCH] * h +
                         law->factor_by_u[KRAMERS_HELIUM_SWITCH] * he + kappa * (recoil + crowded));
   const double by_l = -(at->dt * (law->factor_by_t[KRAMERS_HYDROGEN_SWITCH] * h +
@@ -261,6 +283,21 @@ LXG_LANES_INLINE struct opacity_sum rest_at(const struct kramers_law *law, const
   return per_dex(lanes_sum(&total), lanes_sum(&by_u), lanes_sum(&by_l));
 }
 
+/* Puts H-minus of strength h in series with the rest and adds what it gives to cool gas. */
+LXG_LANES_INLINE void add_h_minus(const struct kramers_law *law, double h, struct opacity_sum *rest) {
+  /* 1/kappa = 1/h + 1/rest: each part of the resistance weighs its own slope. */
+  const double both = 1.0 / (h + rest->kappa);
+  const double pass = h * both;
+  const double block = rest->kappa * both;
+  const double q2 = (law->cold_per_cap * h) * (law->cold_per_cap * h);
+  const double shrink = 1.0 / (1.0 + q2);
+  const double cold = law->cold_ratio * h * shrink;
+  const double by_h = block * block * h + cold * (1.0 - q2) * shrink; /* d kappa/d ln h */
+  rest->kappa = rest->kappa * pass + cold;
+  rest->by_lnrho = pass * pass * rest->by_lnrho + 0.5 * by_h;
+  rest->by_lnt = pass * pass * rest->by_lnt + 9.0 * by_h;
+}
+
 LXG_LANES_TARGETS struct opacity_sum lxg_opacity_kramers_at(const struct kramers_law *law, double ln_rho,
                                                             double ln_t) {
   const struct place at = place_of(ln_rho, ln_t);
@@ -269,14 +306,7 @@ LXG_LANES_TARGETS struct opacity_sum lxg_opacity_kramers_at(const struct kramers
   factors_at(law, &at, LANES, factor + LANES);
   struct opacity_sum rest = rest_at(law, &at, factor[KRAMERS_COOL_SWITCH]);
   if (law->in_series) {
-    /* 1/kappa = 1/h + 1/rest: each part of the resistance weighs its own slope. */
-    const double h = factor[KRAMERS_H_MINUS];
-    const double both = 1.0 / (h + rest.kappa);
-    const double pass = h * both;
-    const double block = rest.kappa * both;
-    rest.kappa *= pass;
-    rest.by_lnrho = pass * pass * rest.by_lnrho + block * block * 0.5 * h;
-    rest.by_lnt = pass * pass * rest.by_lnt + block * block * 9.0 * h;
+    add_h_minus(law, factor[KRAMERS_H_MINUS], &rest);
   }
   const struct opacity_sum electrons = scattering_at(law, &at, factor);
   rest.kappa += electrons.kappa;
@@ -314,12 +344,14 @@ void lxg_opacity_kramers_shares(const struct kramers_law *law, double ln_rho, do
   }
   const double h = factor[KRAMERS_H_MINUS];
   const double pass = law->in_series ? h / (h + rest) : 1.0;
+  const double q = law->cold_per_cap * h;
+  const double cold = law->in_series ? law->cold_ratio * h / (1.0 + q * q) : 0.0;
   const double electrons = scattering_at(law, &at, factor).kappa;
-  const double kappa = electrons + pass * rest;
+  const double kappa = electrons + cold + pass * rest;
   /* d ln kappa/d ln k_i: a term in series with another acts through the square of what it lets pass. */
   for (size_t i = 0; i < LXG_OPACITY_SOURCES; i++) {
     share[i] *= pass * pass / kappa;
   }
-  share[LXG_OPACITY_SOURCE_H_MINUS] = pass * (1.0 - pass) * rest / kappa;
+  share[LXG_OPACITY_SOURCE_H_MINUS] = (pass * (1.0 - pass) * rest + cold) / kappa;
   share[LXG_OPACITY_SOURCE_SCATTERING] = electrons / kappa;
 }

@@ -62,12 +62,14 @@ struct kramers_law {
   double hydrogen_electrons; /* 0.4 X [cm^2 g^-1]; 0 if scattering is omitted */
   double other_electrons;    /* 0.2 (1 - X) [cm^2 g^-1] */
   bool in_series;            /* false if h_minus is omitted */
+  double cold_ratio;         /* textbook H-minus over the H-minus that limits */
+  double cold_per_cap;       /* the same over the cap [g cm^-2] */
   bool present[KRAMERS_TERMS];
   double constant[KRAMERS_TERMS], by_u[KRAMERS_TERMS], by_l[KRAMERS_TERMS];
   double bend[KRAMERS_TERMS], twist[KRAMERS_TERMS];
   double log_t[KRAMERS_TERMS], shift[KRAMERS_TERMS];
-  double inverse_cool[KRAMERS_TERMS], inverse_hot[KRAMERS_TERMS];
-  double trend_cool[KRAMERS_TERMS], trend_hot[KRAMERS_TERMS];
+  double inverse_middle[KRAMERS_TERMS], inverse_half[KRAMERS_TERMS];
+  double trend_middle[KRAMERS_TERMS], trend_half[KRAMERS_TERMS];
   double factor_constant[KRAMERS_FACTORS], factor_by_u[KRAMERS_FACTORS], factor_by_l[KRAMERS_FACTORS],
       factor_by_t[KRAMERS_FACTORS];
 };

@@ -239,6 +239,8 @@ void lxg_opacity_surface_free(struct opacity_surface *surface) {
 
 /* ---- one point ---- */
 
+static const double edge_slack = 1e-9; /* dex: a point that rounding moved off an edge still lies on it */
+
 /* Interval of the axis; `x` lies on the axis. */
 static inline size_t interval_of(const struct surface_axis *axis, double x) {
   size_t i = axis->bin[(size_t)((x - axis->first) * axis->per_bin)];
@@ -290,13 +292,15 @@ bool lxg_opacity_surface_at(const struct opacity_surface *surface, double log_t,
                             struct surface_value *value) {
   const double least_t = surface->t.node[0], most_t = surface->t.node[surface->t.nodes - 1];
   const double least_r = surface->r.node[0], most_r = surface->r.node[surface->r.nodes - 1];
-  const double u = fmin(fmax(log_t, least_t), most_t);
-  const double l = fmin(fmax(log_r, least_r), most_r);
-  const bool beyond = u != log_t || l != log_r;
+  const bool beyond_t = log_t < least_t - edge_slack || log_t > most_t + edge_slack;
+  const bool beyond_r = log_r < least_r - edge_slack || log_r > most_r + edge_slack;
+  const bool beyond = beyond_t || beyond_r;
   if (beyond && surface->outside != LXG_OPACITY_CLAMP) {
     value->weight = value->table = 0.0;
     return surface->outside == LXG_OPACITY_JOIN;
   }
+  const double u = fmin(fmax(log_t, least_t), most_t);
+  const double l = fmin(fmax(log_r, least_r), most_r);
   const size_t i = interval_of(&surface->t, u);
   const size_t j = interval_of(&surface->r, l);
   const size_t at = i * (surface->r.nodes - 1) + j;
@@ -308,8 +312,8 @@ bool lxg_opacity_surface_at(const struct opacity_surface *surface, double log_t,
   const double x = (u - surface->t.node[i]) * surface->t.inverse[i];
   const double y = (l - surface->r.node[j]) * surface->r.inverse[j];
   cell_at(&surface->cell[at], x, y, value);
-  value->by_t = u == log_t ? value->by_t * surface->t.inverse[i] : 0.0;
-  value->by_r = l == log_r ? value->by_r * surface->r.inverse[j] : 0.0;
+  value->by_t = beyond_t ? 0.0 : value->by_t * surface->t.inverse[i];
+  value->by_r = beyond_r ? 0.0 : value->by_r * surface->r.inverse[j];
   value->weight = 1.0;
   value->table = beyond ? 0.0 : 1.0;
   if (kind != SURFACE_WHOLE && !beyond) {

@@ -11,9 +11,7 @@
  */
 #include "opacity/surface.h"
 
-#include "luxgale/constants.h"
 #include "luxgale/memory.h"
-#include "opacity/sum.h"
 
 #include <math.h>
 
@@ -50,10 +48,8 @@ static void grow_axis(const double *from, size_t count, size_t margin, double wi
 
 /* log10 kappa of the formula; NaN beyond its domain, which margins of a valid grid do not reach. */
 static double formula_at(const struct lxg_opacity *formula, double log_t, double log_r) {
-  struct lxg_opacity_value value;
-  const double ln_t = log_t * LXG_LN10;
-  const double ln_rho = log_r * LXG_LN10 + 3.0 * (ln_t - LXG_OPACITY_LN_T6);
-  return lxg_opacity_at(formula, ln_rho, ln_t, &value) == LXG_OK ? log10(value.kappa) : NAN;
+  struct lxg_opacity_point point;
+  return lxg_opacity_at_log(formula, log_t, log_r, &point) == LXG_OK ? point.log_kappa : NAN;
 }
 
 /* ---- join ---- */

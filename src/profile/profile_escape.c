@@ -19,7 +19,8 @@ const double lxg_profile_weight[LXG_PROFILE_GAUSS] = {
     0.05061426814518813, 0.11119051722668724, 0.15685332293894364, 0.18134189168918100,
     0.18134189168918100, 0.15685332293894364, 0.11119051722668724, 0.05061426814518813};
 
-static const double steep = 0.5; /* sigma beyond +/- this: graded panels */
+static const double steep = 0.5;         /* sigma beyond +/- this: graded panels */
+static const double finest_share = 0.03; /* last panel against that structure: error below 1e-8 */
 enum { GRADES = 12, EVEN_PANELS = 3 };
 
 /* (1 - e^-tau)/tau with tau = depth/w; w = 0 is infinite depth. */
@@ -38,8 +39,10 @@ static double panel(double depth, double sigma, double from, double to) {
   return sum * (to - from);
 }
 
-/* int f dmu over [from, 1]. */
+/* int f dmu over [from, 1]. Near mu = 1 a flow of nearly constant speed has structure down to 1 - mu ~ w(1) or tau_0,
+ * whichever is larger; finer panels than that are joined into the last one. */
 static double integral(double depth, double sigma, double from) {
+  const double finest = finest_share * fmax(1.0 + sigma, fmin(depth, 1.0));
   double sum = 0.0, at = from;
   for (int k = 0; k < GRADES && at < 1.0; k++) {
     double next = 1.0;
@@ -47,6 +50,7 @@ static double integral(double depth, double sigma, double from) {
       next = 0.5 * ldexp(1.0, k) / sqrt(1.0 + sigma);
     } else if (sigma < -steep) {
       next = 1.0 - ldexp(1.0, -2 * k - 1);
+      next = 1.0 - next < finest ? 1.0 : next;
     } else {
       next = (k + 1.0) / EVEN_PANELS;
     }

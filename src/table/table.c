@@ -94,16 +94,14 @@ static bool grow(void **array, size_t rows, size_t size) {
   return grown != NULL;
 }
 
-static bool grow_column(struct lxg_column *column, size_t old, size_t rows) {
+/* New rows hold nothing yet: whoever adds one sets and marks it. */
+static bool grow_column(struct lxg_column *column, size_t rows) {
   void *number = column->number, *text = column->text, *missing = column->missing;
   const bool grown = grow(&number, rows, sizeof *column->number) && grow(&text, rows, sizeof *column->text) &&
                      grow(&missing, rows, sizeof *column->missing);
   column->number = number;
   column->text = text;
   column->missing = missing;
-  if (grown && missing != NULL) {
-    memset(column->missing + old, 0, rows - old);
-  }
   return grown;
 }
 
@@ -121,7 +119,7 @@ enum lxg_status lxg_table_reserve(struct lxg_table *table, size_t rows, struct l
   bool grown = grow(&line, capacity, sizeof *table->line);
   table->line = line;
   for (size_t i = 0; i < table->columns && grown; i++) {
-    grown = grow_column(&table->column[i], table->capacity, capacity);
+    grown = grow_column(&table->column[i], capacity);
   }
   if (!grown) {
     return lxg_table_memory(table, error);

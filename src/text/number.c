@@ -131,7 +131,7 @@ static bool take_apart(const char *text, size_t size, struct decimal *decimal) {
 
 /* The exact product or quotient, when there is one. */
 static bool convert_exactly(const struct decimal *decimal, double *value) {
-  enum { MOST_DIGITS = 15 }; /* 10^15 < 2^53 */
+  enum { MOST_DIGITS = 16 }; /* 10^16 fits an integer of 64 bits; 2^53 is checked below */
   const long power = decimal->exponent - decimal->count;
   if (decimal->count > MOST_DIGITS || power > 22 || power < -22 || FLT_EVAL_METHOD != 0) {
     return false;
@@ -140,8 +140,26 @@ static bool convert_exactly(const struct decimal *decimal, double *value) {
   for (int i = 0; i < decimal->count; i++) {
     mantissa = mantissa * 10 + (decimal->digits[i] - '0');
   }
+  if (mantissa > INT64_C(1) << DBL_MANT_DIG) {
+    return false;
+  }
   *value = power < 0 ? (double)mantissa / powers_of_ten[-power] : (double)mantissa * powers_of_ten[power];
   return true;
+}
+
+/* "e-123" and the terminator: at most 22 bytes. By hand, because this is most of the cost of reading a table. */
+static void append_exponent(char *text, long exponent) {
+  char reversed[20];
+  int count = 0;
+  for (long rest = labs(exponent); rest > 0 || count == 0; rest /= 10) {
+    reversed[count++] = (char)('0' + rest % 10);
+  }
+  *text++ = 'e';
+  *text++ = exponent < 0 ? '-' : '+';
+  while (count > 0) {
+    *text++ = reversed[--count];
+  }
+  *text = '\0';
 }
 
 static double convert(const struct decimal *decimal) {
@@ -152,7 +170,7 @@ static double convert(const struct decimal *decimal) {
     size_t size = (size_t)decimal->count;
     text[size] = '1'; /* stands for whatever follows */
     size += decimal->more ? 1 : 0;
-    snprintf(text + size, sizeof text - size, "e%ld", decimal->exponent - (long)size);
+    append_exponent(text + size, decimal->exponent - (long)size);
     value = strtod(text, NULL);
   }
   return decimal->negative ? -value : value;

@@ -3,7 +3,7 @@
  * wind_cold.c - the first wind, with no guess from the user.
  *
  * All winds of a model form one sheet over (critical radius, critical temperature). At one critical radius the temperature is
- * scanned with the separatrix marches of wind_start.c; wherever the held quantity passes its target between two approximate
+  * scanned with the separatrix marches of wind_start.c, first from the iron bump towards the target only, then all over; wherever the held quantity passes its target between two approximate
  * winds, the place is narrowed by bisection and made exact by the global solver. The scan includes the edges of the range of
  * temperatures in which winds exist, found by bisection, so a wind close to an edge is not missed.
  */
@@ -18,8 +18,8 @@ static const double scan_t_step = 0.1;
 static const double usual_t = 5.6;           /* log10 of the critical temperature under the iron bump [K] */
 static const double scan_accuracy = 1e-3;    /* of ln Mdot while scanning */
 static const double settle_accuracy = 1e-13; /* before the global solver takes over */
-static const double close_enough = 0.02; /* of the held quantity (logarithm, or L/L_Edd) before settling */
-enum { SCAN_POINTS = 128, EDGE_BISECTIONS = 5, NARROWINGS = 12, GUESS_INTERVALS = 32 };
+static const double close_enough = 0.1; /* of the held quantity (logarithm, or L/L_Edd) before settling */
+enum { SCAN_POINTS = 128, EDGE_BISECTIONS = 5, NARROWINGS = 12, GUESS_INTERVALS = 32, QUICK_STEPS = 12 };
 
 /* Approximate wind at one critical temperature. */
 struct candidate {
@@ -174,12 +174,22 @@ static size_t scan(struct lxg_wind_solver *solver, double ln_rc, const struct wi
   return count;
 }
 
+static bool brackets(const struct candidate *a, const struct candidate *b) {
+  return a->valid && b->valid && (a->excess <= 0.0) != (b->excess <= 0.0);
+}
+
+/* Secant, kept off the ends of its bracket. */
+static double between(const struct candidate *a, const struct candidate *b) {
+  const double share = a->excess / (a->excess - b->excess);
+  return a->ln_tc + fmin(fmax(share, 0.1), 0.9) * (b->ln_tc - a->ln_tc);
+}
+
 /* Narrows a sign change of the excess, then solves; the held row is reached by continuation. */
 static enum lxg_status solve_between(struct lxg_wind_solver *solver, double ln_rc, struct candidate a,
                                      struct candidate b, const struct wind_row *row) {
   struct candidate best = fabs(a.excess) < fabs(b.excess) ? a : b;
   for (int i = 0; i < NARROWINGS && fabs(best.excess) > close_enough; i++) {
-    const struct candidate middle = probe(solver, ln_rc, 0.5 * (a.ln_tc + b.ln_tc), best.ln_mdot, row);
+    const struct candidate middle = probe(solver, ln_rc, between(&a, &b), best.ln_mdot, row);
     if (!middle.valid) {
       break;
     }
@@ -196,10 +206,6 @@ static enum lxg_status solve_between(struct lxg_wind_solver *solver, double ln_r
     status = lxg_wind_walk(solver, pair);
   }
   return status;
-}
-
-static bool brackets(const struct candidate *a, const struct candidate *b) {
-  return a->valid && b->valid && (a->excess <= 0.0) != (b->excess <= 0.0);
 }
 
 enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc) {
@@ -227,8 +233,36 @@ enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc) 
   return status;
 }
 
-enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row,
-                              bool thick) {
+/* The short way: from the usual temperature towards smaller excess until it changes sign. Says nothing when it fails. */
+static enum lxg_status quick(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
+  const double step = scan_t_step * LXG_LN10;
+  struct candidate at = probe(solver, ln_rc, usual_t * LXG_LN10, NAN, row);
+  if (!at.valid) {
+    return LXG_NO_SOLUTION;
+  }
+  struct candidate next = probe(solver, ln_rc, at.ln_tc + step, at.ln_mdot, row);
+  double sense = 1.0;
+  if (!next.valid || (!brackets(&at, &next) && fabs(next.excess) > fabs(at.excess))) {
+    sense = -1.0;
+    next = probe(solver, ln_rc, at.ln_tc - step, at.ln_mdot, row);
+  }
+  for (int i = 0; i < QUICK_STEPS && next.valid; i++) {
+    if (brackets(&at, &next)) {
+      return solve_between(solver, ln_rc, at, next, row);
+    }
+    if (fabs(next.excess) > fabs(at.excess)) {
+      break;
+    }
+    at = next;
+    next = probe(solver, ln_rc, at.ln_tc + sense * step, at.ln_mdot, row);
+  }
+  return LXG_NO_SOLUTION;
+}
+
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
+  if (quick(solver, ln_rc, row) == LXG_OK) {
+    return LXG_OK;
+  }
   struct candidate candidate[SCAN_POINTS];
   const size_t count = scan(solver, ln_rc, row, candidate);
   bool tried[SCAN_POINTS] = {false};
@@ -237,7 +271,7 @@ enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, cons
     size_t best = SCAN_POINTS;
     for (size_t i = 0; i + 1 < count; i++) {
       if (!tried[i] && brackets(&candidate[i], &candidate[i + 1]) &&
-          (best == SCAN_POINTS || (candidate[i].ln_mdot < candidate[best].ln_mdot) != thick)) {
+          (best == SCAN_POINTS || candidate[i].ln_mdot < candidate[best].ln_mdot)) {
         best = i;
       }
     }

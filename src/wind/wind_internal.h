@@ -154,10 +154,9 @@ enum lxg_status lxg_wind_walk(struct lxg_wind_solver *solver, const struct wind_
 /* Row of a held quantity. */
 struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold);
 
-/* A first wind at launch radius exp(ln_rc) with one held row, by the scan of wind_cold.c; it is kept. `thick` prefers the
- * largest mass-loss rate when there are several, else the smallest is preferred. LXG_NO_SOLUTION if the scan sees none. */
-enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row,
-                              bool thick);
+/* A first wind at launch radius exp(ln_rc) with one held row, by the scan of wind_cold.c; it is kept. Of several the one nearest
+ * to the iron bump is preferred, then the one with the smallest rate. LXG_NO_SOLUTION if the scan sees none. */
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row);
 
 /* Unknowns of a model: ln v, ln T, and lambda where it varies. */
 static inline size_t wind_unknowns(const struct wind_constants *constants) {

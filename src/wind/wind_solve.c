@@ -16,10 +16,11 @@ static const double walk_smallest =
 static const double walk_residual = 1e-4; /* relative residual that is enough on the way */
 enum { NEWTON_LIMIT = 30, MESH_LIMIT = 14, WALK_LIMIT = 400 };
 static const double damping_floor = 1e-3;
+static const double aim_share = 0.1; /* of the residual tolerance, what a new mesh aims at */
 
 struct lxg_wind_options lxg_wind_options_default(void) {
   const struct lxg_wind_options options = {
-      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-9, .residual_tolerance = 2e-7};
+      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-9, .residual_tolerance = 8e-7};
   return options;
 }
 
@@ -91,6 +92,7 @@ enum lxg_status lxg_wind_newton(struct lxg_wind_solver *solver, const struct win
   }
   const struct lxg_bvp_options options = {.newton_tolerance = solver->options.newton_tolerance,
                                           .residual_tolerance = residual,
+                                          .residual_aim = aim_share * residual,
                                           .newton_limit = NEWTON_LIMIT,
                                           .mesh_limit = MESH_LIMIT,
                                           .damping_floor = damping_floor};
@@ -225,7 +227,7 @@ static bool scannable(int kind) {
 /* Any wind with one held row at one critical radius, kept. */
 static enum lxg_status first_at(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
   if (scannable(row->kind)) {
-    return lxg_wind_cold(solver, ln_rc, row, false);
+    return lxg_wind_cold(solver, ln_rc, row);
   }
   enum lxg_status status = lxg_wind_cold_any(solver, ln_rc);
   if (status == LXG_OK) {

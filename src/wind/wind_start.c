@@ -18,6 +18,8 @@
 static const double start_offset = 1e-3;     /* first step off the critical point, in ln r */
 static const double start_reach = 14.0;      /* farthest march outward, in ln r */
 static const double start_first_step = 1e-2; /* in ln r */
+static const double start_coarse = 1e-3;     /* of ln Mdot, before the ends of the marches are compared */
+static const double start_agreement = 0.15;  /* of the ends, in ln r */
 static const double start_rate_low = -34.0;  /* ln of the lowest rate tried, in units of L_Edd r_c/(G M) */
 static const double start_rate_high = 9.0;   /* ln of the highest */
 static const double start_rate_step = 0.7;   /* of the scan */
@@ -29,6 +31,7 @@ enum march_end { MARCH_ON, MARCH_PLUNGED, MARCH_TRANSPARENT, MARCH_STALLED, MARC
 struct march {
   const struct wind_constants *constants;
   double ln_mdot, lambda, ln_end;
+  double ended;             /* ln r where the last march ended */
   struct wind_track *track; /* NULL: not recorded */
 };
 
@@ -166,6 +169,7 @@ static enum march_end march_from(struct march *march, struct lxg_ivp *ivp, doubl
   const enum lxg_status status =
       lxg_ivp_march(ivp, slope, march, direction > 0 ? watch_outward : watch_inward, march, &ln_r,
                     march->ln_end, start_first_step, START_STEPS, y, &stopped);
+  march->ended = ln_r;
   return status == LXG_OK ? (enum march_end)stopped : MARCH_FAILED;
 }
 
@@ -217,12 +221,18 @@ enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, str
                &low, &high)) {
     return LXG_NO_SOLUTION;
   }
+  double end_low = -INFINITY, end_high = INFINITY;
   for (int i = 0; i < START_BISECTIONS && high - low > accuracy; i++) {
     march.ln_mdot = 0.5 * (low + high);
     if (march_from(&march, ivp, ln_rc, ln_tc, 1) == MARCH_PLUNGED) {
       high = march.ln_mdot;
+      end_high = march.ended;
     } else {
       low = march.ln_mdot;
+      end_low = march.ended;
+    }
+    if (high - low < start_coarse && fabs(end_high - end_low) < start_agreement) {
+      break; /* both sides reach the photosphere: no more is needed from a guess */
     }
   }
   march.track = scratch;

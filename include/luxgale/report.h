@@ -1,0 +1,87 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * report.h - results as documents and tables: one tree that is written as YAML or JSON, and ECSV tables.
+ *
+ * Every key and column carries its unit in its name. A number that the physics does not give is null (empty in a table)
+ * and the reason stands beside it. Sections are added in the order in which a reader wants them; failures of memory are
+ * remembered by the document (lxg_document_status) or returned by the tables.
+ *
+ * Call order: lxg_report_create -> sections -> lxg_report_warnings -> lxg_report_warn ... -> write with document.h.
+ */
+#ifndef LUXGALE_REPORT_H
+#define LUXGALE_REPORT_H
+
+#include "luxgale/composition.h"
+#include "luxgale/document.h"
+#include "luxgale/ejecta.h"
+#include "luxgale/family.h"
+#include "luxgale/history.h"
+#include "luxgale/opacity.h"
+#include "luxgale/star.h"
+#include "luxgale/status.h"
+#include "luxgale/table.h"
+#include "luxgale/wind.h"
+
+#include <stddef.h>
+
+/* Critical optical depth below which diffusion is a doubtful description of the light (warning `thin-wind`). */
+#define LXG_REPORT_THIN_DEPTH 10.0
+
+/* Version of the program, e.g. "0.1.0". */
+const char *lxg_report_version(void);
+
+/* A report that opens with `program: {name, version, command}`. */
+enum lxg_status lxg_report_create(const char *command, struct lxg_document **report, struct lxg_error *error);
+
+/* `star:` mass, radius, Eddington luminosity, escape speed, tiring rate at L_Edd, ignition mass for a base pressure [dyn
+ * cm^-2]. */
+void lxg_report_star(struct lxg_node *root, const struct lxg_star *star,
+                     const struct lxg_composition *composition, double ignition_pressure);
+
+/* `wind:` verdict and numbers; `l_edd` [erg s^-1]. Returns the section, to which a caller may add. */
+struct lxg_node *lxg_report_wind(struct lxg_node *root, const struct lxg_wind *wind, double l_edd);
+
+/* `family:` what is held, how many winds, where it ends and why, and the range of each number. */
+void lxg_report_family(struct lxg_node *root, const struct lxg_family *family);
+
+/* `family:` when there is not even one wind: verdict none and the reason that the error holds. */
+void lxg_report_no_family(struct lxg_node *root, const struct lxg_wind_hold *hold,
+                          const struct lxg_error *error);
+
+/* `super_eddington:` time above L_Edd. */
+void lxg_report_super_eddington(struct lxg_node *root, const struct lxg_history_excess *excess);
+
+/* `ejecta:`, `energy:`, `epochs:`. */
+void lxg_report_ejecta(struct lxg_node *root, const struct lxg_ejecta *ejecta);
+
+/* Warnings about the ejecta and the history: thin-wind, not-steady, several-branches, luminosity-gap, super-eddington-open. */
+void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejecta *ejecta,
+                                const struct lxg_history *history, const struct lxg_history_excess *excess);
+
+/* `warnings: []`, to be added last. */
+struct lxg_node *lxg_report_warnings(struct lxg_node *root);
+
+/* One warning {code, message}; returns it so that numbers can be added. */
+struct lxg_node *lxg_report_warn(struct lxg_node *warnings, const char *code, const char *message);
+
+/* Warnings about one wind: thin-wind, table-share. Nothing for a wind that was not solved. */
+void lxg_report_wind_warnings(struct lxg_node *warnings, const struct lxg_wind *wind);
+
+/* A held quantity in a report: name with unit ("base_temperature_k") and value there. */
+void lxg_report_held(struct lxg_node *parent, enum lxg_held quantity, double cgs);
+const char *lxg_report_held_name(enum lxg_held quantity);
+
+/* Structure of a wind: one row a radius, with the share of each opacity source. */
+enum lxg_status lxg_report_structure_table(const struct lxg_wind_row *rows, size_t count,
+                                           const struct lxg_opacity *opacity, struct lxg_table **table,
+                                           struct lxg_error *error);
+
+/* All members of a family, thin end first. */
+enum lxg_status lxg_report_family_table(const struct lxg_family *family, struct lxg_table **table,
+                                        struct lxg_error *error);
+
+/* One row an epoch; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
+enum lxg_status lxg_report_epoch_table(const struct lxg_ejecta *ejecta, double l_edd,
+                                       struct lxg_table **table, struct lxg_error *error);
+
+#endif

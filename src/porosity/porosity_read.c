@@ -1,0 +1,50 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * porosity_read.c - the section `porosity` of a case.
+ */
+#include "luxgale/keys.h"
+#include "luxgale/porosity.h"
+
+/* A number that the law needs, or that it has no use for. */
+static enum lxg_status read_number(struct lxg_node *section, const char *key, bool used, bool needed,
+                                   double *value, struct lxg_error *error) {
+  struct lxg_node *node = lxg_node_find(section, key);
+  if (node != NULL && !used) {
+    return lxg_node_error(node, error, "porosity-unused", "the chosen law of porosity has no use for it");
+  }
+  if (lxg_node_is_none(node) && !needed) {
+    return LXG_OK;
+  }
+  const enum lxg_status status = lxg_node_require(section, key, &node, error);
+  return status != LXG_OK ? status : lxg_node_as_number(node, value, error);
+}
+
+enum lxg_status lxg_porosity_read(struct lxg_node *section, struct lxg_porosity *porosity,
+                                  struct lxg_error *error) {
+  static const char *const laws[] = {"none", "reduction", "length"}; /* in the order of the enum */
+  *porosity = (struct lxg_porosity){.law = LXG_POROSITY_NONE};
+  size_t law = 0;
+  enum lxg_status status = lxg_keys_check(section, "porosity", error);
+  if (status == LXG_OK) {
+    status = lxg_node_get_word(section, "law", laws, sizeof laws / sizeof laws[0], &law, error);
+  }
+  porosity->law = (enum lxg_porosity_law)law;
+  const bool reduction = porosity->law == LXG_POROSITY_REDUCTION,
+             length = porosity->law == LXG_POROSITY_LENGTH;
+  if (status == LXG_OK) {
+    status = read_number(section, "factor", reduction, reduction, &porosity->factor, error);
+  }
+  if (status == LXG_OK) {
+    status = read_number(section, "scale", length, length, &porosity->scale, error);
+  }
+  if (status == LXG_OK) {
+    status = read_number(section, "power", length, false, &porosity->alpha, error);
+  }
+  if (status != LXG_OK) {
+    return status;
+  }
+  if (!lxg_node_is_none(lxg_node_find(section, "power"))) {
+    porosity->law = LXG_POROSITY_POWER;
+  }
+  return lxg_porosity_check(porosity, error) == LXG_OK ? LXG_OK : lxg_keys_locate(section, error);
+}

@@ -1,0 +1,100 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * case_echo.c - the section `case` of a report: what was really computed, defaults and derived values filled in (see run.h).
+ */
+#include "luxgale/constants.h"
+#include "luxgale/report.h"
+#include "luxgale/run.h"
+
+static void echo_opacity(const struct lxg_case *input, struct lxg_node *section) {
+  struct lxg_node *opacity = lxg_node_add_mapping(section, "opacity");
+  lxg_node_add_text(opacity, "formula", lxg_opacity_formula_name(input->opacity_choice.formula));
+  lxg_node_add_integer(opacity, "tables", (long long)input->opacity_choice.tables);
+  if (input->opacity_choice.tables > 0) {
+    lxg_node_add_text(opacity, "outside", lxg_opacity_outside_name(input->opacity_choice.outside));
+  }
+  struct lxg_node *omit = lxg_node_add_sequence(opacity, "omit");
+  for (int source = 0; source < LXG_OPACITY_SOURCES; source++) {
+    if (input->opacity_choice.omit & LXG_OPACITY_BIT(source)) {
+      lxg_node_add_text(omit, NULL, lxg_opacity_source_name((enum lxg_opacity_source)source));
+    }
+  }
+}
+
+static void echo_porosity(const struct lxg_case *input, struct lxg_node *section) {
+  struct lxg_node *porosity = lxg_node_add_mapping(section, "porosity");
+  const enum lxg_porosity_law law = input->porosity.law;
+  lxg_node_add_text(porosity, "law",
+                    lxg_porosity_law_name(law == LXG_POROSITY_POWER ? LXG_POROSITY_LENGTH : law));
+  if (law == LXG_POROSITY_REDUCTION) {
+    lxg_node_add_number(porosity, "factor", input->porosity.factor);
+  }
+  if (law == LXG_POROSITY_LENGTH || law == LXG_POROSITY_POWER) {
+    lxg_node_add_number(porosity, "scale", input->porosity.scale);
+  }
+  if (law == LXG_POROSITY_POWER) {
+    lxg_node_add_number(porosity, "power", input->porosity.alpha);
+  }
+}
+
+static void echo_history(const struct lxg_case *input, struct lxg_node *section) {
+  const struct lxg_history *history = input->history;
+  if (history == NULL) {
+    return;
+  }
+  struct lxg_node *luminosity = lxg_node_add_mapping(section, "luminosity");
+  lxg_node_add_text(luminosity, "kind", history->kind == LXG_HISTORY_BASE ? "base" : "photosphere");
+  lxg_node_add_text(luminosity, "source", history->formula != NULL ? "formula" : "table");
+  lxg_node_add_integer(luminosity, "rows", (long long)history->count);
+  lxg_node_add_number(luminosity, "first_d", history->time[0] / LXG_DAY);
+  lxg_node_add_number(luminosity, "last_d", history->time[history->count - 1] / LXG_DAY);
+}
+
+static void echo_settings(const struct lxg_case *input, struct lxg_node *section) {
+  struct lxg_node *settings = lxg_node_add_mapping(section, "settings");
+  for (size_t i = 0; i < lxg_settings_count(); i++) {
+    const double value = lxg_settings_value(&input->settings, i);
+    if (lxg_settings_row(i)->type == LXG_SETTING_COUNT) {
+      lxg_node_add_integer(settings, lxg_settings_row(i)->name, (long long)value);
+    } else {
+      lxg_node_add_number(settings, lxg_settings_row(i)->name, value);
+    }
+  }
+}
+
+static void echo_files(const struct lxg_case *input, struct lxg_node *section) {
+  struct lxg_node *files = lxg_node_add_sequence(section, "files");
+  struct lxg_node *own = lxg_node_add_mapping(files, NULL);
+  lxg_node_add_text(own, "key", "case");
+  lxg_node_add_text(own, "name", lxg_document_name(input->document));
+  lxg_node_add_text(own, "sha256", lxg_document_checksum(input->document));
+  for (size_t i = 0; i < input->files.count; i++) {
+    struct lxg_node *file = lxg_node_add_mapping(files, NULL);
+    lxg_node_add_text(file, "key", input->files.file[i].key);
+    lxg_node_add_text(file, "name", input->files.file[i].name);
+    lxg_node_add_text(file, "sha256", input->files.file[i].checksum);
+  }
+}
+
+void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
+  struct lxg_node *section = lxg_node_add_mapping(root, "case");
+  lxg_node_add_text(section, "title", input->title);
+  struct lxg_node *star = lxg_node_add_mapping(section, "star");
+  lxg_node_add_number(star, "mass_msun", input->star.gm / LXG_SOLAR_GM);
+  lxg_node_add_number(star, "radius_cm", input->star.radius);
+  lxg_node_add_text(star, "radius_from", input->dwarf ? "white-dwarf" : "case");
+  struct lxg_node *composition = lxg_node_add_mapping(section, "composition");
+  lxg_node_add_number(composition, "hydrogen", input->composition.hydrogen);
+  lxg_node_add_number(composition, "helium", input->composition.helium);
+  lxg_node_add_number(composition, "cno", input->composition.cno);
+  lxg_node_add_number(composition, "metals", input->composition.metals);
+  echo_opacity(input, section);
+  echo_porosity(input, section);
+  struct lxg_node *hold = lxg_node_add_mapping(section, "hold");
+  for (size_t i = 0; i < input->holds; i++) {
+    lxg_report_held(hold, input->hold[i].quantity, input->hold[i].value);
+  }
+  echo_history(input, section);
+  echo_settings(input, section);
+  echo_files(input, section);
+}

@@ -1,0 +1,24 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * run_internal.h - steps that several commands share.
+ */
+#ifndef LUXGALE_RUN_INTERNAL_H
+#define LUXGALE_RUN_INTERNAL_H
+
+#include "luxgale/run.h"
+
+/* Opens a report with `program`, `case` and `star`. */
+enum lxg_status lxg_run_begin(const struct lxg_case *input, const char *command, struct lxg_results *results,
+                              struct lxg_error *error);
+
+/* Notes that the physics gave no answer, for the reason that the error holds (NULL: unknown), which is cleared. */
+void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
+
+/* LXG_INPUT "hold-count" unless the case holds exactly `count` quantities. */
+enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
+                                      struct lxg_error *error);
+
+/* The model behind every wind of the case. */
+struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
+
+#endif
