@@ -23,32 +23,32 @@
 
 /* One envelope. */
 struct lxg_hydrostatic {
-  double envelope_mass;          /* between R_0 and R_ph [g] */
-  double luminosity;             /* at the photosphere [erg s^-1] */
-  double nuclear_luminosity;     /* int eps dm [erg s^-1]: the same but for the mesh error and a luminous core */
-  double radius;                 /* R_ph [cm] */
-  double temperature;            /* at R_ph [K] */
-  double photosphere_density;    /* [g cm^-3] */
-  double photosphere_opacity;    /* effective [cm^2 g^-1] */
-  double base_temperature;       /* at R_0 [K] */
-  double base_density;           /* at R_0 [g cm^-3] */
-  double gamma_max;              /* largest kappa L/(4 pi G M c) in the envelope */
-  double beta_min;               /* smallest gas pressure over total pressure */
-  double residual;               /* largest relative residual of (H1)-(H3) off the mesh */
-  size_t mesh_points;            /* mesh intervals */
+  double envelope_mass;       /* between R_0 and R_ph [g] */
+  double luminosity;          /* at the photosphere [erg s^-1] */
+  double nuclear_luminosity;  /* int eps dm [erg s^-1]: the same but for the mesh error and a luminous core */
+  double radius;              /* R_ph [cm] */
+  double temperature;         /* at R_ph [K] */
+  double photosphere_density; /* [g cm^-3] */
+  double photosphere_opacity; /* effective [cm^2 g^-1] */
+  double base_temperature;    /* at R_0 [K] */
+  double base_density;        /* at R_0 [g cm^-3] */
+  double gamma_max;           /* largest kappa L/(4 pi G M c) in the envelope */
+  double beta_min;            /* smallest gas pressure over total pressure */
+  double residual;            /* largest relative residual of (H1)-(H3) off the mesh */
+  size_t mesh_points;         /* mesh intervals */
 };
 
 /* How a traced sequence ends. */
 enum lxg_hydrostatic_end {
   LXG_HYDROSTATIC_FOLD,    /* hot end: smallest envelope mass, turn-off; cool end: largest mass at rest */
   LXG_HYDROSTATIC_REACHED, /* the stated limit */
-  LXG_HYDROSTATIC_LOST     /* no further envelope was found: at the cool end radiation pressure lifts the photosphere */
+  LXG_HYDROSTATIC_LOST /* no further envelope was found: at the cool end radiation pressure lifts the photosphere */
 };
 
 /* A traced sequence, from the largest envelope to the turn-off. */
 struct lxg_hydrostatic_family {
   size_t count;
-  struct lxg_hydrostatic *envelope;         /* [count], envelope mass falling */
+  struct lxg_hydrostatic *envelope; /* [count], envelope mass falling */
   enum lxg_hydrostatic_end cool_end, hot_end;
   int newton_steps; /* spent in all */
 };

@@ -114,16 +114,17 @@ struct lxg_wind {
   struct lxg_wind_site photosphere;
   double
       escape_radius; /* where the flow passes the local escape speed [cm]; NaN if it does not within 1000 R_ph */
-  double luminosity_infinity;   /* what reaches infinity as light [erg s^-1] */
-  double lifting_rate;          /* Mdot G M/R_0 [erg s^-1] */
-  double kinetic_rate;          /* Mdot v_inf^2/2 [erg s^-1] */
-  double nuclear_luminosity;    /* heat of burning between R_0 and r_c, int eps dm [erg s^-1]; 0 without burning */
-  double flow_time;             /* from r_c to R_ph [s] */
-  double diffusion_time;        /* radiation energy between r_c and R_ph over L_ph [s] */
-  double tiring_number;         /* Mdot G M/R_0 over L(R_0) and the heat of burning */
-  double wind_performance;      /* Mdot v_inf c/L_ph */
-  double gamma_max;             /* largest kappa L/(4 pi G M c) along the wind */
-  double gamma_max_radius;      /* where [cm] */
+  double luminosity_infinity; /* what reaches infinity as light [erg s^-1] */
+  double lifting_rate;        /* Mdot G M/R_0 [erg s^-1] */
+  double kinetic_rate;        /* Mdot v_inf^2/2 [erg s^-1] */
+  double
+      nuclear_luminosity;  /* heat of burning between R_0 and r_c, int eps dm [erg s^-1]; 0 without burning */
+  double flow_time;        /* from r_c to R_ph [s] */
+  double diffusion_time;   /* radiation energy between r_c and R_ph over L_ph [s] */
+  double tiring_number;    /* Mdot G M/R_0 over L(R_0) and the heat of burning */
+  double wind_performance; /* Mdot v_inf c/L_ph */
+  double gamma_max;        /* largest kappa L/(4 pi G M c) along the wind */
+  double gamma_max_radius; /* where [cm] */
   double gamma_max_temperature; /* gas temperature there [K] */
   double mach_min, mach_max;    /* v/c_T between R_0 and 1000 R_ph */
   double beta_min, beta_max;    /* gas pressure over total pressure between R_0 and R_ph */

@@ -12,7 +12,14 @@
 #include <stdbool.h>
 
 /* Unknowns, and the one argument more of the local equations. */
-enum { STATIC_LNRHO, STATIC_LNT, STATIC_LUM, STATIC_UNKNOWNS, STATIC_LNR = STATIC_UNKNOWNS, STATIC_ARGUMENTS };
+enum {
+  STATIC_LNRHO,
+  STATIC_LNT,
+  STATIC_LUM,
+  STATIC_UNKNOWNS,
+  STATIC_LNR = STATIC_UNKNOWNS,
+  STATIC_ARGUMENTS
+};
 
 /* Parameters of the boundary-value problem. */
 enum { STATIC_P_LNRPH, STATIC_P_LNMENV, STATIC_P_COUNT };
@@ -73,8 +80,8 @@ void lxg_hydrostatic_constants_init(struct static_constants *constants, const st
 void lxg_hydrostatic_problem_init(struct static_problem *problem);
 
 /* LXG_DOMAIN outside the physical or tabulated domain. */
-enum lxg_status lxg_hydrostatic_local(const struct static_constants *constants, double ln_r,
-                                      const double y[], struct static_local *local);
+enum lxg_status lxg_hydrostatic_local(const struct static_constants *constants, double ln_r, const double y[],
+                                      struct static_local *local);
 
 /* Solves for the row from the kept envelope (or from `now` when `fresh`); on LXG_OK the result is kept. */
 enum lxg_status lxg_hydrostatic_newton(struct lxg_hydrostatic_solver *solver, const struct static_row *row,

@@ -29,15 +29,14 @@ void lxg_hydrostatic_constants_init(struct static_constants *constants, const st
 static enum lxg_status local_opacity(const struct static_constants *constants, double ln_r, const double y[],
                                      struct static_local *l) {
   struct lxg_opacity_value gas;
-  enum lxg_status status =
-      lxg_opacity_at(constants->model.opacity, y[STATIC_LNRHO], y[STATIC_LNT], &gas);
+  enum lxg_status status = lxg_opacity_at(constants->model.opacity, y[STATIC_LNRHO], y[STATIC_LNT], &gas);
   if (status != LXG_OK) {
     return status;
   }
   const struct lxg_porosity_gas scale = {.gm = constants->gm, .ct2_per_kelvin = constants->c_t2_per_k};
   struct lxg_porosity_value value;
-  status = lxg_porosity_at(&constants->model.porosity, y[STATIC_LNRHO], y[STATIC_LNT], ln_r, &gas, &scale,
-                           &value);
+  status =
+      lxg_porosity_at(&constants->model.porosity, y[STATIC_LNRHO], y[STATIC_LNT], ln_r, &gas, &scale, &value);
   if (status != LXG_OK) {
     return status;
   }

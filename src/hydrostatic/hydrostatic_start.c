@@ -12,11 +12,11 @@
 
 #include <math.h>
 
-static const double start_radii[] = {3.0, 2.0, 5.0, 1.5, 10.0}; /* R_ph/R_0 tried */
+static const double start_radii[] = {3.0, 2.0, 5.0, 1.5, 10.0};   /* R_ph/R_0 tried */
 static const double start_brightest = 1.6, start_faintest = 0.02; /* L/L_Edd tried */
 static const double start_factor = 0.95;                          /* of the luminosity, in the scan */
-static const double start_dark = -3.0;      /* L/L_Edd at which a march ends: far too much burning */
-static const double start_accuracy = 1e-5;  /* of ln L */
+static const double start_dark = -3.0;       /* L/L_Edd at which a march ends: far too much burning */
+static const double start_accuracy = 1e-5;   /* of ln L */
 static const double start_first_step = 1e-5; /* in ln r */
 enum { START_STEPS = STATIC_TRACK_POINTS - 2, START_BISECTIONS = 50, GUESS_INTERVALS = 60 };
 
@@ -68,8 +68,8 @@ static double photosphere_density(const struct static_constants *constants, doub
     if (lxg_hydrostatic_local(constants, ln_r, y, &l) != LXG_OK) {
       return NAN;
     }
-    const double excess = middle + ln_t + log(constants->c_t2_per_k * l.kappa) + 2.0 * ln_r -
-                          log(2.0 / 3.0 * constants->gm);
+    const double excess =
+        middle + ln_t + log(constants->c_t2_per_k * l.kappa) + 2.0 * ln_r - log(2.0 / 3.0 * constants->gm);
     if (l.gamma >= 1.0 || excess > log(1.0 - l.gamma)) {
       high = middle;
     } else {

@@ -66,8 +66,8 @@ static double linear_error(const struct member *a, const struct member *b, const
 }
 
 /* One accepted step from the last member along `direction`, which turns to the new chord. */
-static enum lxg_status accepted(struct lxg_hydrostatic_solver *solver, struct trail *trail, double direction[],
-                                double *step) {
+static enum lxg_status accepted(struct lxg_hydrostatic_solver *solver, struct trail *trail,
+                                double direction[], double *step) {
   const struct member *last = &trail->member[trail->count - 1];
   struct member *next = &trail->member[trail->count];
   for (;; *step *= step_shrink) {
@@ -88,7 +88,7 @@ static enum lxg_status accepted(struct lxg_hydrostatic_solver *solver, struct tr
       continue;
     }
     status = member_of(solver, last, next);
-    const double error = status != LXG_OK     ? INFINITY
+    const double error = status != LXG_OK   ? INFINITY
                          : trail->count < 2 ? 0.0
                                             : linear_error(last - 1, last, next);
     if (error <= solver->options.tolerance) {
@@ -184,8 +184,8 @@ static enum lxg_status join(struct lxg_hydrostatic_family *family, const struct 
     return LXG_MEMORY;
   }
   for (size_t i = 0; i < count; i++) {
-    family->envelope[i] = i < up->count ? up->member[up->count - 1 - i].envelope
-                                        : down->member[i - up->count + 1].envelope;
+    family->envelope[i] =
+        i < up->count ? up->member[up->count - 1 - i].envelope : down->member[i - up->count + 1].envelope;
   }
   family->count = count;
   family->cool_end = up->end;
@@ -201,8 +201,8 @@ enum lxg_status lxg_hydrostatic_trace(struct lxg_hydrostatic_solver *solver,
   const size_t capacity = solver->options.count_most + 2;
   struct trail up = {.member = lxg_alloc(capacity, sizeof *up.member), .capacity = capacity - 1};
   struct trail down = {.member = lxg_alloc(capacity, sizeof *down.member), .capacity = capacity - 1};
-  struct lxg_bvp *first = lxg_bvp_create(STATIC_UNKNOWNS, STATIC_P_COUNT, solver->options.stages,
-                                         solver->options.capacity);
+  struct lxg_bvp *first =
+      lxg_bvp_create(STATIC_UNKNOWNS, STATIC_P_COUNT, solver->options.stages, solver->options.capacity);
   enum lxg_status status =
       up.member == NULL || down.member == NULL || first == NULL ? LXG_MEMORY : lxg_hydrostatic_start(solver);
   if (status == LXG_OK) {

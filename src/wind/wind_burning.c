@@ -20,13 +20,13 @@
 #include <string.h>
 
 static const double start_temperature = 1.0e8; /* base temperature of the first wind without burning [K] */
-static const double start_power = 8.0;   /* heat of the shell against base temperature, for the search */
-static const double start_match = 0.05;  /* of ln(heat/L_0): near enough to begin */
-static const double start_stride = 0.15; /* longest step of ln(base temperature) in the search */
-static const double start_residual = 1e-4;        /* relative residual on the way */
-static const double start_smallest = 1.0 / 256.0; /* smallest step of s */
+static const double start_power = 8.0;     /* heat of the shell against base temperature, for the search */
+static const double start_match = 0.05;    /* of ln(heat/L_0): near enough to begin */
+static const double start_stride = 0.15;   /* longest step of ln(base temperature) in the search */
+static const double start_residual = 1e-4; /* relative residual on the way */
+static const double start_smallest = 1.0 / 256.0;            /* smallest step of s */
 static const double start_critical[] = {5.6, 5.5, 5.7, 5.4}; /* log10 of critical temperatures tried [K] */
-static const double start_radii[] = {1.0, 1.4, 0.7, 1.8}; /* log10(r_c/R_0) tried */
+static const double start_radii[] = {1.0, 1.4, 0.7, 1.8};    /* log10(r_c/R_0) tried */
 enum { START_SEARCH = 24 };
 
 enum lxg_status lxg_wind_burning_rate(const struct wind_constants *constants, const struct wind_place *at,
@@ -127,8 +127,9 @@ static enum lxg_status condition(const void *context, size_t site, const double 
                                  double f[], double fy[], double fp[]) {
   const struct wind_problem *problem = context;
   const size_t m = problem->bvp.parameters, count = problem->bvp.conditions[site];
-  double local[LXG_BVP_MAX_PARAMETERS], plain_y[2 * LXG_BVP_MAX_CONDITIONS] = {0.0},
-                                        plain_p[LXG_BVP_MAX_PARAMETERS * LXG_BVP_MAX_CONDITIONS] = {0.0};
+  double local[LXG_BVP_MAX_PARAMETERS],
+      plain_y[2 * LXG_BVP_MAX_CONDITIONS] = {0.0},
+                  plain_p[LXG_BVP_MAX_PARAMETERS * LXG_BVP_MAX_CONDITIONS] = {0.0};
   with_lambda(p, m, y[2], local);
   const enum lxg_status status = problem->plain.condition(context, site, y, local, f, plain_y, plain_p);
   if (status != LXG_OK) {

@@ -71,7 +71,7 @@ struct wind_problem {
   struct wind_row row[2];
   struct lxg_bvp_problem bvp;
   struct lxg_bvp_problem plain; /* burning: the two equations and conditions without it */
-  double burning_share;         /* of the heat of burning that counts: 1 but on the way to a first burning wind */
+  double burning_share; /* of the heat of burning that counts: 1 but on the way to a first burning wind */
 };
 
 /* Sets the two held rows and the sizes that follow from them. LXG_NO_SOLUTION when a row lives in the inner piece and that
