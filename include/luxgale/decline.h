@@ -32,7 +32,7 @@ enum lxg_decline_phase { LXG_DECLINE_WIND, LXG_DECLINE_STATIC };
 /* Which light gives a magnitude: the brightest of these. */
 enum lxg_decline_light {
   LXG_DECLINE_BLACKBODY, /* photosphere */
-  LXG_DECLINE_FREEFREE,  /* wind outside it */
+  LXG_DECLINE_FREEFREE,  /* wind outside it, as far as its own absorption lets it through */
   LXG_DECLINE_SHELL      /* gas thrown out earlier */
 };
 
@@ -58,9 +58,10 @@ struct lxg_decline_state {
   double burnt_mass;                       /* so far [g] */
   double v_magnitude;                      /* absolute, unreddened [mag] */
   enum lxg_decline_light v_light;          /* which light that is */
-  double v_blackbody, v_freefree, v_shell; /* absolute magnitude of each light alone [mag] */
-  double uv_magnitude;                     /* the same for 1455 Angstrom [mag] */
-  double xray_luminosity;                  /* of the black photosphere, 0.2 to 1 keV [erg s^-1] */
+  double v_blackbody, v_freefree, v_shell; /* absolute magnitude of each light alone [mag]; infinite: none */
+  double v_thin;       /* free-free light without its own absorption, Mdot^2/(v^2 R) [mag]; infinite: none */
+  double uv_magnitude; /* the same for 1455 Angstrom [mag] */
+  double xray_luminosity; /* of the black photosphere, 0.2 to 1 keV [erg s^-1] */
 };
 
 /* Where the eruption starts. */
@@ -79,7 +80,7 @@ struct lxg_decline_options {
   bool wind_only;         /* stop at the end of the wind */
   double thin_depth;      /* optical depth of the critical point at which the wind ends */
   double tolerance;       /* linear interpolation error between neighbouring states, in logarithms */
-  double gas_temperature; /* of the electrons that give the free-free light [K]; 0: the photosphere's */
+  double gas_temperature; /* of the electrons outside a hotter photosphere [K]; 0: always the photosphere's */
   double rise;            /* time between outburst and start, for the slopes [s], >= 0 */
 };
 struct lxg_decline_options lxg_decline_options_default(void);
@@ -110,12 +111,19 @@ struct lxg_decline_join {
   double envelope_mass, luminosity, temperature;
 };
 
-/* Mean slope dlog F/dlog t of the V light, t since outburst, between two depths below maximum. */
+/* Mean slope dlog F/dlog t of a light curve, t since outburst, between two depths below its maximum. */
 struct lxg_decline_slope {
   double from_mag, to_mag; /* below maximum [mag] */
   double slope;            /* NaN if the stretch is not there */
 };
 enum { LXG_DECLINE_SLOPES = 3 };
+
+/* One light curve in V: its maximum, its decline, its slopes. NaN where it does not go so far. */
+struct lxg_decline_curve {
+  double peak, peak_time; /* [mag], [s] */
+  double t2, t3;          /* first fall by 2 and 3 mag after it [s] */
+  struct lxg_decline_slope slope[LXG_DECLINE_SLOPES];
+};
 
 struct lxg_decline {
   size_t count;
@@ -137,9 +145,8 @@ struct lxg_decline {
   double stored;                                    /* light + lifting + kinetic - nuclear [erg] */
   double light_share, lifting_share, kinetic_share; /* of light + lifting + kinetic */
   double mean_speed;                                /* mass-weighted v_inf [cm s^-1]; NaN without ejecta */
-  double v_peak, v_peak_time;                       /* brightest V of the states [mag], [s] */
-  double t2, t3; /* first fall by 2 and 3 mag in V after that [s]; NaN if not reached */
-  struct lxg_decline_slope slope[LXG_DECLINE_SLOPES];
+  struct lxg_decline_curve v;                       /* of v_magnitude */
+  struct lxg_decline_curve freefree;                /* of v_thin, as long as there is a wind */
   int newton_steps;
 };
 

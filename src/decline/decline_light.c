@@ -3,7 +3,8 @@
  * decline_light.c - magnitudes of the states, decline times, slopes.
  *
  * Three lights in a band, of which the brightest counts: the black photosphere; the free-free light of the wind outside
- * it, F3 of freefree.h with the photospheric speed (after Hachisu & Kato 2006, ApJS 167, 59); and that of the gas thrown out
+ * it, F3 of freefree.h with the photospheric speed (after Hachisu & Kato 2006, ApJS 167, 59), never above what the wind's own
+ * absorption lets through (the radio law, limit of F4); and that of the gas thrown out
  * so far, a uniform shell (F5) whose speeds have the mean and the spread of the terminal speeds, as long as it is outside the
  * photosphere and thin. Hydrogen and helium fully ionised, heavier ions of charge 2.
  */
@@ -29,7 +30,9 @@ struct speeds {
 struct lights {
   const struct lxg_composition *composition;
   const struct lxg_decline_options *options;
-  struct lxg_freefree_gas gas;
+  struct lxg_freefree_gas gas; /* of the state */
+  struct lxg_freefree_gas
+      thin; /* of the light without absorption: one temperature, so that Mdot^2/(v^2 R) is its law */
   struct speeds speeds;
 };
 
@@ -63,19 +66,22 @@ static double shell_light(const struct lights *l, const struct lxg_decline_state
   return lxg_freefree_shell_thin(&l->gas, &shell, age, frequency);
 }
 
-/* The three lights of one band as magnitudes; those that are not there are infinitely faint. */
+/* The three lights of one band as magnitudes, and the free-free light without absorption; those that are not there are
+ * infinitely faint. */
 static void band_lights(const struct lights *l, const struct lxg_decline_state *state, enum lxg_band band,
-                        double magnitude[3]) {
+                        double magnitude[3], double *unabsorbed) {
   const double frequency = lxg_band_frequency(band);
   magnitude[LXG_DECLINE_BLACKBODY] =
       lxg_photometry_blackbody(band, state->photosphere_temperature, state->photosphere_radius);
-  magnitude[LXG_DECLINE_FREEFREE] = INFINITY;
+  magnitude[LXG_DECLINE_FREEFREE] = *unabsorbed = INFINITY;
   if (state->phase == LXG_DECLINE_WIND) {
     const struct lxg_freefree_wind wind = {.mass_loss_rate = state->mass_loss_rate,
                                            .speed = state->photosphere_speed,
                                            .radius = state->photosphere_radius};
-    magnitude[LXG_DECLINE_FREEFREE] =
-        lxg_photometry_magnitude(band, lxg_freefree_wind_thin(&l->gas, &wind, frequency));
+    const double thin = lxg_freefree_wind_thin(&l->gas, &wind, frequency);
+    const double thick = lxg_freefree_wind_thick(&l->gas, &wind, frequency);
+    magnitude[LXG_DECLINE_FREEFREE] = lxg_photometry_magnitude(band, fmin(thin, thick));
+    *unabsorbed = lxg_photometry_magnitude(band, lxg_freefree_wind_thin(&l->thin, &wind, frequency));
   }
   const double shell = shell_light(l, state, state->time + l->options->rise, frequency);
   magnitude[LXG_DECLINE_SHELL] = shell > 0.0 ? lxg_photometry_magnitude(band, shell) : INFINITY;
@@ -90,39 +96,60 @@ static enum lxg_decline_light brightest(const double magnitude[3]) {
 }
 
 static enum lxg_status gas_of(struct lights *l, double temperature, struct lxg_error *error) {
-  const double t = l->options->gas_temperature > 0.0 ? l->options->gas_temperature : temperature;
-  return lxg_freefree_gas_init(l->composition, t, helium_charge, metal_charge, &l->gas, error);
+  const double given = l->options->gas_temperature;
+  const double t = given > 0.0 ? fmin(given, temperature) : temperature;
+  const enum lxg_status status =
+      lxg_freefree_gas_init(l->composition, t, helium_charge, metal_charge, &l->gas, error);
+  return status != LXG_OK ? status
+                          : lxg_freefree_gas_init(l->composition, given > 0.0 ? given : temperature,
+                                                  helium_charge, metal_charge, &l->thin, error);
 }
 
-/* First time after state `from` at which V has fallen to a magnitude, linear between states; NaN if never. */
-static double fall_time(const struct lxg_decline *d, size_t from, double magnitude) {
+/* Which magnitude of a state a curve follows. */
+typedef double magnitude_of(const struct lxg_decline_state *state);
+
+static double brightest_v(const struct lxg_decline_state *state) {
+  return state->v_magnitude;
+}
+
+static double thin_v(const struct lxg_decline_state *state) {
+  return state->v_thin;
+}
+
+/* First time after state `from` at which the curve has fallen to a magnitude, linear between states; NaN if never. */
+static double fall_time(const struct lxg_decline *d, magnitude_of *curve, size_t from, double magnitude) {
   for (size_t i = from + 1; i < d->count; i++) {
-    const struct lxg_decline_state *a = &d->state[i - 1], *b = &d->state[i];
-    if (b->v_magnitude >= magnitude) {
-      const double u = (magnitude - a->v_magnitude) / (b->v_magnitude - a->v_magnitude);
-      return a->time + u * (b->time - a->time);
+    const double a = curve(&d->state[i - 1]), b = curve(&d->state[i]);
+    if (isinf(b)) {
+      return NAN;
+    }
+    if (b >= magnitude) {
+      const double u = (magnitude - a) / (b - a);
+      return d->state[i - 1].time + u * (d->state[i].time - d->state[i - 1].time);
     }
   }
   return NAN;
 }
 
-static void decline_times(struct lxg_decline *d, double rise) {
+static struct lxg_decline_curve curve_of(const struct lxg_decline *d, magnitude_of *curve, double rise) {
   size_t peak = 0;
   for (size_t i = 1; i < d->count; i++) {
-    peak = d->state[i].v_magnitude < d->state[peak].v_magnitude ? i : peak;
+    peak = curve(&d->state[i]) < curve(&d->state[peak]) ? i : peak;
   }
-  d->v_peak = d->state[peak].v_magnitude;
-  d->v_peak_time = d->state[peak].time;
-  d->t2 = fall_time(d, peak, d->v_peak + 2.0) - d->v_peak_time;
-  d->t3 = fall_time(d, peak, d->v_peak + 3.0) - d->v_peak_time;
+  struct lxg_decline_curve out = {.peak = curve(&d->state[peak]), .peak_time = d->state[peak].time};
+  out.t2 = fall_time(d, curve, peak, out.peak + 2.0) - out.peak_time;
+  out.t3 = fall_time(d, curve, peak, out.peak + 3.0) - out.peak_time;
   static const double bound[LXG_DECLINE_SLOPES][2] = {{0.0, 2.0}, {2.0, 6.0}, {6.0, 10.0}};
   for (size_t i = 0; i < LXG_DECLINE_SLOPES; i++) {
-    const double a = i == 0 ? d->v_peak_time : fall_time(d, peak, d->v_peak + bound[i][0]);
-    const double b = fall_time(d, peak, d->v_peak + bound[i][1]);
-    const double dlogt = log10((b + rise) / (a + rise));
-    d->slope[i] = (struct lxg_decline_slope){
-        bound[i][0], bound[i][1], a + rise > 0.0 ? -0.4 * (bound[i][1] - bound[i][0]) / dlogt : NAN};
+    const double a = (i == 0 ? out.peak_time : fall_time(d, curve, peak, out.peak + bound[i][0])) + rise;
+    const double b = fall_time(d, curve, peak, out.peak + bound[i][1]) + rise;
+    const double flux = -0.4 * (bound[i][1] - bound[i][0]);
+    out.slope[i] = (struct lxg_decline_slope){bound[i][0], bound[i][1], a > 0.0 ? flux / log10(b / a) : NAN};
   }
+  if (isinf(out.peak)) {
+    out.peak = out.peak_time = NAN;
+  }
+  return out;
 }
 
 static void marks(struct lxg_decline *d) {
@@ -157,10 +184,10 @@ enum lxg_status lxg_decline_photometry(const struct lxg_composition *composition
     if (status != LXG_OK) {
       return status;
     }
-    double magnitude[3];
-    band_lights(&lights, state, LXG_BAND_UV1455, magnitude);
+    double magnitude[3], thin;
+    band_lights(&lights, state, LXG_BAND_UV1455, magnitude, &thin);
     state->uv_magnitude = magnitude[brightest(magnitude)];
-    band_lights(&lights, state, LXG_BAND_V, magnitude);
+    band_lights(&lights, state, LXG_BAND_V, magnitude, &state->v_thin);
     state->v_blackbody = magnitude[LXG_DECLINE_BLACKBODY];
     state->v_freefree = magnitude[LXG_DECLINE_FREEFREE];
     state->v_shell = magnitude[LXG_DECLINE_SHELL];
@@ -168,7 +195,8 @@ enum lxg_status lxg_decline_photometry(const struct lxg_composition *composition
     state->v_magnitude = magnitude[state->v_light];
     state->xray_luminosity = state->luminosity * lxg_photometry_xray_share(state->photosphere_temperature);
   }
-  decline_times(decline, options->rise);
+  decline->v = curve_of(decline, brightest_v, options->rise);
+  decline->freefree = curve_of(decline, thin_v, options->rise);
   marks(decline);
   return LXG_OK;
 }

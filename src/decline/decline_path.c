@@ -66,9 +66,8 @@ void lxg_decline_path_at(const struct path_segment *segment, size_t i, double u,
 /* Adds a node unless it coincides with the one before; at rest the mass must fall. */
 static void add(struct path_segment *segment, const struct path_node *node) {
   const struct path_node *last = segment->count > 0 ? &segment->node[segment->count - 1] : NULL;
-  if (last == NULL ||
-      (node->arc - last->arc > nearest &&
-       (segment->phase == LXG_DECLINE_WIND || node->q[PATH_MASS] < last->q[PATH_MASS]))) {
+  if (last == NULL || (node->arc - last->arc > nearest &&
+                       (segment->phase == LXG_DECLINE_WIND || node->q[PATH_MASS] < last->q[PATH_MASS]))) {
     segment->node[segment->count++] = *node;
   }
 }
