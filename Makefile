@@ -5,7 +5,7 @@ VERSION   := 0.1.0
 BUILD     ?= build
 CC        ?= gcc
 OPT       ?= -O2
-PKGS      := gsl yaml-0.1 libcjson
+PKGS      := gsl yaml-0.1
 TEST_PKGS := check
 WARN      := -Wall -Wextra -Wshadow -Wconversion -Wstrict-prototypes -Wmissing-prototypes -Werror
 CFLAGS_   := -std=c11 -D_POSIX_C_SOURCE=200809L $(OPT) -g -fPIC -fvisibility=hidden -ffp-contract=off $(WARN) \
