@@ -128,7 +128,13 @@ static enum lxg_status refine_fold(struct lxg_hydrostatic_solver *solver, struct
     row.origin[i] = b->c[i] + t * row.direction[i];
   }
   const enum lxg_status status = lxg_hydrostatic_newton(solver, &row, false);
-  return status == LXG_OK ? member_of(solver, b, c) : status;
+  if (status == LXG_BUG || status == LXG_MEMORY) {
+    return status;
+  }
+  if (status != LXG_OK || member_of(solver, b, c) != LXG_OK) { /* the middle one is the best there is */
+    trail->count = n - 1;
+  }
+  return LXG_OK;
 }
 
 static bool beyond(const struct member *member, const struct lxg_hydrostatic_limit *limit) {
