@@ -158,4 +158,11 @@ enum lxg_status lxg_decline_compute(const struct lxg_wind_model *model,
                                     struct lxg_error *error);
 void lxg_decline_free(struct lxg_decline *decline);
 
+struct lxg_node;
+
+/* Reads the section `decline` of a case (NULL: defaults); without another start it is the ignition mass of the pressure [dyn
+ * cm^-2]. LXG_INPUT with the place: unknown keys, "value-range", "decline-start" for two starts. */
+enum lxg_status lxg_decline_read(struct lxg_node *section, double ignition_pressure,
+                                 struct lxg_decline_options *options, struct lxg_error *error);
+
 #endif
