@@ -26,7 +26,7 @@ static const double start_stride = 0.15;   /* longest step of ln(base temperatur
 static const double start_residual = 1e-4; /* relative residual on the way */
 static const double start_smallest = 1.0 / 256.0;            /* smallest step of s */
 static const double start_critical[] = {5.6, 5.5, 5.7, 5.4}; /* log10 of critical temperatures tried [K] */
-static const double start_radii[] = {1.0, 1.4, 0.7, 1.8};    /* log10(r_c/R_0) tried */
+static const double start_radii[] = {1.4, 1.0, 0.7, 1.8};    /* log10(r_c/R_0) tried */
 enum { START_SEARCH = 24 };
 
 enum lxg_status lxg_wind_burning_rate(const struct wind_constants *constants, const struct wind_place *at,
@@ -267,7 +267,7 @@ enum lxg_status lxg_wind_burning_first(struct lxg_wind_solver *solver, double ba
     return status;
   }
   const size_t radii = sizeof start_radii / sizeof start_radii[0];
-  for (size_t i = 0; i < 2 * radii; i++) { /* quick tries at every radius, then thorough ones */
+  for (size_t i = 0; i <= radii; i++) { /* quick tries at every radius, then a thorough one at the first */
     const double ln_rc = solver->problem.constants.ln_r0 + start_radii[i % radii] * LXG_LN10;
     status = matched(solver, plain, ln_rc, base, i >= radii);
     if (status == LXG_OK) {
