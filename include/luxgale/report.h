@@ -17,6 +17,7 @@
 #include "luxgale/family.h"
 #include "luxgale/history.h"
 #include "luxgale/opacity.h"
+#include "luxgale/opacity_table.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
 #include "luxgale/table.h"
@@ -83,5 +84,22 @@ enum lxg_status lxg_report_family_table(const struct lxg_family *family, struct 
 /* One row an epoch; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
 enum lxg_status lxg_report_epoch_table(const struct lxg_ejecta *ejecta, double l_edd,
                                        struct lxg_table **table, struct lxg_error *error);
+
+/* `opacity:` at one point (log10 T, log10 R): value, slopes and, for the formula, the share of each source. */
+void lxg_report_opacity_point(struct lxg_node *root, const struct lxg_opacity *opacity, double log_t,
+                              double log_r, const struct lxg_opacity_point *point);
+
+/* Opacities at many points, one row each. */
+enum lxg_status lxg_report_opacity_points_table(const double log_t[], const double log_r[],
+                                                const struct lxg_opacity_point point[], size_t count,
+                                                struct lxg_table **table, struct lxg_error *error);
+
+/* One item of `tables:` and its warnings: table-gap, table-spike, table-slope, table-difference. */
+void lxg_report_opacity_findings(struct lxg_node *tables, struct lxg_node *warnings,
+                                 const struct lxg_opacity_grid *grid,
+                                 const struct lxg_opacity_findings *findings);
+
+/* `import:` which tables a file held and where they were written. */
+void lxg_report_opacity_import(struct lxg_node *root, const struct lxg_opacity_set *set, const char *folder);
 
 #endif
