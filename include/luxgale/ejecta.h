@@ -25,6 +25,7 @@ struct lxg_ejecta_epoch {
   double time_scale;             /* L/|dL/dt| [s] */
   enum lxg_wind_reason reason;   /* LXG_WIND_SOLVED, or why there is no wind */
   size_t members;                /* how many members of the family have this luminosity */
+  bool porous;                   /* brighter than the limit of the first family: from the second */
   struct lxg_family_place place; /* the wind; NaN without one */
   double mass;                   /* ejected so far [g] */
   bool unsteady;                 /* flow or diffusion time exceeds the time scale of the luminosity */
@@ -52,6 +53,8 @@ struct lxg_ejecta {
 
 struct lxg_ejecta_options {
   enum lxg_branch branch;
+  const struct lxg_family *above; /* winds of epochs brighter than `limit`; NULL: one family for all */
+  double limit;                   /* [erg s^-1] */
   double tolerance; /* relative error of the integrals over one interval between epochs */
   int depth;        /* halvings of such an interval at most */
 };

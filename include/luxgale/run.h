@@ -12,6 +12,7 @@
 
 #include "luxgale/composition.h"
 #include "luxgale/document.h"
+#include "luxgale/driving.h"
 #include "luxgale/family.h"
 #include "luxgale/files.h"
 #include "luxgale/history.h"
@@ -41,6 +42,8 @@ struct lxg_case {
   struct lxg_wind_hold hold[2]; /* in the order of the case */
   size_t holds;
   struct lxg_history *history;
+  bool claimed;                   /* the case says what was ejected */
+  struct lxg_driving_claim claim; /* used if `claimed` */
   struct lxg_settings settings;
 };
 

@@ -97,6 +97,9 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
                                                 .gap_fraction = input->settings.gap_fraction};
     status = lxg_history_read(lxg_node_find(root, "luminosity"), &reading, &input->history, error);
   }
+  if (status == LXG_OK) {
+    status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
+  }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
 }
 

@@ -18,6 +18,11 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error);
 
+/* Traces the family of the case's one held quantity. Winds with a held launch radius need no inside: it is left out when there is none, or
+ * when the family with it ends below `brightest` (a luminosity at the photosphere [erg s^-1]; 0: whatever there is). */
+enum lxg_status lxg_run_trace(const struct lxg_case *input, struct lxg_wind_solver *solver, double brightest,
+                              struct lxg_family *family, struct lxg_error *error);
+
 /* The model behind every wind of the case. */
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
 

@@ -47,13 +47,17 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
   const struct lxg_wind_model model = lxg_run_model(input);
   struct lxg_ejecta_options ejecting = lxg_ejecta_options_default();
   ejecting.branch = options->branch;
+  double brightest = 0.0; /* at the photosphere [erg s^-1] */
+  for (size_t i = 0; i < input->history->count && input->history->kind == LXG_HISTORY_PHOTOSPHERE; i++) {
+    brightest = fmax(brightest, input->history->luminosity[i]);
+  }
   enum lxg_status status =
       lxg_history_excess(input->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
   if (status == LXG_OK) {
     status = lxg_wind_solver_create(&model, NULL, &outburst->solver, error);
   }
   if (status == LXG_OK) {
-    status = lxg_family_trace(outburst->solver, &input->hold[0], NULL, &outburst->family, error);
+    status = lxg_run_trace(input, outburst->solver, brightest, &outburst->family, error);
   }
   if (status == LXG_OK) {
     status = lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius,
