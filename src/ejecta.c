@@ -174,8 +174,8 @@ static void epoch_fill(const struct engine *engine, const struct moment *m, stru
                                      .place = m->place,
                                      .mass = engine->total[RATE_MASS]};
   if (m->members == 0) {
-    epoch->reason = lxg_family_missing(m->porous ? engine->options->above : engine->family, engine->key,
-                                       m->luminosity);
+    epoch->reason =
+        lxg_family_missing(m->porous ? engine->options->above : engine->family, engine->key, m->luminosity);
     epoch->place.arc = NAN;
     for (size_t i = 0; i < LXG_FAMILY_COUNT; i++) {
       epoch->place.value[i] = NAN;

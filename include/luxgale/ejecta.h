@@ -55,8 +55,8 @@ struct lxg_ejecta_options {
   enum lxg_branch branch;
   const struct lxg_family *above; /* winds of epochs brighter than `limit`; NULL: one family for all */
   double limit;                   /* [erg s^-1] */
-  double tolerance; /* relative error of the integrals over one interval between epochs */
-  int depth;        /* halvings of such an interval at most */
+  double tolerance;               /* relative error of the integrals over one interval between epochs */
+  int depth;                      /* halvings of such an interval at most */
 };
 struct lxg_ejecta_options lxg_ejecta_options_default(void);
 

@@ -27,15 +27,14 @@ void lxg_report_tiring(struct lxg_node *section, const struct lxg_driving_estima
 }
 
 void lxg_report_porous_wind(struct lxg_node *section, const struct lxg_wind *wind,
-                            const struct lxg_porosity *porosity, double l_edd, double gm) {
+                            const struct lxg_porosity *porosity, double l_edd) {
   const double rate = wind->value[LXG_HELD_MASS_LOSS_RATE], speed = wind->critical.speed;
   struct lxg_node *node = lxg_node_add_mapping(section, "porous");
   lxg_node_add_text(node, "law", lxg_porosity_law_name(porosity->law));
   lxg_node_add_number(node, "number_w",
                       lxg_driving_porous_number(rate, wind->photosphere.luminosity, l_edd, speed));
   double closed = NAN;
-  
-  const double gamma = kappa * wind->critical.luminosity / (4.0 * LXG_PI * gm * LXG_SPEED_OF_LIGHT);
+  const double gamma = wind->critical.luminosity / l_edd;
   if (wind->reason == LXG_WIND_SOLVED &&
       (porosity->law == LXG_POROSITY_LENGTH || porosity->law == LXG_POROSITY_POWER) &&
       lxg_porosity_mass_loss(porosity, gamma, wind->critical.luminosity, speed, &closed, NULL) != LXG_OK) {
@@ -107,27 +106,35 @@ void lxg_report_tiring_history(struct lxg_node *root, const struct lxg_ejecta *e
   lxg_node_add_number(section, "mass_bound_msun", supply / escape / LXG_SOLAR_MASS);
 }
 
-void lxg_report_handover(struct lxg_node *root, struct lxg_node *warnings,
-                         const struct lxg_report_handover *handover, double tolerance) {
+static double rate_jump(const struct lxg_report_handover *handover) {
+  return fabs(handover->porous_rate / handover->plain_rate - 1.0);
+}
+
+void lxg_report_handover(struct lxg_node *root, const struct lxg_report_handover *handover) {
   struct lxg_node *section = lxg_node_add_mapping(root, "porosity");
-  const double jump = fabs(handover->porous_rate / handover->plain_rate - 1.0);
-  lxg_node_add_number(section, "homogeneous_limit_erg_s", handover->limit);
-  lxg_node_add_number(section, "homogeneous_limit_ledd", handover->limit / handover->l_edd);
+  lxg_node_add_number(section, "homogeneous_limit_erg_s", handover->homogeneous);
+  lxg_node_add_number(section, "homogeneous_limit_ledd", handover->homogeneous / handover->l_edd);
+  lxg_node_add_number(section, "handover_luminosity_erg_s", handover->limit);
+  lxg_node_add_number(section, "handover_luminosity_ledd", handover->limit / handover->l_edd);
   lxg_node_add_number(section, "plain_rate_msun_yr", handover->plain_rate / REPORT_MSUN_YR);
   lxg_node_add_number(section, "porous_rate_msun_yr", handover->porous_rate / REPORT_MSUN_YR);
-  lxg_node_add_number(section, "rate_jump", jump);
+  lxg_node_add_number(section, "rate_jump", rate_jump(handover));
   lxg_node_add_integer(section, "epochs_plain", (long long)handover->plain);
   lxg_node_add_integer(section, "epochs_porous", (long long)handover->porous);
+}
+
+void lxg_report_handover_warnings(struct lxg_node *warnings, const struct lxg_report_handover *handover,
+                                  double tolerance) {
+  const double jump = rate_jump(handover);
   if (handover->porous == 0) {
     return;
   }
   if (!isfinite(jump)) {
     lxg_report_warn(warnings, "handover-gap",
                     "at the homogeneous limit only one side, plain or porous, has a wind");
-  } else if (jump > tolerance) {
-    struct lxg_node *warning =
-        lxg_report_warn(warnings, "handover-jump",
-                        "the mass-loss rate jumps where plain winds hand over to porous ones");
+  } else if (jump > tolerance * (1.0 + 1e-9)) {
+    struct lxg_node *warning = lxg_report_warn(
+        warnings, "handover-jump", "the mass-loss rate jumps where plain winds hand over to porous ones");
     lxg_node_add_number(warning, "rate_jump", jump);
     lxg_node_add_number(warning, "tolerance", tolerance);
   }
@@ -148,8 +155,7 @@ static void add_check(struct lxg_node *list, const struct lxg_driving_verdict *v
       [LXG_DRIVING_WIND_SPEED] = {"need_km_s", "supply_km_s", LXG_KM},
   };
   struct lxg_node *one = lxg_node_add_mapping(list, NULL);
-  lxg_node_add_text(one, "criterion",
-                    lxg_driving_criterion_name((enum lxg_driving_criterion)criterion));
+  lxg_node_add_text(one, "criterion", lxg_driving_criterion_name((enum lxg_driving_criterion)criterion));
   lxg_node_add_text(one, "outcome", lxg_driving_outcome_name(check->outcome));
   lxg_node_add_number(one, names[criterion].need, check->need / names[criterion].unit);
   lxg_node_add_number(one, names[criterion].supply, check->supply / names[criterion].unit);
@@ -190,6 +196,7 @@ enum lxg_status lxg_report_epoch_flow(struct lxg_table *table, const struct lxg_
   const double gm = model->star.gm, escape = gm / model->star.radius;
   const double l_edd = lxg_star_eddington_luminosity(&model->star, &model->composition);
   const double ct2 = LXG_BOLTZMANN / (lxg_composition_mu(&model->composition) * LXG_ATOMIC_MASS);
+  const bool always = model->porosity.law != LXG_POROSITY_NONE && model->porosity.when == LXG_POROSITY_ALWAYS;
   enum lxg_status status = LXG_OK;
   for (size_t c = 0; c < COLUMNS && status == LXG_OK; c++) {
     status = lxg_table_add_column(table, columns[c].name, columns[c].type, columns[c].unit,
@@ -201,12 +208,11 @@ enum lxg_status lxg_report_epoch_flow(struct lxg_table *table, const struct lxg_
     const double rate = v[LXG_FAMILY_MASS_LOSS_RATE], light = v[LXG_FAMILY_PHOTOSPHERE_LUMINOSITY];
     const double kinetic = 0.5 * v[LXG_FAMILY_TERMINAL_SPEED] * v[LXG_FAMILY_TERMINAL_SPEED];
     const double numbers[COLUMNS] = {
-        NAN,
-        lxg_driving_porous_number(rate, light, l_edd, sqrt(ct2 * v[LXG_FAMILY_CRITICAL_TEMPERATURE])),
+        NAN, lxg_driving_porous_number(rate, light, l_edd, sqrt(ct2 * v[LXG_FAMILY_CRITICAL_TEMPERATURE])),
         rate * escape / (v[LXG_FAMILY_LUMINOSITY_INFINITY] + rate * (escape + kinetic)),
         v[LXG_FAMILY_PHOTOSPHERE_OPACITY] * light / (4.0 * LXG_PI * gm * LXG_SPEED_OF_LIGHT),
         v[LXG_FAMILY_GAMMA_MAX]};
-    status = lxg_table_set_text(table, first, i, epoch->porous ? "porous" : "plain", error);
+    status = lxg_table_set_text(table, first, i, epoch->porous || always ? "porous" : "plain", error);
     for (size_t c = 1; c < COLUMNS && status == LXG_OK; c++) {
       status = lxg_table_set_number(table, first + c, i, numbers[c], error);
     }
