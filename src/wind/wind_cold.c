@@ -19,6 +19,8 @@ static const double usual_t = 5.6;           /* log10 of the critical temperatur
 static const double scan_accuracy = 1e-3;    /* of ln Mdot while scanning */
 static const double settle_accuracy = 1e-13; /* before the global solver takes over */
 static const double close_enough = 0.1; /* of the held quantity (logarithm, or L/L_Edd) before settling */
+static const double abrupt =
+    1.0; /* change of ln v over the first even interval that asks for more nodes there */
 enum { SCAN_POINTS = 128, EDGE_BISECTIONS = 5, NARROWINGS = 12, GUESS_INTERVALS = 32, QUICK_STEPS = 12 };
 
 /* Approximate wind at one critical temperature. */
@@ -103,6 +105,32 @@ static void guess(const void *context, double x, double y[], double k[]) {
   k[1] *= length;
 }
 
+/* Moves the nodes outside the critical point towards it, as the speed changes: cold gas reaches many times its sound speed
+ * within the first interval of an even mesh. Between even nodes (weight 1) and nodes at equal steps of ln v (weight 1). */
+static void crowd(const struct wind_track *track, double *node) {
+  const double from = track->ln_r[0], length = track->ln_r[track->count - 1] - from;
+  double total = 0.0, first = 0.0;
+  for (size_t i = 1; i < track->count; i++) {
+    total += fabs(track->y[i][0] - track->y[i - 1][0]);
+    first = (track->ln_r[i] - from) * GUESS_INTERVALS <= length ? total : first;
+  }
+  if (first < abrupt) {
+    return;
+  }
+  double before = 0.0, sum = 0.0; /* measure at the last track point, sum of speed changes */
+  size_t next = 1;
+  for (size_t i = 1; i < track->count && next < GUESS_INTERVALS; i++) {
+    const double x0 = (track->ln_r[i - 1] - from) / length, x1 = (track->ln_r[i] - from) / length;
+    sum += fabs(track->y[i][0] - track->y[i - 1][0]);
+    const double after = 0.5 * (x1 + sum / total);
+    while (next < GUESS_INTERVALS && (double)next / GUESS_INTERVALS <= after) {
+      const double share = ((double)next / GUESS_INTERVALS - before) / (after - before);
+      node[next++] = 1.0 + x0 + share * (x1 - x0);
+    }
+    before = after;
+  }
+}
+
 /* Exact wind at (r_c, T_c), kept. */
 static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double ln_mdot) {
   double lambda;
@@ -115,6 +143,7 @@ static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, doub
   for (size_t i = 0; i <= intervals; i++) {
     nodes[i] = (solver->outer_only ? 1.0 : 0.0) + (double)i / GUESS_INTERVALS;
   }
+  crowd(&solver->outer, &nodes[intervals - GUESS_INTERVALS]);
   const double p[WIND_P_COUNT] = {ln_rc, ln_mdot, lambda, map.ln_rph, 0.0};
   const enum lxg_status status = lxg_bvp_guess(solver->now, nodes, intervals, 2, guess, &map, p);
   if (status != LXG_OK) {
