@@ -133,7 +133,8 @@ struct lxg_wind_solver {
   struct lxg_ivp *ivp;
   struct wind_track outer, inner, scratch;
   bool have;        /* `kept` holds a wind */
-  bool outer_only;  /* new winds are solved outside the critical point only */
+  bool outer_only; /* new winds are solved outside the critical point only */
+  bool probed_below, probed_above; /* scans since the search began met winds below and above the held value */
   int newton_steps; /* since the search began */
   double residual;  /* of the kept wind */
 };
