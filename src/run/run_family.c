@@ -2,29 +2,15 @@
  *
  * run_family.c - the command `family`: all winds that share one held quantity (see run.h).
  */
-#include "luxgale/constants.h"
 #include "luxgale/report.h"
 #include "luxgale/run.h"
 #include "run/run_internal.h"
-
-/* Over a burning base envelopes beyond ignition would have burnt before. */
-static const double ignition_margin = 1.1;
-
-static struct lxg_family_options limits(const struct lxg_case *input) {
-  struct lxg_family_options limits = lxg_family_options_default();
-  if (input->burning.law != LXG_BURNING_NONE) {
-    const double ignition = lxg_star_envelope_mass(&input->star, input->settings.ignition_pressure);
-    limits.envelope_most = ignition_margin * ignition * LXG_GRAVITATION / input->star.gm;
-  }
-  return limits;
-}
 
 enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_run_options *options,
                                struct lxg_results *results, struct lxg_error *error) {
   struct lxg_wind_solver *solver = NULL;
   struct lxg_family family = {0};
   const struct lxg_wind_model model = lxg_run_model(input);
-  const struct lxg_family_options within = limits(input);
   enum lxg_status status = lxg_run_begin(input, "family", results, error);
   if (status == LXG_OK) {
     status = lxg_run_require_holds(input, "family", 1, error);
@@ -33,7 +19,7 @@ enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_ru
     status = lxg_wind_solver_create(&model, NULL, &solver, error);
   }
   if (status == LXG_OK) {
-    status = lxg_family_trace(solver, &input->hold[0], &within, &family, error);
+    status = lxg_run_trace(input, solver, 0.0, &family, error);
   }
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_OK) {

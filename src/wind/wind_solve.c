@@ -20,7 +20,7 @@ static const double aim_share = 0.1; /* of the residual tolerance, what a new me
 
 struct lxg_wind_options lxg_wind_options_default(void) {
   const struct lxg_wind_options options = {
-      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-9, .residual_tolerance = 8e-7};
+      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-8, .residual_tolerance = 8e-7};
   return options;
 }
 
@@ -158,6 +158,16 @@ struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const stru
     break;
   }
   return row;
+}
+
+bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count) {
+  bool radius = false, inner = false;
+  for (size_t i = 0; i < count; i++) {
+    radius = radius || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS;
+    inner = inner || hold[i].quantity == LXG_HELD_BASE_TEMPERATURE ||
+            hold[i].quantity == LXG_HELD_BASE_LUMINOSITY || hold[i].quantity == LXG_HELD_ENVELOPE_MASS;
+  }
+  return radius && !inner;
 }
 
 static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
@@ -322,6 +332,12 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
   const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS ? 0 : 1;
   if (row[radius].kind == LXG_HELD_LAUNCH_RADIUS) {
     status = first_at(solver, row[radius].target, &row[1 - radius]);
+    const bool shown_none = status == LXG_NO_SOLUTION && solver->probed_below != solver->probed_above;
+    if (status != LXG_OK && status != LXG_BUG && status != LXG_MEMORY && !shown_none && !solver->outer_only) {
+      status = first_wind(solver, &row[1 - radius]); /* at another radius, and from there */
+      status = status == LXG_OK ? lxg_wind_walk(solver, row) : status;
+    }
+
   } else {
     status = first_wind(solver, &row[scannable(row[0].kind) ? 0 : 1]);
     if (status == LXG_OK) {
