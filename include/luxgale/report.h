@@ -108,7 +108,7 @@ void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejec
 void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline);
 void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error);
 
-/* Warnings about it: start-clipped, thin-wind, decline-lost. */
+/* Warnings about it: start-clipped, no-wind, thin-wind, decline-lost. */
 void lxg_report_decline_warnings(struct lxg_node *warnings, const struct lxg_decline *decline);
 
 /* One row a state; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
