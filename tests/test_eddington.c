@@ -54,6 +54,13 @@ static struct lxg_porosity draw_law(struct draws *random, int i, double *low, do
   return law;
 }
 
+/* Enthalpy of radiation that the gas takes through the photosphere [erg/s]; the solver's account ends there. */
+static double carried(const struct lxg_wind *wind) {
+  const struct lxg_wind_site *at = &wind->photosphere;
+  return wind->value[LXG_HELD_MASS_LOSS_RATE] * 4.0 * LXG_RADIATION * pow(at->temperature, 4.0) /
+         (3.0 * at->density);
+}
+
 START_TEST(every_law) {
   struct lxg_error error = {0};
   struct lxg_opacity *opacity = NULL;
@@ -78,10 +85,7 @@ START_TEST(every_law) {
   ck_assert_double_lt(winds[0].residual, 1e-6);
   /* Energy (W2): what entered is light, motion and the enthalpy of radiation that the gas carries through the photosphere; gas
    * pressure and potential beyond 1000 R_ph are the rest. */
-  const struct lxg_wind_site *ph = &winds[0].photosphere;
-  const double carried = winds[0].value[LXG_HELD_MASS_LOSS_RATE] * 4.0 * LXG_RADIATION *
-                         pow(ph->temperature, 4.0) / (3.0 * ph->density);
-  const double out = winds[0].luminosity_infinity + winds[0].kinetic_rate + carried;
+  const double out = winds[0].luminosity_infinity + winds[0].kinetic_rate + carried(&winds[0]);
   assert_near(out / winds[0].value[LXG_HELD_ENERGY_RATE], 1.0, 2e-3);
   lxg_wind_solver_destroy(solver);
   lxg_opacity_destroy(opacity);
@@ -194,6 +198,8 @@ static const struct {
     {10.0, 0.1, 3.94397, 0.50560, {1.1441, 2.0606, 2.9742}, {0.4804, 0.4610, 0.4734}},
     {10.0, 0.5, 0.61024, 0.19488, {0.2371, 0.3304, 0.4389}, {0.1401, 0.1380, 0.1514}},
 };
+/* Rounding of the table and its own accuracy. */
+static const double accuracy = 2e-4;
 enum { PLACES = 3, NUMBERS = 2 * PLACES + 2 };
 
 static const double foot = 1e13; /* [cm] */
@@ -261,7 +267,7 @@ static void tired_wind(size_t row, double cold, const struct lxg_opacity *opacit
       }
       const double v = wind.value[LXG_HELD_TERMINAL_SPEED] / escape_speed;
       number[NUMBERS - 2] = v * v;
-      number[NUMBERS - 1] = wind.luminosity_infinity / l0;
+      number[NUMBERS - 1] = (wind.luminosity_infinity + carried(&wind)) / l0; /* all of it is light at last */
       lxg_free(rows);
       lxg_wind_solver_destroy(solver);
       return;
@@ -294,7 +300,7 @@ START_TEST(tiring) {
     const double limit = (8.0 * cold[k] - 6.0 * cool[k] + warm[k]) / 3.0;
     const double off = fabs(limit - expected);
     worst = fmax(worst, off);
-    ck_assert_msg(off < 1e-3, "Gamma %.0f m %.1f number %zu: %.5f, expected %.5f (%.5f, %.5f, %.5f)",
+    ck_assert_msg(off < accuracy, "Gamma %.0f m %.1f number %zu: %.5f, expected %.5f (%.5f, %.5f, %.5f)",
                   tired[row].gamma, tired[row].m, k, limit, expected, warm[k], cool[k], cold[k]);
   }
   printf("eddington: tiring at Gamma %.0f, m %.1f: largest deviation %.1e\n", tired[row].gamma, tired[row].m,
