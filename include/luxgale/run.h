@@ -42,6 +42,7 @@ struct lxg_case {
   struct lxg_wind_hold hold[2]; /* in the order of the case */
   size_t holds;
   struct lxg_history *history;
+  struct lxg_history *reduction;  /* factor of the law `reduction` against time; NULL: constant */
   bool claimed;                   /* the case says what was ejected */
   struct lxg_driving_claim claim; /* used if `claimed` */
   struct lxg_settings settings;

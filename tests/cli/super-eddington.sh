@@ -67,4 +67,34 @@ own "too many positrons" 's/positrons: 1.0/positrons: 3/' 'Mine.*\[isotope-'
 own "key unknown" 's/positron_mev/positron_kev/' 'positron_kev.*positron_mev.*\[key-unknown\]'
 own "name too long" 's/Mine/MyVeryOwnLongIsotope/' '\[isotope-name\]'
 own "neither number nor mapping" 's/13N: 0.01/14N: 0.01/' '14N.*\[isotope-unknown\]'
+
+# A reduction that follows the history; a table that does not vary is the constant factor.
+printf 'time [d],factor\n0,1.3\n200,1.3\n' > steady.csv
+cat > reduced.yaml <<'YAML'
+case: 1
+star: {mass: 1.0 Msun}
+composition: {hydrogen: 0.35, helium: 0.63, metals: 0.02}
+opacity: {formula: reference}
+porosity: {law: reduction, file: steady.csv}
+hold: {base_temperature: 1.0e8 K}
+luminosity: {kind: photosphere, file: light.csv}
+settings: {gap_fraction: 9}
+YAML
+printf 'time [d],luminosity [erg/s]\n0,1.3e38\n50,1.5e38\n100,1.4e38\n' > light.csv
+expect "factor from a table" 0 '*' 'families: 1' "$LUXGALE" outburst -q reduced.yaml
+"$LUXGALE" outburst -q -o - reduced.yaml | grep -A3 '^ejecta' | grep mass_msun | cut -c1-16 > table.txt
+"$LUXGALE" outburst -q --set porosity='{law: reduction, factor: 1.3}' -o - reduced.yaml | grep -A3 '^ejecta' | grep mass_msun | cut -c1-16 > constant.txt
+same "a steady table is the constant factor" table.txt constant.txt
+bad() {
+  printf "$2" > steady.csv
+  expect "$1" 2 "$3" "" "$LUXGALE" outburst reduced.yaml
+}
+bad "factor below 1" 'time,factor\n0,1.3\n200,0.9\n' 'steady.csv:3.*\[porosity-factor\]'
+bad "factors too short" 'time,factor\n0,1.3\n20,1.3\n' 'porosity.file.*\[porosity-span\]'
+bad "no factors" 'time,reduction\n0,1.3\n20,1.3\n' 'factor.*\[table-column\]'
+bad "factors backwards" 'time,factor\n9,1.3\n0,1.3\n' 'reduced.yaml:.*porosity.file.*line 3.*\[history-order\]'
+printf 'time,factor\n0,1.3\n200,1.3\n' > steady.csv
+expect "a table for another law" 2 'porosity.file.*\[porosity-unused\]' "" "$LUXGALE" outburst --set porosity='{law: length, scale: 1, file: steady.csv}' reduced.yaml
+expect "a table and a factor" 2 'porosity.factor.*\[porosity-unused\]' "" "$LUXGALE" outburst --set porosity.factor=2 reduced.yaml
+expect "factor of one wind" 2 'porosity-history' "" "$LUXGALE" wind --set hold.launch_radius='1e10 cm' reduced.yaml
 finish
