@@ -66,7 +66,14 @@ static double deviation(const struct lxg_family *exact, const struct lxg_family 
 enum lxg_status lxg_run_blend(const struct lxg_case *input, enum lxg_held key, struct lxg_run_winds *winds,
                               struct lxg_family *middle, struct lxg_error *error) {
   const struct lxg_history *factor = input->reduction;
+  const struct lxg_history *history = input->history;
   double low = INFINITY, high = -INFINITY, x[16];
+  if (factor->time[0] > history->time[0] ||
+      factor->time[factor->count - 1] < history->time[history->count - 1]) {
+    return lxg_error_set(error, LXG_INPUT, "porosity-span",
+                         "%s: error: porosity.file: its times must cover those of the luminosity history",
+                         lxg_document_name(input->document));
+  }
   for (size_t i = 0; i < factor->count; i++) {
     low = fmin(low, log(factor->luminosity[i]));
     high = fmax(high, log(factor->luminosity[i]));

@@ -19,6 +19,10 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error);
 
+/* The wind phase of the case's eruption as a history of photospheric luminosity (to be destroyed), and limits of the family of
+ * winds that just hold it. Errors of lxg_decline_compute; LXG_NO_SOLUTION "decline-no-wind". */
+enum lxg_status lxg_run_decline_history(const struct lxg_case *input, struct lxg_history **history,
+                                        struct lxg_family_options *limits, struct lxg_error *error);
 /* Traces the family of the case's one held quantity. Winds with a held launch radius need no inside: it is left out when there is none, or
  * when the family with it ends below `brightest` (a luminosity at the photosphere [erg s^-1]; 0: whatever there is). */
 enum lxg_status lxg_run_trace(const struct lxg_case *input, struct lxg_wind_solver *solver, double brightest,

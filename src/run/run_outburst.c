@@ -11,6 +11,7 @@
 
 /* What the stages fill, one after the other. */
 struct outburst {
+  struct lxg_history *own; /* computed from the eruption of the case, or NULL */
   struct lxg_run_winds winds;
   struct lxg_history_excess excess; /* above L_Edd */
   struct lxg_ejecta ejecta;
@@ -19,16 +20,18 @@ struct outburst {
 static void outburst_free(struct outburst *outburst) {
   lxg_ejecta_free(&outburst->ejecta);
   lxg_run_winds_free(&outburst->winds);
+  lxg_history_destroy(outburst->own);
 }
 
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
-  if (input->history == NULL) {
+  if (input->history == NULL && !input->history_from_decline) {
     return lxg_error_set(error, LXG_INPUT, "key-missing",
                          "%s: error: luminosity: `outburst` needs a luminosity history",
                          lxg_document_name(input->document));
   }
-  const enum lxg_held driven =
-      input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
+  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
+                                   ? LXG_HELD_BASE_LUMINOSITY
+                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
   const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
   if (status == LXG_OK && input->hold[0].quantity == driven) {
     return lxg_error_set(
@@ -120,12 +123,29 @@ static void judge(const struct lxg_ejecta *ejecta, struct lxg_results *results) 
   }
 }
 
-enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_run_options *options,
+/* The case with the history of its own eruption, where it asks for that: borrowed from `outburst`. */
+static enum lxg_status with_history(const struct lxg_case *given, struct lxg_case *input,
+                                    struct outburst *outburst, struct lxg_error *error) {
+  if (!given->history_from_decline) {
+    return LXG_OK;
+  }
+  const enum lxg_status status = lxg_run_decline_history(given, &outburst->own, &input->limits, error);
+  input->history = outburst->own;
+  return status;
+}
+
+enum lxg_status lxg_run_outburst(const struct lxg_case *given, const struct lxg_run_options *options,
                                  struct lxg_results *results, struct lxg_error *error) {
   struct outburst outburst = {0};
-  enum lxg_status status = lxg_run_begin(input, "outburst", results, error);
+  struct lxg_case completed = *given;
+
+  const struct lxg_case *input = &completed;
+  enum lxg_status status = lxg_run_begin(given, "outburst", results, error);
   if (status == LXG_OK) {
-    status = require(input, error);
+    status = require(given, error);
+  }
+  if (status == LXG_OK) {
+    status = with_history(given, &completed, &outburst, error);
   }
   if (status == LXG_OK) {
     status = compute(input, options, &outburst, error);
@@ -133,7 +153,10 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
     lxg_run_unanswered(results, error);
-    status = lxg_run_super_eddington(input, NULL, &outburst.excess, root, error);
+    status = LXG_OK;
+    if (input->history != NULL) {
+      status = lxg_run_super_eddington(input, NULL, &outburst.excess, root, error);
+    }
     if (status == LXG_OK) {
       lxg_report_no_family(root, &input->hold[0], &results->why);
       status = lxg_run_driving(input, NULL, root, error);

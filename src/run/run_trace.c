@@ -22,7 +22,7 @@ enum lxg_status lxg_run_trace(const struct lxg_case *input, struct lxg_wind_solv
                               struct lxg_family *family, struct lxg_error *error) {
   const struct lxg_wind_hold *hold = &input->hold[0];
   const struct lxg_wind_hold target = {LXG_HELD_PHOTOSPHERE_LUMINOSITY, brightest};
-  struct lxg_family_options options = lxg_family_options_default();
+  struct lxg_family_options options = input->limits;
   struct lxg_family outer = {0};
   enum lxg_status status = lxg_family_trace(solver, hold, &options, family, error);
   const bool enough = status == LXG_OK && brightest_of(family) >= brightest;
