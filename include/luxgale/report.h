@@ -90,6 +90,10 @@ void lxg_report_handover(struct lxg_node *root, const struct lxg_report_handover
 void lxg_report_handover_warnings(struct lxg_node *warnings, const struct lxg_report_handover *handover,
                                   double tolerance);
 
+/* `reduction:` winds between families of several factors, and the warning blend-error. */
+void lxg_report_blend(struct lxg_node *root, size_t families, double deviation);
+void lxg_report_blend_warning(struct lxg_node *warnings, double deviation);
+
 /* `driving:` can the light have thrown out what is claimed? */
 void lxg_report_driving(struct lxg_node *root, const struct lxg_driving_verdict *verdict);
 

@@ -144,6 +144,10 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
     status = read_luminosity(input, lxg_node_find(root, "luminosity"), error);
   }
   if (status == LXG_OK) {
+    status = lxg_history_read_factor(lxg_node_find(root, "porosity"), &input->files, input->history,
+                                     &input->reduction, error);
+  }
+  if (status == LXG_OK) {
     status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
   }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
@@ -174,6 +178,7 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
 void lxg_case_free(struct lxg_case *input) {
   if (input != NULL) {
     lxg_history_destroy(input->history);
+    lxg_history_destroy(input->reduction);
     lxg_opacity_destroy(input->opacity);
     lxg_files_free(&input->files);
     lxg_document_destroy(input->document);
