@@ -19,7 +19,7 @@ enum { LXG_TEXT_NUMBER_SIZE = 32 };
 
 enum lxg_text_parse {
   LXG_TEXT_NUMBER,       /* read */
-  LXG_TEXT_NOT_A_NUMBER, /* not of the form [+-]digits[.digits][e[+-]digits] */
+  LXG_TEXT_NOT_A_NUMBER, /* not of the form [+-]digits.digits[e[+-]digits], either side optional */
   LXG_TEXT_OVERFLOW,     /* of that form, but larger than any double */
   LXG_TEXT_NOT_FINITE /* nan, inf, +inf or -inf (any case, also .nan, infinity) where that is not allowed */
 };
