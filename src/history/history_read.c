@@ -192,8 +192,11 @@ enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_hist
   if (status != LXG_OK) {
     return status;
   }
-  if (kind == KIND_MAGNITUDE) {
-    return lxg_keys_refuse(node, error);
+  if (kind == KIND_MAGNITUDE) { /* the file's keys are those of observed.h, which reads it */
+    status = refuse_keys(section, of_formula, sizeof of_formula / sizeof of_formula[0], kinds[kind], error);
+    return status == LXG_OK ? refuse_keys(section, of_table + 1, sizeof of_table / sizeof of_table[0] - 1,
+                                          kinds[kind], error)
+                            : status;
   }
   if (kind == KIND_FORMULA) {
     status = refuse_keys(section, of_table, sizeof of_table / sizeof of_table[0], kinds[kind], error);
