@@ -7,10 +7,10 @@
  *   correction: L = L_0 10^(-0.4 (M + BC)) with a given, tabulated or black-body bolometric correction: a luminosity history;
  *   colours: temperature and luminosity of a black body through two or more bands at a time: each epoch is a wind by itself.
  *
- * A magnitude may belong to several members: of those the smallest (thin) or largest (thick) mass-loss rate is taken at every
- * epoch. A magnitude brighter than every member is "above-fold", one fainter than every member names the end of the
- * family that lies nearest. Between an epoch with and one without a wind the end is put where the magnitude, straight in time,
- * passes the last member on that side.
+ * A magnitude may belong to several members. Members are taken along one branch only: from the thin end of the family (or from the
+ * thick end) up to where its light first turns round, so no epoch jumps to a wind of another kind. A magnitude brighter than the
+ * branch is "above-fold", one fainter names the end of the family. Between an epoch with and one without a wind the end is
+ * put where the magnitude, straight in time, passes the end of the branch.
  *
  * Call order: lxg_observed_read -> (history | track | states) -> lxg_observed_destroy. Read-only once read.
  */

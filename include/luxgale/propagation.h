@@ -8,7 +8,8 @@
  *
  * Choices of the model change the family of winds. One family is traced at the stated values and two for each uncertain
  * parameter, at LXG_PROPAGATION_REACH sigma to either side; members of different families correspond when they lie at the same
- * share of the arc length from the thin to the thick end. Every number of a member is then the sum of its nominal value and of one
+ * share of the arc length between two landmarks: the ends of the family or, for magnitudes, its thin (thick) end and the wind at
+ * which the light first turns round. Every number of a member is then the sum of its nominal value and of one
  * parabola in each parameter (products of two parameters are left out). What this costs is measured, not assumed: one more family is
  * traced with all parameters one sigma off at once, and ejected mass and speed from it are compared with the interpolated ones.
  *
@@ -66,7 +67,8 @@ struct lxg_propagation_plan {
   X(LIFTING, "lifting_erg")                                                                                  \
   X(RADIATED, "radiated_erg")                                                                                \
   X(EXCESS_DURATION, "super_eddington_duration_d")                                                           \
-  X(EXCESS_PEAK, "super_eddington_peak_ratio")
+  X(EXCESS_PEAK, "super_eddington_peak_ratio")                                                               \
+  X(WINDLESS, "epochs_without_wind")
 enum lxg_propagation_output {
 #define LXG_PROPAGATION_ENUM(name, key) LXG_PROPAGATED_##name,
   LXG_PROPAGATION_OUTPUT_LIST(LXG_PROPAGATION_ENUM)

@@ -15,8 +15,10 @@
 #include "luxgale/family.h"
 #include "luxgale/files.h"
 #include "luxgale/history.h"
+#include "luxgale/observed.h"
 #include "luxgale/opacity.h"
 #include "luxgale/porosity.h"
+#include "luxgale/propagation.h"
 #include "luxgale/settings.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
@@ -40,7 +42,9 @@ struct lxg_case {
   struct lxg_porosity porosity;
   struct lxg_wind_hold hold[2]; /* in the order of the case */
   size_t holds;
-  struct lxg_history *history;
+  struct lxg_history *history;   /* luminosities; NULL where members come from magnitudes or colours */
+  struct lxg_observed *observed; /* a light curve; NULL unless the kind is `magnitude` */
+  struct lxg_propagation_plan errors;
   struct lxg_settings settings;
 };
 

@@ -45,119 +45,122 @@ static double arc_of(const struct lxg_family *family, const struct lxg_photometr
   return arc[0] + member->fraction * (arc[1] - arc[0]);
 }
 
-/* The member of the wanted branch. */
-static void choose(const struct lxg_family *family, const struct lxg_photometry_member members[],
-                   enum lxg_branch branch, struct lxg_observed_epoch *epoch) {
-  double best = 0.0;
-  for (size_t i = 0; i < epoch->members; i++) {
-    struct lxg_family_place place;
-    const double arc = arc_of(family, &members[i]);
-    lxg_family_at(family, arc, &place);
-    const double rate = place.value[LXG_FAMILY_MASS_LOSS_RATE];
-    if (i == 0 || (branch == LXG_BRANCH_THIN ? rate < best : rate > best)) {
-      best = rate;
+/* A family in the light of the observation, and the branch along which members are taken: winds `first` to `last`. */
+struct branch {
+  const struct lxg_family *family;
+  const struct lxg_photometry_search *search;
+  size_t first, last;
+  double bright, faint; /* magnitudes of its ends */
+  enum lxg_wind_reason faint_reason;
+};
+
+/* Magnitude of wind i. */
+static double magnitude_of(const struct lxg_photometry_search *search, size_t i) {
+  const bool inner = i + 1 < search->count;
+  return lxg_photometry_member_magnitude(search, inner ? i : i - 1, inner ? 0.0 : 1.0, NULL);
+}
+
+/* The branch from the thin or thick end up to where the light first turns round. */
+static struct branch find_branch(const struct lxg_photometry_search *search, const struct lxg_family *family,
+                                 enum lxg_branch which) {
+  const bool thin = which == LXG_BRANCH_THIN;
+  struct branch branch = {.family = family, .search = search, .last = family->count - 1};
+  size_t i = thin ? 0 : branch.last;
+  const double end = magnitude_of(search, i);
+  double before = end, direction = 0.0;
+  while (thin ? i < branch.last : i > branch.first) {
+    const size_t next = thin ? i + 1 : i - 1;
+    const double here = magnitude_of(search, next), step = here - before;
+    if (step * direction < 0.0) {
+      break;
+    }
+    direction = step != 0.0 ? step : direction;
+    before = here;
+    i = next;
+  }
+  branch.first = thin ? 0 : i;
+  branch.last = thin ? i : branch.last;
+  branch.bright = fmin(end, before);
+  branch.faint = fmax(end, before);
+  branch.faint_reason = end >= before ? (thin ? family->thin_end : family->thick_end) : LXG_WIND_ABOVE_FOLD;
+  return branch;
+}
+
+/* The member on the branch; false if all lie elsewhere. */
+static bool choose(const struct branch *branch, const struct lxg_photometry_member members[], size_t count,
+                   struct lxg_observed_epoch *epoch) {
+  for (size_t i = 0; i < count; i++) {
+    const double arc = arc_of(branch->family, &members[i]);
+    if (arc >= branch->family->arc[branch->first] && arc <= branch->family->arc[branch->last]) {
       epoch->arc = arc;
       epoch->served = members[i].served;
+      return true;
     }
   }
+  return false;
 }
 
-/* Magnitude of the thin or thick end. */
-static double end_magnitude(const struct lxg_photometry_search *search, bool thick) {
-  return thick ? lxg_photometry_member_magnitude(search, search->count - 2, 1.0, NULL)
-               : lxg_photometry_member_magnitude(search, 0, 0.0, NULL);
-}
-
-static enum lxg_status place_epoch(const struct lxg_photometry_search *search,
-                                   const struct lxg_family *family, enum lxg_branch branch,
-                                   struct lxg_observed_epoch *epoch, struct lxg_error *error) {
+static enum lxg_status place_epoch(const struct branch *branch, struct lxg_observed_epoch *epoch,
+                                   struct lxg_error *error) {
   struct lxg_photometry_member members[MEMBERS_MOST];
   struct lxg_error cause = {0};
   epoch->arc = NAN;
   const enum lxg_status status =
-      lxg_photometry_members(search, epoch->absolute, members, MEMBERS_MOST, &epoch->members, &cause);
-  if (status == LXG_OK) {
-    epoch->reason = LXG_WIND_SOLVED;
-    choose(family, members, branch, epoch);
-    return LXG_OK;
-  }
-  if (status != LXG_NO_SOLUTION) {
+      lxg_photometry_members(branch->search, epoch->absolute, members, MEMBERS_MOST, &epoch->members, &cause);
+  if (status != LXG_OK && status != LXG_NO_SOLUTION) {
     return lxg_error_set(error, status, cause.code, "%s", cause.line[0]);
   }
-  const bool faint = epoch->absolute > search->faintest;
-  const bool thick_is_faint = end_magnitude(search, true) > end_magnitude(search, false);
-  epoch->reason = !faint ? LXG_WIND_ABOVE_FOLD : thick_is_faint ? family->thick_end : family->thin_end;
+  epoch->reason = status == LXG_OK && choose(branch, members, epoch->members, epoch) ? LXG_WIND_SOLVED
+                  : epoch->absolute > branch->faint                                  ? branch->faint_reason
+                                                                                     : LXG_WIND_ABOVE_FOLD;
   return LXG_OK;
 }
 
-/* Where the wind begins or ends between an epoch with and one without: the last member on the way from the one's magnitude to
- * the other's, searched from its place in the direction in which the family brightens or fades as the light does. */
-static void add_end(const struct lxg_photometry_search *search, const struct lxg_family *family,
-                    const struct lxg_observed_epoch *with, const struct lxg_observed_epoch *without,
-                    double time_with, double time_without, struct rows *rows) {
-  const double sign = without->absolute > with->absolute ? 1.0 : -1.0;
-  double best = with->absolute, arc = with->arc;
-  for (int direction = -1; direction <= 1; direction += 2) {
-    size_t i = 0;
-    while (i + 1 < family->count && family->arc[i + 1] <= with->arc) {
-      i++;
-    }
-    double last = with->absolute;
-    for (size_t k = direction > 0 ? i + 1 : i; k<family->count; k = direction> 0 ? k + 1 : k - 1) {
-      const double here = lxg_photometry_member_magnitude(search, k + 1 < family->count ? k : k - 1,
-                                                          k + 1 < family->count ? 0.0 : 1.0, NULL);
-      if (sign * (here - last) < 0.0) {
-        break; /* it turns round */
-      }
-      last = here;
-      if (sign * (here - best) > 0.0) {
-        best = here;
-        arc = family->arc[k];
-      }
-      if (k == 0 && direction < 0) {
-        break;
-      }
-    }
-  }
-  const double share = fmin((best - with->absolute) / (without->absolute - with->absolute), 1.0);
+/* Where the wind begins or ends between an epoch with and one without: the end of the branch on that side, when the
+ * magnitude, straight in time, passes it. */
+static void add_end(const struct branch *branch, const struct lxg_observed_epoch *with,
+                    const struct lxg_observed_epoch *without, double time_with, double time_without,
+                    struct rows *rows) {
+  const bool fades = without->absolute > with->absolute;
+  const double end = fades ? branch->faint : branch->bright;
+  const bool at_first = (magnitude_of(branch->search, branch->first) == end);
+  const double share = fmin((end - with->absolute) / (without->absolute - with->absolute), 1.0);
   const double time = time_with + share * (time_without - time_with);
   if (time != time_with && time != time_without) {
     rows->time[rows->count] = time;
-    rows->arc[rows->count++] = arc;
+    rows->arc[rows->count++] = branch->family->arc[at_first ? branch->first : branch->last];
   }
 }
 
 /* Rows of the track: epochs, and the ends of the wind between them. */
-static void fill_rows(const struct lxg_observed *observed, const struct lxg_photometry_search *search,
-                      const struct lxg_family *family, const struct lxg_observed_course *course,
-                      struct rows *rows) {
+static void fill_rows(const struct lxg_observed *observed, const struct branch *branch,
+                      const struct lxg_observed_course *course, struct rows *rows) {
   for (size_t i = 0; i < course->count; i++) {
     const struct lxg_observed_epoch *now = &course->epoch[i];
     const struct lxg_observed_epoch *before = i > 0 ? &course->epoch[i - 1] : now;
     if (before->reason == LXG_WIND_SOLVED && now->reason != LXG_WIND_SOLVED) {
-      add_end(search, family, before, now, observed->time[i - 1], observed->time[i], rows);
+      add_end(branch, before, now, observed->time[i - 1], observed->time[i], rows);
     } else if (before->reason != LXG_WIND_SOLVED && now->reason == LXG_WIND_SOLVED) {
-      add_end(search, family, now, before, observed->time[i], observed->time[i - 1], rows);
+      add_end(branch, now, before, observed->time[i], observed->time[i - 1], rows);
     }
     rows->time[rows->count] = observed->time[i];
     rows->arc[rows->count++] = now->arc;
   }
 }
 
-static enum lxg_status follow(const struct lxg_observed *observed, const struct lxg_family *family,
-                              const struct lxg_photometry_search *search, enum lxg_branch branch,
+static enum lxg_status follow(const struct lxg_observed *observed, const struct branch *branch,
                               struct rows *rows, struct lxg_observed_course *course,
                               struct lxg_error *error) {
   const double shift = lxg_observed_nominal_shift(observed);
   for (size_t i = 0; i < observed->count; i++) {
     course->epoch[i].absolute = observed->magnitude[i] - shift;
-    const enum lxg_status status = place_epoch(search, family, branch, &course->epoch[i], error);
+    const enum lxg_status status = place_epoch(branch, &course->epoch[i], error);
     if (status != LXG_OK) {
       return status;
     }
   }
   course->count = observed->count;
-  fill_rows(observed, search, family, course, rows);
+  fill_rows(observed, branch, course, rows);
   return lxg_track_create(rows->time, rows->arc, rows->count, &course->track, error);
 }
 
@@ -178,7 +181,8 @@ enum lxg_status lxg_observed_follow(const struct lxg_observed *observed, const s
     status = lxg_observed_search(observed, family, &search, error);
   }
   if (status == LXG_OK) {
-    status = follow(observed, family, &search, branch, &rows, course, error);
+    const struct branch taken = find_branch(&search, family, branch);
+    status = follow(observed, &taken, &rows, course, error);
   }
   lxg_photometry_search_free(&search);
   lxg_free(rows.time);

@@ -113,14 +113,14 @@ struct moment {
 
 struct sums {
   double mass, kinetic, momentum, radiated, wind_time, excess_time;
-  double peak_rate, peak_speed, peak_excess;
+  double peak_rate, peak_speed, peak_excess, windless;
 };
 
 static struct moment look_up(const struct engine *engine, const struct members *members, double key,
                              double time) {
   struct moment m = {.time = time, .excess = NAN};
   const bool magnitude = engine->keying.kind == KEY_MAGNITUDE;
-  m.wind = members_find(members, key, engine->input->branch, &m.place);
+  m.wind = members_find(members, key, engine->input->branch, magnitude, &m.place);
   if (!magnitude) {
     m.excess = key - members->ln_l_edd;
   }
@@ -190,6 +190,7 @@ static void conclude(const struct engine *engine, const struct members *members,
   outputs[LXG_PROPAGATED_RADIATED] = sums->radiated * engine->input->l_edd;
   outputs[LXG_PROPAGATED_EXCESS_DURATION] = sums->excess_time / LXG_DAY;
   outputs[LXG_PROPAGATED_EXCESS_PEAK] = isfinite(sums->peak_excess) ? exp(sums->peak_excess) : NAN;
+  outputs[LXG_PROPAGATED_WINDLESS] = sums->windless;
 }
 
 void engine_integrate(const struct engine *engine, const struct members *members, const double noise[],
@@ -208,6 +209,7 @@ void engine_integrate(const struct engine *engine, const struct members *members
       add_panel(&before, &now, &sums);
     }
     if (sample->fraction == 0.0) {
+      sums.windless += now.wind ? 0.0 : 1.0;
       sums.peak_rate = fmax(sums.peak_rate, now.rate);
       sums.peak_speed = fmax(sums.peak_speed, now.speed);
       sums.peak_excess = fmax(sums.peak_excess, now.excess); /* fmax passes over NaN */

@@ -23,23 +23,16 @@ void members_place(struct members *members, size_t count, double *memory) {
   members->key = memory + (size_t)NUMBERS * count;
 }
 
-void members_fill(struct members *members, const struct lxg_family *family, const double share[],
-                  double l_edd, double own_l_edd, double escape) {
-  for (size_t i = 0; i < members->count; i++) {
-    struct lxg_family_place at;
-    lxg_family_at(family, share[i] * family->arc[family->count - 1], &at);
-    const double speed = at.value[LXG_FAMILY_TERMINAL_SPEED];
-    members->number[NUMBER_LN_RATE][i] = log(at.value[LXG_FAMILY_MASS_LOSS_RATE]);
-    members->number[NUMBER_SPEED_SQ][i] = speed * speed;
-    members->number[NUMBER_LN_LUMINOSITY][i] = log(at.value[LXG_FAMILY_PHOTOSPHERE_LUMINOSITY]);
-    members->number[NUMBER_LN_BASE][i] = log(fmax(at.value[LXG_FAMILY_BASE_LUMINOSITY], base_floor * l_edd));
-    members->number[NUMBER_LN_TEMPERATURE][i] = log(at.value[LXG_FAMILY_PHOTOSPHERE_TEMPERATURE]);
-    members->number[NUMBER_LN_RADIUS][i] = log(at.value[LXG_FAMILY_PHOTOSPHERE_RADIUS]);
-    members->number[NUMBER_LN_PHOTOSPHERE_SPEED][i] = log(at.value[LXG_FAMILY_PHOTOSPHERE_SPEED]);
-    members->number[NUMBER_INFINITY][i] = at.value[LXG_FAMILY_LUMINOSITY_INFINITY] / l_edd;
-  }
-  members->ln_l_edd = log(own_l_edd);
-  members->ln_escape = log(escape);
+static void set_numbers(struct members *members, size_t i, const struct lxg_family_place *at, double l_edd) {
+  const double speed = at->value[LXG_FAMILY_TERMINAL_SPEED];
+  members->number[NUMBER_LN_RATE][i] = log(at->value[LXG_FAMILY_MASS_LOSS_RATE]);
+  members->number[NUMBER_SPEED_SQ][i] = speed * speed;
+  members->number[NUMBER_LN_LUMINOSITY][i] = log(at->value[LXG_FAMILY_PHOTOSPHERE_LUMINOSITY]);
+  members->number[NUMBER_LN_BASE][i] = log(fmax(at->value[LXG_FAMILY_BASE_LUMINOSITY], base_floor * l_edd));
+  members->number[NUMBER_LN_TEMPERATURE][i] = log(at->value[LXG_FAMILY_PHOTOSPHERE_TEMPERATURE]);
+  members->number[NUMBER_LN_RADIUS][i] = log(at->value[LXG_FAMILY_PHOTOSPHERE_RADIUS]);
+  members->number[NUMBER_LN_PHOTOSPHERE_SPEED][i] = log(at->value[LXG_FAMILY_PHOTOSPHERE_SPEED]);
+  members->number[NUMBER_INFINITY][i] = at->value[LXG_FAMILY_LUMINOSITY_INFINITY] / l_edd;
 }
 
 /* Absolute magnitude of one member in the light that counts. */
@@ -64,14 +57,66 @@ static double magnitude(const struct members *members, const struct keying *keyi
   return fmin(black, lxg_photometry_magnitude(keying->band, free));
 }
 
+/* Key of one member. */
+static double key_of(const struct members *members, const struct keying *keying, size_t i) {
+  return keying->kind == KEY_BASE          ? members->number[NUMBER_LN_BASE][i]
+         : keying->kind == KEY_PHOTOSPHERE ? members->number[NUMBER_LN_LUMINOSITY][i]
+                                           : magnitude(members, keying, i);
+}
+
+struct reach members_reach(const struct lxg_family *family, const struct keying *keying,
+                           enum lxg_branch branch) {
+  struct reach reach = {0, family->count - 1};
+  if (keying->kind != KEY_MAGNITUDE) {
+    return reach;
+  }
+  double memory[NUMBERS + 1];
+  struct members one;
+  const bool thin = branch == LXG_BRANCH_THIN;
+  double before = NAN, direction = 0.0;
+  members_place(&one, 1, memory);
+  for (size_t k = 0; k < family->count; k++) {
+    const size_t i = thin ? k : family->count - 1 - k;
+    struct lxg_family_place at;
+    lxg_family_at(family, family->arc[i], &at);
+    set_numbers(&one, 0, &at, family->l_edd);
+    const double here = key_of(&one, keying, 0), step = here - before;
+    if (step * direction < 0.0) {
+      reach.last = thin ? i - 1 : reach.last;
+      reach.first = thin ? 0 : i + 1;
+      break;
+    }
+    direction = step > 0.0 || step < 0.0 ? step : direction;
+    before = here;
+  }
+  return reach;
+}
+
+void members_shares(const struct lxg_family *family, struct reach reach, double share[]) {
+  const double start = family->arc[reach.first], end = family->arc[reach.last];
+  for (size_t i = reach.first; i <= reach.last; i++) {
+    share[i - reach.first] = (family->arc[i] - start) / (end - start);
+  }
+}
+
+void members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
+                  const double share[], double l_edd, double own_l_edd, double escape) {
+  const double start = family->arc[reach.first], end = family->arc[reach.last];
+  for (size_t i = 0; i < members->count; i++) {
+    struct lxg_family_place at;
+    lxg_family_at(family, start + share[i] * (end - start), &at);
+    set_numbers(members, i, &at, l_edd);
+  }
+  members->ln_l_edd = log(own_l_edd);
+  members->ln_escape = log(escape);
+}
+
 enum lxg_status members_key(struct members *members, const struct keying *keying, struct lxg_error *error) {
   double direction = 0.0;
   members->runs = 0;
   members->run[0] = 0;
   for (size_t i = 0; i < members->count; i++) {
-    members->key[i] = keying->kind == KEY_BASE          ? members->number[NUMBER_LN_BASE][i]
-                      : keying->kind == KEY_PHOTOSPHERE ? members->number[NUMBER_LN_LUMINOSITY][i]
-                                                        : magnitude(members, keying, i);
+    members->key[i] = key_of(members, keying, i);
     const double step = i > 0 ? members->key[i] - members->key[i - 1] : 0.0;
     if (step * direction < 0.0) {
       if (members->runs + 1 == RUNS_MOST) {
@@ -112,10 +157,13 @@ static bool find_in(const double key[], size_t first, size_t last, double wanted
   return true;
 }
 
-bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place) {
+bool members_find(const struct members *members, double key, enum lxg_branch branch, bool one_run,
+                  struct place *place) {
   bool found = false;
   double best = 0.0;
-  for (size_t r = 0; r < members->runs; r++) {
+  const size_t first = one_run && branch == LXG_BRANCH_THICK ? members->runs - 1 : 0;
+  const size_t end = one_run && branch == LXG_BRANCH_THIN ? 1 : members->runs;
+  for (size_t r = first; r < end; r++) {
     struct place here;
     if (!find_in(members->key, members->run[r], members->run[r + 1], key, &here)) {
       continue;

@@ -132,11 +132,13 @@ static enum lxg_status evaluate(const void *shared, const struct lxg_uncertainty
 
 /* ---- run ------------------------------------------------------------------------------------------------------------ */
 
-/* Memory of the tables and the shares of the arc length at which they stand: the nominal members. */
+/* Memory of the tables and the places of their members: those of the nominal winds. */
 static enum lxg_status prepare(struct engine *engine, struct lxg_error *error) {
   const struct lxg_propagation_input *input = engine->input;
   const struct lxg_family *family = input->family;
-  const size_t count = family->count, tables = input->parameters > 0 ? 2 * input->parameters + 2 : 1;
+  const size_t tables = input->parameters > 0 ? 2 * input->parameters + 2 : 1;
+  const struct reach reach = members_reach(family, &engine->keying, input->branch);
+  const size_t count = reach.last + 1 - reach.first;
   if (count < 2) {
     return lxg_error_set(error, LXG_NO_SOLUTION, "propagation-family",
                          "a family of %zu winds: errors need two or more", count);
@@ -150,14 +152,12 @@ static enum lxg_status prepare(struct engine *engine, struct lxg_error *error) {
   for (size_t t = 0; t < tables; t++) {
     members_place(&engine->table[t], count, engine->memory + t * members_size(count));
   }
-  for (size_t i = 0; i < count; i++) {
-    engine->share[i] = family->arc[i] / family->arc[count - 1];
-  }
-  members_fill(&engine->table[0], family, engine->share, input->l_edd, input->l_edd,
+  members_shares(family, reach, engine->share);
+  members_fill(&engine->table[0], family, reach, engine->share, input->l_edd, input->l_edd,
                input->star->gm / input->star->radius);
   enum lxg_status status = members_key(&engine->table[0], &engine->keying, error);
   if (status == LXG_OK && input->parameters > 0) {
-    status = propagation_trace(input, engine->share, engine->table + 1, error);
+    status = propagation_trace(input, &engine->keying, engine->share, engine->table + 1, error);
   }
   return status;
 }

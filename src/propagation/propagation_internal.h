@@ -49,15 +49,27 @@ struct keying {
 size_t members_size(size_t count);
 void members_place(struct members *members, size_t count, double *memory);
 
-/* Fills from a family at given shares of its arc length; `l_edd` is the nominal one, `escape` G M/R_0 [erg g^-1]. */
-void members_fill(struct members *members, const struct lxg_family *family, const double share[],
-                  double l_edd, double own_l_edd, double escape);
+/* Winds of a family that count: for magnitudes those from the wanted end up to where the light first turns round, else all. */
+struct reach {
+  size_t first, last;
+};
+struct reach members_reach(const struct lxg_family *family, const struct keying *keying,
+                           enum lxg_branch branch);
+
+/* Where each of these winds stands between first and last, 0 to 1 in arc length. */
+void members_shares(const struct lxg_family *family, struct reach reach, double share[]);
+
+/* Fills from the members of a family at given shares; `l_edd` is the nominal one, `escape` G M/R_0 [erg g^-1]. */
+void members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
+                  const double share[], double l_edd, double own_l_edd, double escape);
 
 /* Keys and runs from the numbers. LXG_LIMIT "propagation-runs" when the key turns round too often. */
 enum lxg_status members_key(struct members *members, const struct keying *keying, struct lxg_error *error);
 
-/* The member with a key on the wanted branch; false if there is none. */
-bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place);
+/* The member with a key and the smallest or largest rate; with `one_run` only from that end of the family up to where the key
+ * first turns round. False if there is none. */
+bool members_find(const struct members *members, double key, enum lxg_branch branch, bool one_run,
+                  struct place *place);
 double members_number(const struct members *members, int number, struct place place);
 
 /* Weighted sum of tables: nominal, and two of each parameter at displacements in sigma. */
@@ -65,8 +77,8 @@ void members_combine(const struct members table[], size_t parameters, const doub
                      struct members *sum);
 
 /* Traces the families and fills the tables: [1 + 2 parameters + 1], the last the check's. */
-enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const double share[],
-                                  struct members table[], struct lxg_error *error);
+enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
+                                  const double share[], struct members table[], struct lxg_error *error);
 
 /* One time at which winds are evaluated. */
 struct sample {
@@ -79,7 +91,7 @@ struct sample {
 struct engine {
   const struct lxg_propagation_input *input;
   struct keying keying;
-  double *memory, *share; /* of all tables; of arc length [members] */
+  double *memory, *share; /* of all tables; place of each member */
   struct members *table;  /* [2 + 2 parameters] */
   size_t samples, epochs;
   struct sample *sample;

@@ -13,7 +13,8 @@ static const double family_tolerance = 1e-3;
 /* Families that one thread traces: every `stride`-th from `first`. */
 struct share {
   const struct lxg_propagation_input *input;
-  const double *arc_share;
+  const struct keying *keying;
+  const double *place;   /* of each member */
   struct members *table; /* the first belongs to node 0 */
   size_t first, stride, count;
   enum lxg_status status;
@@ -33,7 +34,8 @@ static enum lxg_status trace_one(const struct share *share, size_t i, struct lxg
   }
   if (status == LXG_OK) {
     const struct lxg_star *star = &node->model.star;
-    members_fill(&share->table[i], &family, share->arc_share, share->input->l_edd,
+    members_fill(&share->table[i], &family, members_reach(&family, share->keying, share->input->branch),
+                 share->place, share->input->l_edd,
                  lxg_star_eddington_luminosity(star, &node->model.composition), star->gm / star->radius);
   }
   lxg_family_free(&family);
@@ -50,8 +52,8 @@ static void *trace_share(void *argument) {
   return NULL;
 }
 
-enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const double arc_share[],
-                                  struct members table[], struct lxg_error *error) {
+enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
+                                  const double place[], struct members table[], struct lxg_error *error) {
   enum { THREADS_MOST = 2 * LXG_PROPAGATION_PARAMETERS + 1 };
   const size_t count = 2 * input->parameters + 1;
   const size_t threads = input->threads < count ? input->threads : count;
@@ -60,7 +62,8 @@ enum lxg_status propagation_trace(const struct lxg_propagation_input *input, con
   bool started[THREADS_MOST] = {false};
   for (size_t i = 0; i < threads; i++) {
     share[i] = (struct share){.input = input,
-                              .arc_share = arc_share,
+                              .keying = keying,
+                              .place = place,
                               .table = table,
                               .first = i,
                               .stride = threads,

@@ -13,32 +13,72 @@
 struct outburst {
   struct lxg_wind_solver *solver;
   struct lxg_family family;
-  struct lxg_history_excess excess; /* above L_Edd */
+  struct lxg_history_excess excess;  /* above L_Edd */
+  struct lxg_observed_course course; /* magnitudes along the family; empty otherwise */
+  struct lxg_history *seen;          /* luminosities that follow from magnitudes or colours; NULL otherwise */
   struct lxg_ejecta ejecta;
 };
 
 static void outburst_free(struct outburst *outburst) {
   lxg_ejecta_free(&outburst->ejecta);
+  lxg_history_destroy(outburst->seen);
+  lxg_observed_course_free(&outburst->course);
   lxg_family_free(&outburst->family);
   lxg_wind_solver_destroy(outburst->solver);
 }
 
+/* Winds from colours hold both quantities themselves. */
+static bool by_colours(const struct lxg_case *input) {
+  return input->observed != NULL && input->observed->way == LXG_OBSERVED_COLOURS;
+}
+
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
-  if (input->history == NULL) {
+  const char *name = lxg_document_name(input->document);
+  if (input->history == NULL && input->observed == NULL) {
     return lxg_error_set(error, LXG_INPUT, "key-missing",
-                         "%s: error: luminosity: `outburst` needs a luminosity history",
-                         lxg_document_name(input->document));
+                         "%s: error: luminosity: `outburst` needs a luminosity history", name);
+  }
+  if (by_colours(input)) {
+    if (input->holds > 0) {
+      return lxg_error_set(
+          error, LXG_INPUT, "hold-count",
+          "%s: error: hold: colours give two quantities of each epoch; nothing else can be held", name);
+    }
+    return !input->errors.wanted
+               ? LXG_OK
+               : lxg_error_set(
+                     error, LXG_INPUT, "errors-colours",
+                     "%s: error: errors: not available with light colours, whose winds share no family",
+                     name);
+  }
+  const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
+  if (status != LXG_OK || input->history == NULL) {
+    return status;
   }
   const enum lxg_held driven =
       input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
-  const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
-  if (status == LXG_OK && input->hold[0].quantity == driven) {
+  if (input->hold[0].quantity == driven) {
     return lxg_error_set(
         error, LXG_INPUT, "hold-dependent",
-        "%s: error: hold.%s: the luminosity history gives this already; hold another quantity",
-        lxg_document_name(input->document), lxg_held_name(driven));
+        "%s: error: hold.%s: the luminosity history gives this already; hold another quantity", name,
+        lxg_held_name(driven));
   }
-  return status;
+  return LXG_OK;
+}
+
+/* From winds to ejecta: by luminosity, by magnitude, or by colours. */
+static enum lxg_status eject(const struct lxg_case *input, const struct lxg_ejecta_options *options,
+                             struct outburst *outburst, struct lxg_error *error) {
+  if (input->history != NULL) {
+    return lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius, options,
+                              &outburst->ejecta, error);
+  }
+  enum lxg_status status =
+      by_colours(input)
+          ? lxg_run_colours(input, options, outburst->solver, &outburst->family, &outburst->ejecta, error)
+          : lxg_run_course(input, options, &outburst->family, &outburst->course, &outburst->ejecta, error);
+  return status == LXG_OK ? lxg_run_seen(input, &outburst->ejecta, &outburst->seen, &outburst->excess, error)
+                          : status;
 }
 
 /* The pipeline: opacity and star -> winds -> family; history -> time above L_Edd; both -> ejecta. */
@@ -47,19 +87,17 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
   const struct lxg_wind_model model = lxg_run_model(input);
   struct lxg_ejecta_options ejecting = lxg_ejecta_options_default();
   ejecting.branch = options->branch;
-  enum lxg_status status =
-      lxg_history_excess(input->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
+  enum lxg_status status = LXG_OK;
+  if (input->history != NULL) {
+    status = lxg_history_excess(input->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
+  }
   if (status == LXG_OK) {
     status = lxg_wind_solver_create(&model, NULL, &outburst->solver, error);
   }
-  if (status == LXG_OK) {
+  if (status == LXG_OK && !by_colours(input)) {
     status = lxg_family_trace(outburst->solver, &input->hold[0], NULL, &outburst->family, error);
   }
-  if (status == LXG_OK) {
-    status = lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius,
-                                &ejecting, &outburst->ejecta, error);
-  }
-  return status;
+  return status == LXG_OK ? eject(input, &ejecting, outburst, error) : status;
 }
 
 /* An answer is whole when every epoch without a wind is fainter than all epochs that have one. */
@@ -72,7 +110,9 @@ static void judge(const struct lxg_ejecta *ejecta, struct lxg_results *results) 
   }
   for (size_t i = 0; i < ejecta->count; i++) {
     const struct lxg_ejecta_epoch *epoch = &ejecta->epoch[i];
-    if (epoch->reason != LXG_WIND_SOLVED && (epoch->luminosity > faintest || ejecta->solved == 0)) {
+    const bool bright =
+        isnan(epoch->luminosity) ? epoch->reason == LXG_WIND_ABOVE_FOLD : epoch->luminosity > faintest;
+    if (epoch->reason != LXG_WIND_SOLVED && (bright || ejecta->solved == 0)) {
       struct lxg_error why = {0};
       lxg_error_set(&why, LXG_NO_SOLUTION, lxg_wind_reason_code(epoch->reason), "%s: %s",
                     ejecta->solved == 0 ? "no epoch has a wind" : "a bright epoch has no wind",
@@ -81,6 +121,59 @@ static void judge(const struct lxg_ejecta *ejecta, struct lxg_results *results) 
       return;
     }
   }
+}
+
+/* Monte Carlo into the report and the table; no answer there is one of the physics. */
+static enum lxg_status add_errors(const struct lxg_case *input, const struct lxg_run_options *options,
+                                  const struct outburst *outburst, struct lxg_results *results,
+                                  struct lxg_error *error) {
+  struct lxg_propagation errors = {0};
+  struct lxg_node *root = lxg_document_root(results->report);
+  const struct lxg_observed_course *course = outburst->course.count > 0 ? &outburst->course : NULL;
+  enum lxg_status status = lxg_run_errors(input, options, &outburst->family, course, &errors, error);
+  if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
+    lxg_report_no_errors(root, error);
+    lxg_run_unanswered(results, error);
+    status = LXG_OK;
+  } else if (status == LXG_OK) {
+    lxg_report_errors(root, &input->errors, &errors);
+    if (results->epochs != NULL) {
+      status = lxg_report_error_columns(&errors, results->epochs, error);
+    }
+  }
+  lxg_propagation_free(&errors);
+  return status;
+}
+
+/* Everything that follows from a computed outburst. */
+static enum lxg_status report(const struct lxg_case *input, const struct lxg_run_options *options,
+                              const struct outburst *outburst, struct lxg_results *results,
+                              struct lxg_error *error) {
+  struct lxg_node *root = lxg_document_root(results->report);
+  const struct lxg_observed_course *course = outburst->course.count > 0 ? &outburst->course : NULL;
+  enum lxg_status status = LXG_OK;
+  judge(&outburst->ejecta, results);
+  lxg_report_super_eddington(root, &outburst->excess);
+  lxg_report_ejecta(root, &outburst->ejecta);
+  if (input->observed != NULL) {
+    lxg_report_served(root, input->observed, course);
+    status = lxg_run_light_curve(input, outburst->ejecta.mean_speed, root, error);
+  }
+  if (!by_colours(input)) {
+    lxg_report_family(root, &outburst->family);
+  }
+  if (options->epochs && status == LXG_OK) {
+    status = lxg_report_epoch_table(&outburst->ejecta, input->l_edd, &results->epochs, error);
+    if (status == LXG_OK && input->observed != NULL) {
+      status = lxg_report_observed_columns(input->observed, course, results->epochs, error);
+    }
+  }
+  if (input->errors.wanted && status == LXG_OK) {
+    status = add_errors(input, options, outburst, results, error);
+  }
+  const struct lxg_history *history = input->history != NULL ? input->history : outburst->seen;
+  lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst->ejecta, history, &outburst->excess);
+  return status;
 }
 
 enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_run_options *options,
@@ -93,22 +186,17 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
   if (status == LXG_OK) {
     status = compute(input, options, &outburst, error);
   }
-  struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
+    struct lxg_node *root = lxg_document_root(results->report);
     lxg_run_unanswered(results, error);
-    lxg_report_super_eddington(root, &outburst.excess);
+    if (input->history != NULL) {
+      lxg_report_super_eddington(root, &outburst.excess);
+    }
     lxg_report_no_family(root, &input->hold[0], &results->why);
     lxg_report_warnings(root);
     status = LXG_OK;
   } else if (status == LXG_OK) {
-    judge(&outburst.ejecta, results);
-    lxg_report_super_eddington(root, &outburst.excess);
-    lxg_report_ejecta(root, &outburst.ejecta);
-    lxg_report_family(root, &outburst.family);
-    lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst.ejecta, input->history, &outburst.excess);
-    if (options->epochs) {
-      status = lxg_report_epoch_table(&outburst.ejecta, input->l_edd, &results->epochs, error);
-    }
+    status = report(input, options, &outburst, results, error);
   }
   if (status == LXG_OK) {
     status = lxg_document_status(results->report, error);
