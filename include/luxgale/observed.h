@@ -8,7 +8,8 @@
  *   colours: temperature and luminosity of a black body through two or more bands at a time: each epoch is a wind by itself.
  *
  * A magnitude may belong to several members. Members are taken along one branch only: from the thin end of the family (or from the
- * thick end) up to where its light first turns round, so no epoch jumps to a wind of another kind. A magnitude brighter than the
+ * thick end) to its first maximum of light, so no epoch jumps to a wind of another kind. A maximum counts when the light fades
+ * by LXG_OBSERVED_TURN_MAG beyond it; an initial fading at the end of the family is passed over. A magnitude brighter than the
  * branch is "above-fold", one fainter names the end of the family. Between an epoch with and one without a wind the end is
  * put where the magnitude, straight in time, passes the end of the branch.
  *
@@ -116,6 +117,18 @@ void lxg_observed_course_free(struct lxg_observed_course *course);
 /* Way COLOURS: luminosity and temperature of the black body of epoch i. LXG_NO_SOLUTION "colour-blue", "colour-red". */
 enum lxg_status lxg_observed_state(const struct lxg_observed *observed, size_t i,
                                    struct lxg_photometry_state *state, struct lxg_error *error);
+
+#define LXG_OBSERVED_TURN_MAG 0.05 /* well above interpolation errors, below what a light curve shows */
+
+/* Search for the branch: feed the magnitudes of the winds one by one from the wanted end until `found`. */
+struct lxg_observed_turn {
+  bool found;                 /* the light has turned round for good */
+  bool rising;                /* it has brightened by more than the limit */
+  size_t faintest, brightest; /* winds at the ends of the branch */
+  double faint, bright;       /* their magnitudes [mag] */
+};
+struct lxg_observed_turn lxg_observed_turn_begin(void);
+void lxg_observed_turn_next(struct lxg_observed_turn *turn, size_t wind, double magnitude);
 
 /* A family prepared for the light and band of the observation. */
 enum lxg_status lxg_observed_search(const struct lxg_observed *observed, const struct lxg_family *family,

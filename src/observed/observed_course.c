@@ -50,7 +50,7 @@ struct branch {
   const struct lxg_family *family;
   const struct lxg_photometry_search *search;
   size_t first, last;
-  double bright, faint; /* magnitudes of its ends */
+  double bright, faint; /* magnitudes of its ends [mag] */
   enum lxg_wind_reason faint_reason;
 };
 
@@ -60,30 +60,39 @@ static double magnitude_of(const struct lxg_photometry_search *search, size_t i)
   return lxg_photometry_member_magnitude(search, inner ? i : i - 1, inner ? 0.0 : 1.0, NULL);
 }
 
-/* The branch from the thin or thick end up to where the light first turns round. */
+struct lxg_observed_turn lxg_observed_turn_begin(void) {
+  return (struct lxg_observed_turn){.faint = -INFINITY, .bright = INFINITY};
+}
+
+void lxg_observed_turn_next(struct lxg_observed_turn *turn, size_t wind, double magnitude) {
+  if (!turn->rising && magnitude > turn->faint) { /* still fading from the end: the branch begins here */
+    turn->faintest = turn->brightest = wind;
+    turn->faint = turn->bright = magnitude;
+  }
+  if (magnitude < turn->bright) {
+    turn->brightest = wind;
+    turn->bright = magnitude;
+    turn->rising = turn->rising || turn->faint - magnitude > LXG_OBSERVED_TURN_MAG;
+  }
+  turn->found = turn->rising && magnitude > turn->bright + LXG_OBSERVED_TURN_MAG;
+}
+
+/* The branch from the thin or thick end. */
 static struct branch find_branch(const struct lxg_photometry_search *search, const struct lxg_family *family,
                                  enum lxg_branch which) {
   const bool thin = which == LXG_BRANCH_THIN;
-  struct branch branch = {.family = family, .search = search, .last = family->count - 1};
-  size_t i = thin ? 0 : branch.last;
-  const double end = magnitude_of(search, i);
-  double before = end, direction = 0.0;
-  while (thin ? i < branch.last : i > branch.first) {
-    const size_t next = thin ? i + 1 : i - 1;
-    const double here = magnitude_of(search, next), step = here - before;
-    if (step * direction < 0.0) {
-      break;
-    }
-    direction = step != 0.0 ? step : direction;
-    before = here;
-    i = next;
+  struct lxg_observed_turn turn = lxg_observed_turn_begin();
+  for (size_t k = 0; k < family->count && !turn.found; k++) {
+    const size_t i = thin ? k : family->count - 1 - k;
+    lxg_observed_turn_next(&turn, i, magnitude_of(search, i));
   }
-  branch.first = thin ? 0 : i;
-  branch.last = thin ? i : branch.last;
-  branch.bright = fmin(end, before);
-  branch.faint = fmax(end, before);
-  branch.faint_reason = end >= before ? (thin ? family->thin_end : family->thick_end) : LXG_WIND_ABOVE_FOLD;
-  return branch;
+  return (struct branch){.family = family,
+                         .search = search,
+                         .first = turn.faintest < turn.brightest ? turn.faintest : turn.brightest,
+                         .last = turn.faintest < turn.brightest ? turn.brightest : turn.faintest,
+                         .bright = turn.bright,
+                         .faint = turn.faint,
+                         .faint_reason = thin ? family->thin_end : family->thick_end};
 }
 
 /* The member on the branch; false if all lie elsewhere. */

@@ -120,7 +120,7 @@ static struct moment look_up(const struct engine *engine, const struct members *
                              double time) {
   struct moment m = {.time = time, .excess = NAN};
   const bool magnitude = engine->keying.kind == KEY_MAGNITUDE;
-  m.wind = members_find(members, key, engine->input->branch, magnitude, &m.place);
+  m.wind = members_find(members, key, engine->input->branch, &m.place);
   if (!magnitude) {
     m.excess = key - members->ln_l_edd;
   }

@@ -72,23 +72,17 @@ struct reach members_reach(const struct lxg_family *family, const struct keying 
   }
   double memory[NUMBERS + 1];
   struct members one;
-  const bool thin = branch == LXG_BRANCH_THIN;
-  double before = NAN, direction = 0.0;
+  struct lxg_observed_turn turn = lxg_observed_turn_begin();
   members_place(&one, 1, memory);
-  for (size_t k = 0; k < family->count; k++) {
-    const size_t i = thin ? k : family->count - 1 - k;
+  for (size_t k = 0; k < family->count && !turn.found; k++) {
+    const size_t i = branch == LXG_BRANCH_THIN ? k : family->count - 1 - k;
     struct lxg_family_place at;
     lxg_family_at(family, family->arc[i], &at);
     set_numbers(&one, 0, &at, family->l_edd);
-    const double here = key_of(&one, keying, 0), step = here - before;
-    if (step * direction < 0.0) {
-      reach.last = thin ? i - 1 : reach.last;
-      reach.first = thin ? 0 : i + 1;
-      break;
-    }
-    direction = step > 0.0 || step < 0.0 ? step : direction;
-    before = here;
+    lxg_observed_turn_next(&turn, i, key_of(&one, keying, 0));
   }
+  reach.first = turn.faintest < turn.brightest ? turn.faintest : turn.brightest;
+  reach.last = turn.faintest < turn.brightest ? turn.brightest : turn.faintest;
   return reach;
 }
 
@@ -157,13 +151,10 @@ static bool find_in(const double key[], size_t first, size_t last, double wanted
   return true;
 }
 
-bool members_find(const struct members *members, double key, enum lxg_branch branch, bool one_run,
-                  struct place *place) {
+bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place) {
   bool found = false;
   double best = 0.0;
-  const size_t first = one_run && branch == LXG_BRANCH_THICK ? members->runs - 1 : 0;
-  const size_t end = one_run && branch == LXG_BRANCH_THIN ? 1 : members->runs;
-  for (size_t r = first; r < end; r++) {
+  for (size_t r = 0; r < members->runs; r++) {
     struct place here;
     if (!find_in(members->key, members->run[r], members->run[r + 1], key, &here)) {
       continue;

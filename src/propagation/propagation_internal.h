@@ -49,7 +49,7 @@ struct keying {
 size_t members_size(size_t count);
 void members_place(struct members *members, size_t count, double *memory);
 
-/* Winds of a family that count: for magnitudes those from the wanted end up to where the light first turns round, else all. */
+/* Winds of a family that count: for magnitudes those of the wanted branch (observed.h), else all. */
 struct reach {
   size_t first, last;
 };
@@ -66,10 +66,8 @@ void members_fill(struct members *members, const struct lxg_family *family, stru
 /* Keys and runs from the numbers. LXG_LIMIT "propagation-runs" when the key turns round too often. */
 enum lxg_status members_key(struct members *members, const struct keying *keying, struct lxg_error *error);
 
-/* The member with a key and the smallest or largest rate; with `one_run` only from that end of the family up to where the key
- * first turns round. False if there is none. */
-bool members_find(const struct members *members, double key, enum lxg_branch branch, bool one_run,
-                  struct place *place);
+/* The member with a key and the smallest or largest rate; false if there is none. */
+bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place);
 double members_number(const struct members *members, int number, struct place place);
 
 /* Weighted sum of tables: nominal, and two of each parameter at displacements in sigma. */

@@ -136,7 +136,9 @@ static enum lxg_status add_errors(const struct lxg_case *input, const struct lxg
     lxg_run_unanswered(results, error);
     status = LXG_OK;
   } else if (status == LXG_OK) {
-    lxg_report_errors(root, &input->errors, &errors);
+    struct lxg_propagation_plan plan = input->errors;
+    plan.seed = options->seeded ? (uint64_t)options->seed : plan.seed;
+    lxg_report_errors(root, &plan, &errors);
     if (results->epochs != NULL) {
       status = lxg_report_error_columns(&errors, results->epochs, error);
     }
