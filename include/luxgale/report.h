@@ -12,6 +12,7 @@
 #define LUXGALE_REPORT_H
 
 #include "luxgale/composition.h"
+#include "luxgale/decline.h"
 #include "luxgale/document.h"
 #include "luxgale/ejecta.h"
 #include "luxgale/family.h"
@@ -71,9 +72,9 @@ void lxg_report_served(struct lxg_node *root, const struct lxg_observed *observe
                        const struct lxg_observed_course *course);
 
 /* `light_curve:` peak, decline times, gaps, and published relations beside them; `mean_speed` of the ejecta [cm s^-1] or NaN. */
-void lxg_report_decline(struct lxg_node *root, const struct lxg_observed *observed,
-                        const struct lxg_light_decline *decline, double mean_speed);
-void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error);
+void lxg_report_light_curve(struct lxg_node *root, const struct lxg_observed *observed,
+                            const struct lxg_light_decline *decline, double mean_speed);
+void lxg_report_no_light_curve(struct lxg_node *root, const struct lxg_error *error);
 
 /* Columns absolute_magnitude_mag and light of the epoch table. */
 enum lxg_status lxg_report_observed_columns(const struct lxg_observed *observed,
@@ -93,6 +94,17 @@ void lxg_report_no_errors(struct lxg_node *root, const struct lxg_error *error);
 /* Columns NAME_lo and NAME_hi of the epoch table. */
 enum lxg_status lxg_report_error_columns(const struct lxg_propagation *errors, struct lxg_table *table,
                                          struct lxg_error *error);
+
+/* `decline:` the numbers of a whole eruption; or verdict none with the reason that the error holds. */
+void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline);
+void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error);
+
+/* Warnings about it: start-clipped, thin-wind, decline-lost. */
+void lxg_report_decline_warnings(struct lxg_node *warnings, const struct lxg_decline *decline);
+
+/* One row a state; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
+enum lxg_status lxg_report_decline_table(const struct lxg_decline *decline, double l_edd,
+                                         struct lxg_table **table, struct lxg_error *error);
 
 /* `warnings: []`, to be added last. */
 struct lxg_node *lxg_report_warnings(struct lxg_node *root);

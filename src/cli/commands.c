@@ -17,6 +17,9 @@ static const struct cli_command commands[] = {
     {"family", "trace all winds that share one held quantity, from the thin to the thick end",
      "star, composition and one held quantity", CLI_COMMON | CLI_BIT(CLI_EPOCHS), lxg_run_family,
      "luxgale family -o family.ecsv examples/quickstart.yaml"},
+    {"decline", "a whole eruption over a burning base: wind, its end, turn-off, light curve",
+     "star, composition and `burning: {law: cno}`; nothing is held", CLI_COMMON | CLI_BIT(CLI_EPOCHS),
+     lxg_run_decline, "luxgale decline --epochs decline.ecsv -o decline.yaml examples/decline.yaml"},
     {"star", "radius, Eddington luminosity, escape speed, tiring rate, ignition mass", "star and composition",
      CLI_COMMON, lxg_run_star, "luxgale star examples/quickstart.yaml"},
 };

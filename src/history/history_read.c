@@ -13,8 +13,8 @@
 
 #include "history/history_reading.h"
 
-static const char *const kinds[] = {"base", "photosphere", "magnitude", "formula"};
-enum { KIND_MAGNITUDE = 2, KIND_FORMULA = 3, KINDS = 4 };
+static const char *const kinds[] = {"base", "photosphere", "magnitude", "formula", "decline"};
+enum { KIND_MAGNITUDE = 2, KIND_FORMULA = 3, KIND_DECLINE = 4, KINDS = 5 };
 
 /* Names and units of the columns, as the case gives them. */
 struct columns {
@@ -197,6 +197,9 @@ enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_hist
     return status == LXG_OK ? refuse_keys(section, of_table + 1, sizeof of_table / sizeof of_table[0] - 1,
                                           kinds[kind], error)
                             : status;
+  }
+  if (kind == KIND_DECLINE) { /* an eruption is the business of a whole case */
+    return lxg_keys_refuse(node, error);
   }
   if (kind == KIND_FORMULA) {
     status = refuse_keys(section, of_table, sizeof of_table / sizeof of_table[0], kinds[kind], error);

@@ -118,8 +118,8 @@ static void add_relations(struct lxg_node *section, const struct lxg_light_decli
   }
 }
 
-void lxg_report_decline(struct lxg_node *root, const struct lxg_observed *observed,
-                        const struct lxg_light_decline *decline, double mean_speed) {
+void lxg_report_light_curve(struct lxg_node *root, const struct lxg_observed *observed,
+                            const struct lxg_light_decline *decline, double mean_speed) {
   struct lxg_node *section = lxg_node_add_mapping(root, "light_curve");
   const double absolute = decline->peak_magnitude - lxg_observed_nominal_shift(observed);
   lxg_node_add_text(section, "band", lxg_band_info(observed->band)->name);
@@ -139,7 +139,7 @@ void lxg_report_decline(struct lxg_node *root, const struct lxg_observed *observ
   }
 }
 
-void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error) {
+void lxg_report_no_light_curve(struct lxg_node *root, const struct lxg_error *error) {
   struct lxg_node *section = lxg_node_add_mapping(root, "light_curve");
   lxg_node_add_text(section, "verdict", "none");
   lxg_node_add_text(section, "reason", error->line[0]);

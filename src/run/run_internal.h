@@ -20,6 +20,11 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error);
 
+/* The wind phase of the case's eruption as a history of photospheric luminosity (to be destroyed), and limits of the family of
+ * winds that just hold it. Errors of lxg_decline_compute; LXG_NO_SOLUTION "decline-no-wind". */
+enum lxg_status lxg_run_decline_history(const struct lxg_case *input, struct lxg_history **history,
+                                        struct lxg_family_options *limits, struct lxg_error *error);
+
 /* The model behind every wind of the case. */
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
 

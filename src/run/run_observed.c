@@ -207,9 +207,9 @@ enum lxg_status lxg_run_light_curve(const struct lxg_case *input, double mean_sp
   const enum lxg_status status =
       lxg_lightcurve_decline(&input->observed->curve, &input->observed->decline, &decline, error);
   if (status == LXG_OK) {
-    lxg_report_decline(root, input->observed, &decline, mean_speed);
+    lxg_report_light_curve(root, input->observed, &decline, mean_speed);
   } else if (status == LXG_NO_SOLUTION || status == LXG_INPUT) {
-    lxg_report_no_decline(root, error);
+    lxg_report_no_light_curve(root, error);
     lxg_error_clear(error);
     return LXG_OK;
   }

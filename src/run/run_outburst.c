@@ -11,6 +11,8 @@
 
 /* What the stages fill, one after the other. */
 struct outburst {
+  struct lxg_history *own;           /* computed from the eruption of the case, or NULL */
+  const struct lxg_history *history; /* this or the case's */
   struct lxg_wind_solver *solver;
   struct lxg_family family;
   struct lxg_history_excess excess;  /* above L_Edd */
@@ -25,6 +27,7 @@ static void outburst_free(struct outburst *outburst) {
   lxg_observed_course_free(&outburst->course);
   lxg_family_free(&outburst->family);
   lxg_wind_solver_destroy(outburst->solver);
+  lxg_history_destroy(outburst->own);
 }
 
 /* Winds from colours hold both quantities themselves. */
@@ -34,7 +37,7 @@ static bool by_colours(const struct lxg_case *input) {
 
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
   const char *name = lxg_document_name(input->document);
-  if (input->history == NULL && input->observed == NULL) {
+  if (input->history == NULL && input->observed == NULL && !input->history_from_decline) {
     return lxg_error_set(error, LXG_INPUT, "key-missing",
                          "%s: error: luminosity: `outburst` needs a luminosity history", name);
   }
@@ -52,11 +55,17 @@ static enum lxg_status require(const struct lxg_case *input, struct lxg_error *e
                      name);
   }
   const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
-  if (status != LXG_OK || input->history == NULL) {
+  if (status != LXG_OK || (input->history == NULL && !input->history_from_decline)) {
     return status;
   }
-  const enum lxg_held driven =
-      input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
+  if (input->history_from_decline && input->errors.wanted) {
+    return lxg_error_set(
+        error, LXG_INPUT, "errors-decline",
+        "%s: error: errors: not available with luminosity kind decline, whose history is computed", name);
+  }
+  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
+                                   ? LXG_HELD_BASE_LUMINOSITY
+                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
   if (input->hold[0].quantity == driven) {
     return lxg_error_set(
         error, LXG_INPUT, "hold-dependent",
@@ -69,9 +78,9 @@ static enum lxg_status require(const struct lxg_case *input, struct lxg_error *e
 /* From winds to ejecta: by luminosity, by magnitude, or by colours. */
 static enum lxg_status eject(const struct lxg_case *input, const struct lxg_ejecta_options *options,
                              struct outburst *outburst, struct lxg_error *error) {
-  if (input->history != NULL) {
-    return lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius, options,
-                              &outburst->ejecta, error);
+  if (outburst->history != NULL) {
+    return lxg_ejecta_compute(&outburst->family, outburst->history, input->star.gm / input->star.radius,
+                              options, &outburst->ejecta, error);
   }
   enum lxg_status status =
       by_colours(input)
@@ -87,15 +96,21 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
   const struct lxg_wind_model model = lxg_run_model(input);
   struct lxg_ejecta_options ejecting = lxg_ejecta_options_default();
   ejecting.branch = options->branch;
+  struct lxg_family_options limits = lxg_family_options_default();
+  outburst->history = input->history;
   enum lxg_status status = LXG_OK;
-  if (input->history != NULL) {
-    status = lxg_history_excess(input->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
+  if (input->history_from_decline) {
+    status = lxg_run_decline_history(input, &outburst->own, &limits, error);
+    outburst->history = outburst->own;
+  }
+  if (status == LXG_OK && outburst->history != NULL) {
+    status = lxg_history_excess(outburst->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
   }
   if (status == LXG_OK) {
     status = lxg_wind_solver_create(&model, NULL, &outburst->solver, error);
   }
   if (status == LXG_OK && !by_colours(input)) {
-    status = lxg_family_trace(outburst->solver, &input->hold[0], NULL, &outburst->family, error);
+    status = lxg_family_trace(outburst->solver, &input->hold[0], &limits, &outburst->family, error);
   }
   return status == LXG_OK ? eject(input, &ejecting, outburst, error) : status;
 }
@@ -173,7 +188,7 @@ static enum lxg_status report(const struct lxg_case *input, const struct lxg_run
   if (input->errors.wanted && status == LXG_OK) {
     status = add_errors(input, options, outburst, results, error);
   }
-  const struct lxg_history *history = input->history != NULL ? input->history : outburst->seen;
+  const struct lxg_history *history = outburst->history != NULL ? outburst->history : outburst->seen;
   lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst->ejecta, history, &outburst->excess);
   return status;
 }
@@ -191,7 +206,7 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
     struct lxg_node *root = lxg_document_root(results->report);
     lxg_run_unanswered(results, error);
-    if (input->history != NULL) {
+    if (outburst.history != NULL) {
       lxg_report_super_eddington(root, &outburst.excess);
     }
     lxg_report_no_family(root, &input->hold[0], &results->why);
