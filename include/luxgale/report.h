@@ -89,6 +89,9 @@ void lxg_report_error_plan(struct lxg_node *section, const struct lxg_propagatio
 /* `errors:` intervals, split of the variance, correlations; or the reason why there are none. */
 void lxg_report_errors(struct lxg_node *root, const struct lxg_propagation_plan *plan,
                        const struct lxg_propagation *errors);
+/* Warnings: errors-interpolation, errors-failed, errors-windless (`windless`: epochs without a wind at the stated values). */
+void lxg_report_error_warnings(struct lxg_node *warnings, const struct lxg_propagation *errors,
+                               size_t windless);
 void lxg_report_no_errors(struct lxg_node *root, const struct lxg_error *error);
 
 /* Columns NAME_lo and NAME_hi of the epoch table. */

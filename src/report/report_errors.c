@@ -12,6 +12,9 @@
 
 static const double dominant = 0.5; /* share of the variance from which one source is said to dominate */
 
+static const double interpolation_share =
+    0.1; /* of the half width of an interval that interpolation may err */
+
 void lxg_report_error_plan(struct lxg_node *section, const struct lxg_propagation_plan *plan) {
   static const struct {
     const char *name;
@@ -132,6 +135,35 @@ void lxg_report_errors(struct lxg_node *root, const struct lxg_propagation_plan 
     add_split(section, errors);
   }
   add_correlations(section, errors);
+}
+
+void lxg_report_error_warnings(struct lxg_node *warnings, const struct lxg_propagation *errors,
+                               size_t windless) {
+  const struct lxg_uncertainty_result *result = &errors->result;
+  if (result->summary == NULL) {
+    return;
+  }
+  const struct lxg_uncertainty_summary *mass = &result->summary[LXG_PROPAGATED_MASS];
+  const double half = 0.5 * (mass->hi68 - mass->lo68) / mass->median;
+  if (fabs(errors->check_mass) > interpolation_share * half) {
+    struct lxg_node *warning = lxg_report_warn(
+        warnings, "errors-interpolation",
+        "interpolating between families errs by more than a tenth of the 68 % interval of the ejected mass");
+    lxg_node_add_number(warning, "interpolation_error_mass", errors->check_mass);
+  }
+  if (result->failed > 0) {
+    struct lxg_node *warning =
+        lxg_report_warn(warnings, "errors-failed", "draws failed; the intervals are those of the others");
+    lxg_node_add_integer(warning, "draws", (long long)result->failed);
+    lxg_node_add_text(warning, "reason_code", result->reason[0].code);
+  }
+  const double without = result->summary[LXG_PROPAGATED_WINDLESS].hi68;
+  if (without > (double)windless) {
+    struct lxg_node *warning = lxg_report_warn(warnings, "errors-windless",
+                                               "within the errors epochs lose their wind, which then adds no "
+                                               "mass: intervals of the mass reach too low");
+    lxg_node_add_number(warning, "epochs", without);
+  }
 }
 
 void lxg_report_no_errors(struct lxg_node *root, const struct lxg_error *error) {

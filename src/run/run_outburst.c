@@ -140,26 +140,23 @@ static void judge(const struct lxg_ejecta *ejecta, struct lxg_results *results) 
 
 /* Monte Carlo into the report and the table; no answer there is one of the physics. */
 static enum lxg_status add_errors(const struct lxg_case *input, const struct lxg_run_options *options,
-                                  const struct outburst *outburst, struct lxg_results *results,
-                                  struct lxg_error *error) {
-  struct lxg_propagation errors = {0};
+                                  const struct outburst *outburst, struct lxg_propagation *errors,
+                                  struct lxg_results *results, struct lxg_error *error) {
   struct lxg_node *root = lxg_document_root(results->report);
   const struct lxg_observed_course *course = outburst->course.count > 0 ? &outburst->course : NULL;
-  enum lxg_status status = lxg_run_errors(input, options, &outburst->family, course, &errors, error);
+  const enum lxg_status status = lxg_run_errors(input, options, &outburst->family, course, errors, error);
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
     lxg_report_no_errors(root, error);
     lxg_run_unanswered(results, error);
-    status = LXG_OK;
-  } else if (status == LXG_OK) {
-    struct lxg_propagation_plan plan = input->errors;
-    plan.seed = options->seeded ? (uint64_t)options->seed : plan.seed;
-    lxg_report_errors(root, &plan, &errors);
-    if (results->epochs != NULL) {
-      status = lxg_report_error_columns(&errors, results->epochs, error);
-    }
+    return LXG_OK;
   }
-  lxg_propagation_free(&errors);
-  return status;
+  if (status != LXG_OK) {
+    return status;
+  }
+  struct lxg_propagation_plan plan = input->errors;
+  plan.seed = options->seeded ? (uint64_t)options->seed : plan.seed;
+  lxg_report_errors(root, &plan, errors);
+  return results->epochs != NULL ? lxg_report_error_columns(errors, results->epochs, error) : LXG_OK;
 }
 
 /* Everything that follows from a computed outburst. */
@@ -168,6 +165,7 @@ static enum lxg_status report(const struct lxg_case *input, const struct lxg_run
                               struct lxg_error *error) {
   struct lxg_node *root = lxg_document_root(results->report);
   const struct lxg_observed_course *course = outburst->course.count > 0 ? &outburst->course : NULL;
+  struct lxg_propagation errors = {0};
   enum lxg_status status = LXG_OK;
   judge(&outburst->ejecta, results);
   lxg_report_super_eddington(root, &outburst->excess);
@@ -186,10 +184,13 @@ static enum lxg_status report(const struct lxg_case *input, const struct lxg_run
     }
   }
   if (input->errors.wanted && status == LXG_OK) {
-    status = add_errors(input, options, outburst, results, error);
+    status = add_errors(input, options, outburst, &errors, results, error);
   }
   const struct lxg_history *history = outburst->history != NULL ? outburst->history : outburst->seen;
-  lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst->ejecta, history, &outburst->excess);
+  struct lxg_node *warnings = lxg_report_warnings(root);
+  lxg_report_ejecta_warnings(warnings, &outburst->ejecta, history, &outburst->excess);
+  lxg_report_error_warnings(warnings, &errors, outburst->ejecta.none);
+  lxg_propagation_free(&errors);
   return status;
 }
 
