@@ -68,7 +68,7 @@ static size_t parts(const struct engine *engine, size_t i) {
   return wish > 1.0 ? (size_t)wish : 1;
 }
 
-enum lxg_status engine_sample(struct engine *engine, struct lxg_error *error) {
+enum lxg_status lxg_propagation_sample(struct engine *engine, struct lxg_error *error) {
   struct lxg_photometry_search search = {0};
   enum lxg_status status = LXG_OK;
   engine->samples = 1;
@@ -120,16 +120,16 @@ static struct moment look_up(const struct engine *engine, const struct members *
                              double time) {
   struct moment m = {.time = time, .excess = NAN};
   const bool magnitude = engine->keying.kind == KEY_MAGNITUDE;
-  m.wind = members_find(members, key, engine->input->branch, &m.place);
+  m.wind = lxg_members_find(members, key, engine->input->branch, &m.place);
   if (!magnitude) {
     m.excess = key - members->ln_l_edd;
   }
   if (m.wind) {
-    m.rate = exp(members_number(members, NUMBER_LN_RATE, m.place));
-    m.speed = sqrt(fmax(members_number(members, NUMBER_SPEED_SQ, m.place), 0.0));
-    m.infinity = members_number(members, NUMBER_INFINITY, m.place);
+    m.rate = exp(lxg_members_number(members, NUMBER_LN_RATE, m.place));
+    m.speed = sqrt(fmax(lxg_members_number(members, NUMBER_SPEED_SQ, m.place), 0.0));
+    m.infinity = lxg_members_number(members, NUMBER_INFINITY, m.place);
     if (magnitude) {
-      m.excess = members_number(members, NUMBER_LN_LUMINOSITY, m.place) - members->ln_l_edd;
+      m.excess = lxg_members_number(members, NUMBER_LN_LUMINOSITY, m.place) - members->ln_l_edd;
     }
   } else if (!magnitude) {
     m.infinity = exp(key) / engine->input->l_edd;
@@ -169,9 +169,9 @@ static void set_profile(const struct members *members, const struct moment *m, d
   if (m->wind) {
     column[2] = m->rate / year;
     column[3] = m->speed / LXG_KM;
-    column[4] = exp(members_number(members, NUMBER_LN_RADIUS, m->place)) / LXG_SOLAR_RADIUS;
-    column[5] = exp(members_number(members, NUMBER_LN_TEMPERATURE, m->place));
-    column[6] = exp(members_number(members, NUMBER_LN_PHOTOSPHERE_SPEED, m->place)) / LXG_KM;
+    column[4] = exp(lxg_members_number(members, NUMBER_LN_RADIUS, m->place)) / LXG_SOLAR_RADIUS;
+    column[5] = exp(lxg_members_number(members, NUMBER_LN_TEMPERATURE, m->place));
+    column[6] = exp(lxg_members_number(members, NUMBER_LN_PHOTOSPHERE_SPEED, m->place)) / LXG_KM;
   }
   column[LXG_PROPAGATION_COLUMNS - 1] = mass / LXG_SOLAR_MASS;
 }
@@ -193,8 +193,8 @@ static void conclude(const struct engine *engine, const struct members *members,
   outputs[LXG_PROPAGATED_WINDLESS] = sums->windless;
 }
 
-void engine_integrate(const struct engine *engine, const struct members *members, const double noise[],
-                      double shift, double outputs[], double profile[]) {
+void lxg_propagation_integrate(const struct engine *engine, const struct members *members,
+                               const double noise[], double shift, double outputs[], double profile[]) {
   struct sums sums = {.peak_excess = -INFINITY};
   struct moment before = {0};
   for (size_t j = 0; j < engine->samples; j++) {

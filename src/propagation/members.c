@@ -11,11 +11,11 @@
 
 static const double base_floor = 1e-6; /* of L_Edd: a base luminosity below it is as good as none */
 
-size_t members_size(size_t count) {
+size_t lxg_members_size(size_t count) {
   return (NUMBERS + 1) * count;
 }
 
-void members_place(struct members *members, size_t count, double *memory) {
+void lxg_members_place(struct members *members, size_t count, double *memory) {
   members->count = count;
   for (int i = 0; i < NUMBERS; i++) {
     members->number[i] = memory + (size_t)i * count;
@@ -64,8 +64,8 @@ static double key_of(const struct members *members, const struct keying *keying,
                                            : magnitude(members, keying, i);
 }
 
-struct reach members_reach(const struct lxg_family *family, const struct keying *keying,
-                           enum lxg_branch branch) {
+struct reach lxg_members_reach(const struct lxg_family *family, const struct keying *keying,
+                               enum lxg_branch branch) {
   struct reach reach = {0, family->count - 1};
   if (keying->kind != KEY_MAGNITUDE) {
     return reach;
@@ -73,7 +73,7 @@ struct reach members_reach(const struct lxg_family *family, const struct keying 
   double memory[NUMBERS + 1];
   struct members one;
   struct lxg_observed_turn turn = lxg_observed_turn_begin();
-  members_place(&one, 1, memory);
+  lxg_members_place(&one, 1, memory);
   for (size_t k = 0; k < family->count && !turn.found; k++) {
     const size_t i = branch == LXG_BRANCH_THIN ? k : family->count - 1 - k;
     struct lxg_family_place at;
@@ -86,15 +86,15 @@ struct reach members_reach(const struct lxg_family *family, const struct keying 
   return reach;
 }
 
-void members_shares(const struct lxg_family *family, struct reach reach, double share[]) {
+void lxg_members_shares(const struct lxg_family *family, struct reach reach, double share[]) {
   const double start = family->arc[reach.first], end = family->arc[reach.last];
   for (size_t i = reach.first; i <= reach.last; i++) {
     share[i - reach.first] = (family->arc[i] - start) / (end - start);
   }
 }
 
-void members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
-                  const double share[], double l_edd, double own_l_edd, double escape) {
+void lxg_members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
+                      const double share[], double l_edd, double own_l_edd, double escape) {
   const double start = family->arc[reach.first], end = family->arc[reach.last];
   for (size_t i = 0; i < members->count; i++) {
     struct lxg_family_place at;
@@ -105,7 +105,8 @@ void members_fill(struct members *members, const struct lxg_family *family, stru
   members->ln_escape = log(escape);
 }
 
-enum lxg_status members_key(struct members *members, const struct keying *keying, struct lxg_error *error) {
+enum lxg_status lxg_members_key(struct members *members, const struct keying *keying,
+                                struct lxg_error *error) {
   double direction = 0.0;
   members->runs = 0;
   members->run[0] = 0;
@@ -125,7 +126,7 @@ enum lxg_status members_key(struct members *members, const struct keying *keying
   return LXG_OK;
 }
 
-double members_number(const struct members *members, int number, struct place place) {
+double lxg_members_number(const struct members *members, int number, struct place place) {
   const double *value = members->number[number] + place.segment;
   return value[0] + place.fraction * (value[1] - value[0]);
 }
@@ -151,7 +152,8 @@ static bool find_in(const double key[], size_t first, size_t last, double wanted
   return true;
 }
 
-bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place) {
+bool lxg_members_find(const struct members *members, double key, enum lxg_branch branch,
+                      struct place *place) {
   bool found = false;
   double best = 0.0;
   for (size_t r = 0; r < members->runs; r++) {
@@ -159,7 +161,7 @@ bool members_find(const struct members *members, double key, enum lxg_branch bra
     if (!find_in(members->key, members->run[r], members->run[r + 1], key, &here)) {
       continue;
     }
-    const double rate = members_number(members, NUMBER_LN_RATE, here);
+    const double rate = lxg_members_number(members, NUMBER_LN_RATE, here);
     if (!found || (branch == LXG_BRANCH_THIN ? rate < best : rate > best)) {
       *place = here;
       best = rate;
@@ -169,8 +171,8 @@ bool members_find(const struct members *members, double key, enum lxg_branch bra
   return found;
 }
 
-void members_combine(const struct members table[], size_t parameters, const double displacement[],
-                     struct members *sum) {
+void lxg_members_combine(const struct members table[], size_t parameters, const double displacement[],
+                         struct members *sum) {
   double weight[1 + 2 * LXG_PROPAGATION_PARAMETERS] = {1.0};
   for (size_t p = 0; p < parameters; p++) { /* Lagrange's parabola through -1, 0, 1 */
     const double x = displacement[p] / LXG_PROPAGATION_REACH;

@@ -117,16 +117,16 @@ static enum lxg_status evaluate(const void *shared, const struct lxg_uncertainty
     for (size_t p = 0; p < parameters; p++) {
       displacement[p] = lxg_uncertainty_normal(draw, (size_t)engine->model + p, 0);
     }
-    members_place(&own, engine->table[0].count, noise + engine->epochs);
-    members_combine(engine->table, parameters, displacement, &own);
-    const enum lxg_status status = members_key(&own, &engine->keying, error);
+    lxg_members_place(&own, engine->table[0].count, noise + engine->epochs);
+    lxg_members_combine(engine->table, parameters, displacement, &own);
+    const enum lxg_status status = lxg_members_key(&own, &engine->keying, error);
     if (status != LXG_OK) {
       return status;
     }
     members = &own;
   }
-  engine_integrate(engine, members, engine->noise >= 0 ? noise : NULL, calibrate(engine, draw), outputs,
-                   profile);
+  lxg_propagation_integrate(engine, members, engine->noise >= 0 ? noise : NULL, calibrate(engine, draw),
+                            outputs, profile);
   return LXG_OK;
 }
 
@@ -137,27 +137,27 @@ static enum lxg_status prepare(struct engine *engine, struct lxg_error *error) {
   const struct lxg_propagation_input *input = engine->input;
   const struct lxg_family *family = input->family;
   const size_t tables = input->parameters > 0 ? 2 * input->parameters + 2 : 1;
-  const struct reach reach = members_reach(family, &engine->keying, input->branch);
+  const struct reach reach = lxg_members_reach(family, &engine->keying, input->branch);
   const size_t count = reach.last + 1 - reach.first;
   if (count < 2) {
     return lxg_error_set(error, LXG_NO_SOLUTION, "propagation-family",
                          "a family of %zu winds: errors need two or more", count);
   }
-  engine->memory = lxg_alloc(tables * members_size(count), sizeof(double));
+  engine->memory = lxg_alloc(tables * lxg_members_size(count), sizeof(double));
   engine->share = lxg_alloc(count, sizeof(double));
   engine->table = lxg_alloc(tables, sizeof *engine->table);
   if (engine->memory == NULL || engine->share == NULL || engine->table == NULL) {
     return lxg_error_set(error, LXG_MEMORY, "memory", "%zu families: out of memory", tables);
   }
   for (size_t t = 0; t < tables; t++) {
-    members_place(&engine->table[t], count, engine->memory + t * members_size(count));
+    lxg_members_place(&engine->table[t], count, engine->memory + t * lxg_members_size(count));
   }
-  members_shares(family, reach, engine->share);
-  members_fill(&engine->table[0], family, reach, engine->share, input->l_edd, input->l_edd,
-               input->star->gm / input->star->radius);
-  enum lxg_status status = members_key(&engine->table[0], &engine->keying, error);
+  lxg_members_shares(family, reach, engine->share);
+  lxg_members_fill(&engine->table[0], family, reach, engine->share, input->l_edd, input->l_edd,
+                   input->star->gm / input->star->radius);
+  enum lxg_status status = lxg_members_key(&engine->table[0], &engine->keying, error);
   if (status == LXG_OK && input->parameters > 0) {
-    status = propagation_trace(input, &engine->keying, engine->share, engine->table + 1, error);
+    status = lxg_propagation_trace(input, &engine->keying, engine->share, engine->table + 1, error);
   }
   return status;
 }
@@ -170,22 +170,22 @@ static enum lxg_status check_interpolation(const struct engine *engine, struct l
   struct members own;
   double displacement[LXG_PROPAGATION_PARAMETERS], interpolated[LXG_PROPAGATED_OUTPUTS],
       direct[LXG_PROPAGATED_OUTPUTS];
-  double *memory = lxg_alloc(members_size(count), sizeof *memory);
+  double *memory = lxg_alloc(lxg_members_size(count), sizeof *memory);
   if (memory == NULL) {
     return lxg_error_set(error, LXG_MEMORY, "memory", "check of the interpolation: out of memory");
   }
   for (size_t p = 0; p < parameters; p++) {
     displacement[p] = (p % 2 == 0 ? 1.0 : -1.0) * LXG_PROPAGATION_CHECK_SIGMA;
   }
-  members_place(&own, count, memory);
-  members_combine(engine->table, parameters, displacement, &own);
-  enum lxg_status status = members_key(&own, &engine->keying, error);
+  lxg_members_place(&own, count, memory);
+  lxg_members_combine(engine->table, parameters, displacement, &own);
+  enum lxg_status status = lxg_members_key(&own, &engine->keying, error);
   if (status == LXG_OK) {
-    status = members_key(traced, &engine->keying, error);
+    status = lxg_members_key(traced, &engine->keying, error);
   }
   if (status == LXG_OK) {
-    engine_integrate(engine, &own, NULL, 0.0, interpolated, NULL);
-    engine_integrate(engine, traced, NULL, 0.0, direct, NULL);
+    lxg_propagation_integrate(engine, &own, NULL, 0.0, interpolated, NULL);
+    lxg_propagation_integrate(engine, traced, NULL, 0.0, direct, NULL);
     propagation->check_mass = interpolated[LXG_PROPAGATED_MASS] / direct[LXG_PROPAGATED_MASS] - 1.0;
     propagation->check_speed = interpolated[LXG_PROPAGATED_SPEED] / direct[LXG_PROPAGATED_SPEED] - 1.0;
   }
@@ -203,7 +203,7 @@ static enum lxg_status run(struct engine *engine, struct lxg_propagation *propag
       .source_count = propagation->sources,
       .output_count = LXG_PROPAGATED_OUTPUTS,
       .profile_count = epochs * LXG_PROPAGATION_COLUMNS,
-      .workspace_bytes = (epochs + members_size(engine->table[0].count)) * sizeof(double),
+      .workspace_bytes = (epochs + lxg_members_size(engine->table[0].count)) * sizeof(double),
       .evaluate = evaluate,
       .shared = engine};
   const struct lxg_uncertainty_options options = {.seed = plan->seed,
@@ -227,7 +227,7 @@ enum lxg_status lxg_propagation_run(const struct lxg_propagation_input *input,
     engine.per_mag = -0.4 * LXG_LN10;
   }
   propagation->epochs = engine.epochs;
-  enum lxg_status status = engine_sample(&engine, error);
+  enum lxg_status status = lxg_propagation_sample(&engine, error);
   if (status == LXG_OK) {
     status = find_sources(&engine, propagation, error);
   }
@@ -236,7 +236,7 @@ enum lxg_status lxg_propagation_run(const struct lxg_propagation_input *input,
   }
   if (status == LXG_OK) {
     propagation->families = input->parameters > 0 ? 2 * input->parameters + 2 : 1;
-    engine_integrate(&engine, &engine.table[0], NULL, 0.0, propagation->nominal, NULL);
+    lxg_propagation_integrate(&engine, &engine.table[0], NULL, 0.0, propagation->nominal, NULL);
   }
   if (status == LXG_OK && input->parameters > 0) {
     status = check_interpolation(&engine, propagation, error);

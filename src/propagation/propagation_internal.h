@@ -46,37 +46,38 @@ struct keying {
 };
 
 /* Doubles that `count` members need, and laying them out in that memory. */
-size_t members_size(size_t count);
-void members_place(struct members *members, size_t count, double *memory);
+size_t lxg_members_size(size_t count);
+void lxg_members_place(struct members *members, size_t count, double *memory);
 
 /* Winds of a family that count: for magnitudes those of the wanted branch (observed.h), else all. */
 struct reach {
   size_t first, last;
 };
-struct reach members_reach(const struct lxg_family *family, const struct keying *keying,
-                           enum lxg_branch branch);
+struct reach lxg_members_reach(const struct lxg_family *family, const struct keying *keying,
+                               enum lxg_branch branch);
 
 /* Where each of these winds stands between first and last, 0 to 1 in arc length. */
-void members_shares(const struct lxg_family *family, struct reach reach, double share[]);
+void lxg_members_shares(const struct lxg_family *family, struct reach reach, double share[]);
 
 /* Fills from the members of a family at given shares; `l_edd` is the nominal one, `escape` G M/R_0 [erg g^-1]. */
-void members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
-                  const double share[], double l_edd, double own_l_edd, double escape);
+void lxg_members_fill(struct members *members, const struct lxg_family *family, struct reach reach,
+                      const double share[], double l_edd, double own_l_edd, double escape);
 
 /* Keys and runs from the numbers. LXG_LIMIT "propagation-runs" when the key turns round too often. */
-enum lxg_status members_key(struct members *members, const struct keying *keying, struct lxg_error *error);
+enum lxg_status lxg_members_key(struct members *members, const struct keying *keying,
+                                struct lxg_error *error);
 
 /* The member with a key and the smallest or largest rate; false if there is none. */
-bool members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place);
-double members_number(const struct members *members, int number, struct place place);
+bool lxg_members_find(const struct members *members, double key, enum lxg_branch branch, struct place *place);
+double lxg_members_number(const struct members *members, int number, struct place place);
 
 /* Weighted sum of tables: nominal, and two of each parameter at displacements in sigma. */
-void members_combine(const struct members table[], size_t parameters, const double displacement[],
-                     struct members *sum);
+void lxg_members_combine(const struct members table[], size_t parameters, const double displacement[],
+                         struct members *sum);
 
 /* Traces the families and fills the tables: [1 + 2 parameters + 1], the last the check's. */
-enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
-                                  const double share[], struct members table[], struct lxg_error *error);
+enum lxg_status lxg_propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
+                                      const double share[], struct members table[], struct lxg_error *error);
 
 /* One time at which winds are evaluated. */
 struct sample {
@@ -100,10 +101,10 @@ struct engine {
 };
 
 /* Times and nominal keys. */
-enum lxg_status engine_sample(struct engine *engine, struct lxg_error *error);
+enum lxg_status lxg_propagation_sample(struct engine *engine, struct lxg_error *error);
 
 /* Integrals and numbers of the epochs for given members; noise [epochs] in units of the key or NULL. */
-void engine_integrate(const struct engine *engine, const struct members *members, const double noise[],
-                      double shift, double outputs[], double profile[]);
+void lxg_propagation_integrate(const struct engine *engine, const struct members *members,
+                               const double noise[], double shift, double outputs[], double profile[]);
 
 #endif

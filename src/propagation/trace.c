@@ -34,9 +34,10 @@ static enum lxg_status trace_one(const struct share *share, size_t i, struct lxg
   }
   if (status == LXG_OK) {
     const struct lxg_star *star = &node->model.star;
-    members_fill(&share->table[i], &family, members_reach(&family, share->keying, share->input->branch),
-                 share->place, share->input->l_edd,
-                 lxg_star_eddington_luminosity(star, &node->model.composition), star->gm / star->radius);
+    lxg_members_fill(&share->table[i], &family,
+                     lxg_members_reach(&family, share->keying, share->input->branch), share->place,
+                     share->input->l_edd, lxg_star_eddington_luminosity(star, &node->model.composition),
+                     star->gm / star->radius);
   }
   lxg_family_free(&family);
   lxg_wind_solver_destroy(solver);
@@ -52,8 +53,8 @@ static void *trace_share(void *argument) {
   return NULL;
 }
 
-enum lxg_status propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
-                                  const double place[], struct members table[], struct lxg_error *error) {
+enum lxg_status lxg_propagation_trace(const struct lxg_propagation_input *input, const struct keying *keying,
+                                      const double place[], struct members table[], struct lxg_error *error) {
   enum { THREADS_MOST = 2 * LXG_PROPAGATION_PARAMETERS + 1 };
   const size_t count = 2 * input->parameters + 1;
   const size_t threads = input->threads < count ? input->threads : count;
