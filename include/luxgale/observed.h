@@ -50,6 +50,7 @@ struct lxg_observed {
   struct lxg_distance distance;
   double a_v, a_v_error; /* [mag] */
   double r_v;
+  double a_ratio;                   /* A_band/A_V of the law */
   double a_band;                    /* extinction in the band [mag] */
   double zero_point_error;          /* shared by all points [mag] */
   size_t windows;                   /* stretches of time left out by the case */

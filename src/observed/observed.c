@@ -29,9 +29,7 @@ void lxg_observed_destroy(struct lxg_observed *observed) {
 }
 
 double lxg_observed_shift(const struct lxg_observed *observed, double distance, double a_v) {
-  /* the law is linear in A_V */
-  const double a_band = observed->a_v > 0.0 ? observed->a_band * a_v / observed->a_v : 0.0;
-  return lxg_distance_modulus(distance) + a_band;
+  return lxg_distance_modulus(distance) + observed->a_ratio * a_v; /* the law is linear in A_V */
 }
 
 double lxg_observed_nominal_shift(const struct lxg_observed *observed) {

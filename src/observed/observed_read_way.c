@@ -112,6 +112,9 @@ static enum lxg_status read_extinction(struct lxg_node *section, struct lxg_obse
     observed->a_v_error *= observed->r_v;
   }
   status = lxg_extinction_band(observed->band, observed->a_v, observed->r_v, &observed->a_band, error);
+  if (status == LXG_OK) {
+    status = lxg_extinction_band(observed->band, 1.0, observed->r_v, &observed->a_ratio, error);
+  }
   return status == LXG_INPUT ? lxg_keys_locate(node, error) : status;
 }
 

@@ -93,9 +93,7 @@ static double calibrate(const struct engine *engine, const struct lxg_uncertaint
   if (engine->zero_point >= 0) {
     shift = observed->zero_point_error * lxg_uncertainty_normal(draw, (size_t)engine->zero_point, 0);
   }
-  const double per_a_v = observed->a_v > 0.0 ? observed->a_band / observed->a_v : 1.0;
-  shift -= lxg_distance_modulus(distance) - lxg_distance_modulus(observed->distance.mode * LXG_PARSEC) +
-           per_a_v * (a_v - observed->a_v);
+  shift -= lxg_observed_shift(observed, distance, a_v) - lxg_observed_nominal_shift(observed);
   return engine->per_mag * shift + other;
 }
 

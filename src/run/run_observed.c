@@ -163,19 +163,10 @@ enum lxg_status lxg_run_colours(const struct lxg_case *input, const struct lxg_e
 /* ---- luminosities -------------------------------------------------------------------------------------------------- */
 
 enum lxg_status lxg_run_seen(const struct lxg_case *input, const struct lxg_ejecta *ejecta,
-                             struct lxg_history **history, struct lxg_history_excess *excess,
-                             struct lxg_error *error) {
+                             struct lxg_history **history, struct lxg_error *error) {
   double *values = lxg_alloc(2 * ejecta->count, sizeof *values);
   size_t count = 0;
   *history = NULL;
-  *excess = (struct lxg_history_excess){.duration = NAN,
-                                        .first = NAN,
-                                        .last = NAN,
-                                        .radiated = NAN,
-                                        .energy_above = NAN,
-                                        .mean_ratio = NAN,
-                                        .peak_ratio = NAN,
-                                        .peak_time = NAN};
   if (values == NULL) {
     return lxg_error_set(error, LXG_MEMORY, "memory", "%zu epochs: out of memory", ejecta->count);
   }
@@ -193,9 +184,6 @@ enum lxg_status lxg_run_seen(const struct lxg_case *input, const struct lxg_ejec
                                           .luminosity = values + ejecta->count,
                                           .gap_fraction = input->settings.gap_fraction};
     status = lxg_history_create(&rows, history, error);
-    if (status == LXG_OK) {
-      status = lxg_history_excess(*history, LXG_HISTORY_VALUE, input->l_edd, excess, error);
-    }
   }
   lxg_free(values);
   return status;
