@@ -14,6 +14,7 @@
 static const double edge_share = 1e-9; /* an edge is located to this share of its interval */
 static const double jump_factor =
     1.5; /* a panel over which Mdot changes more than this however short is a jump */
+static const double slope_share = 1e-5; /* step for slopes along a family, share of its arc length */
 
 /* Rates that are integrated over time. */
 enum { RATE_MASS, RATE_KINETIC, RATE_MOMENTUM, RATE_LIFTING, RATE_RADIATED, RATES };
@@ -23,6 +24,7 @@ struct engine {
   const struct lxg_family_index *index;
   const struct lxg_family_index *above; /* of the second family, or NULL */
   const struct lxg_history *history;
+  const struct lxg_track *track; /* in place of the history; NULL: none */
   const struct lxg_ejecta_options *options;
   enum lxg_family_quantity key;
   double escape_energy;
@@ -57,24 +59,56 @@ static const struct lxg_family *family_at(const struct engine *engine, double ti
   return lxg_family_blend_at(options->blend, log(parameter.luminosity));
 }
 
-static struct moment moment_at(struct engine *engine, double time) {
-  struct moment m = {.time = time};
+/* Member by the luminosity of the history. */
+static void take_history(struct engine *engine, struct moment *m) {
   struct lxg_history_value value = {0};
-  lxg_history_at(engine->history, LXG_HISTORY_VALUE, time, &value);
-  m.luminosity = value.luminosity;
-  m.time_scale = value.time_scale;
-  m.porous = engine->options->above != NULL && value.luminosity > engine->options->limit;
-  const bool changing = engine->options->blend != NULL && (m.porous || engine->options->above == NULL);
+  lxg_history_at(engine->history, LXG_HISTORY_VALUE, m->time, &value);
+  m->luminosity = value.luminosity;
+  m->time_scale = value.time_scale;
+  m->porous = engine->above != NULL && value.luminosity > engine->options->limit;
+  const bool changing = engine->options->blend != NULL && (m->porous || engine->options->above == NULL);
   struct lxg_family_index *own = NULL;
   if (changing &&
-      lxg_family_index_create(family_at(engine, time, m.porous), engine->key, &own, NULL) != LXG_OK) {
+      lxg_family_index_create(family_at(engine, m->time, m->porous), engine->key, &own, NULL) != LXG_OK) {
     engine->failed = true; /* out of memory */
   }
-  const struct lxg_family_index *index = changing ? own : m.porous ? engine->above : engine->index;
-  m.members =
-      index == NULL ? 0 : lxg_family_index_branch(index, value.luminosity, engine->options->branch, &m.place);
+  const struct lxg_family_index *index = changing ? own : m->porous ? engine->above : engine->index;
+  m->members = index == NULL
+                   ? 0
+                   : lxg_family_index_branch(index, value.luminosity, engine->options->branch, &m->place);
   lxg_family_index_destroy(own);
-  m.rate[RATE_RADIATED] = value.luminosity;
+  m->rate[RATE_RADIATED] = value.luminosity;
+}
+
+/* Member by the arc length of the track. What changes there is the wind: its time scale is that of the mass-loss rate. */
+static void take_track(const struct engine *engine, struct moment *m) {
+  double arc = 0.0, slope = 0.0;
+  m->luminosity = NAN;
+  m->time_scale = INFINITY;
+  if (!lxg_track_at(engine->track, m->time, &arc, &slope)) {
+    return;
+  }
+  const double span = engine->family->arc[engine->family->count - 1];
+  const double step = slope_share * span;
+  struct lxg_family_place low, high;
+  m->members = 1;
+  lxg_family_at(engine->family, arc, &m->place);
+  lxg_family_at(engine->family, fmax(arc - step, 0.0), &low);
+  lxg_family_at(engine->family, fmin(arc + step, span), &high);
+  const double change = slope *
+                        log(high.value[LXG_FAMILY_MASS_LOSS_RATE] / low.value[LXG_FAMILY_MASS_LOSS_RATE]) /
+                        (fmin(arc + step, span) - fmax(arc - step, 0.0));
+  m->luminosity = m->place.value[LXG_FAMILY_PHOTOSPHERE_LUMINOSITY];
+  m->time_scale = change != 0.0 ? 1.0 / fabs(change) : INFINITY;
+}
+
+static struct moment moment_at(struct engine *engine, double time) {
+  struct moment m = {.time = time};
+  if (engine->track != NULL) {
+    take_track(engine, &m);
+  } else {
+    take_history(engine, &m);
+  }
   if (m.members > 0) {
     const double rate = m.place.value[LXG_FAMILY_MASS_LOSS_RATE],
                  v = m.place.value[LXG_FAMILY_TERMINAL_SPEED];
@@ -194,8 +228,10 @@ static void epoch_fill(const struct engine *engine, const struct moment *m, stru
                                      .place = m->place,
                                      .mass = engine->total[RATE_MASS]};
   if (m->members == 0) {
-    epoch->reason =
-        lxg_family_missing(m->porous ? engine->options->above : engine->family, engine->key, m->luminosity);
+    epoch->reason = engine->track != NULL
+                        ? LXG_WIND_NOT_FOUND
+                        : lxg_family_missing(m->porous ? engine->options->above : engine->family, engine->key,
+                                             m->luminosity);
     epoch->place.arc = NAN;
     for (size_t i = 0; i < LXG_FAMILY_COUNT; i++) {
       epoch->place.value[i] = NAN;
@@ -240,6 +276,31 @@ static void conclude(const struct engine *engine, struct lxg_ejecta *ejecta) {
   ejecta->largest_jump = engine->largest_jump;
 }
 
+/* Goes through the epochs in order of time. */
+static enum lxg_status go_through(struct engine *engine, const double time[], size_t count,
+                                  struct lxg_ejecta *ejecta, struct lxg_error *error) {
+  ejecta->epoch = lxg_alloc(count, sizeof *ejecta->epoch);
+  if (ejecta->epoch == NULL) {
+    return lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory for %zu epochs", count);
+  }
+  ejecta->count = count;
+  struct moment before = {0};
+  for (size_t i = 0; i < count; i++) {
+    const struct moment now = moment_at(engine, time[i]);
+    if (i > 0) {
+      cover(engine, &before, &now, engine->options->depth / 4);
+    }
+    epoch_fill(engine, &now, &ejecta->epoch[i]);
+    count_epoch(ejecta, &ejecta->epoch[i]);
+    before = now;
+  }
+  conclude(engine, ejecta);
+  return LXG_OK;
+}
+
+static const struct lxg_ejecta empty = {
+    .peak_rate = NAN, .peak_rate_time = NAN, .peak_speed = NAN, .peak_speed_time = NAN};
+
 enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct lxg_history *history,
                                    double escape_energy, const struct lxg_ejecta_options *options,
                                    struct lxg_ejecta *ejecta, struct lxg_error *error) {
@@ -254,43 +315,39 @@ enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct
                           .first = NAN,
                           .last = NAN,
                           .largest_jump = 1.0};
-  *ejecta =
-      (struct lxg_ejecta){.peak_rate = NAN, .peak_rate_time = NAN, .peak_speed = NAN, .peak_speed_time = NAN};
+  *ejecta = empty;
   enum lxg_status status = lxg_family_index_create(family, engine.key, &index, error);
   if (status == LXG_OK && engine.options->above != NULL) {
     status = lxg_family_index_create(engine.options->above, engine.key, &above, error);
   }
-  if (status != LXG_OK) {
-    lxg_family_index_destroy(index);
-    return status;
+  if (status == LXG_OK) {
+    engine.index = index;
+    engine.above = above;
+    status = go_through(&engine, history->time, history->count, ejecta, error);
   }
-  ejecta->epoch = lxg_alloc(history->count, sizeof *ejecta->epoch);
-  if (ejecta->epoch == NULL) {
-    lxg_family_index_destroy(above);
-    lxg_family_index_destroy(index);
-    return lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory for %zu epochs", history->count);
-  }
-  engine.index = index;
-  engine.above = above;
-  ejecta->count = history->count;
-  struct moment before = {0};
-  for (size_t i = 0; i < history->count; i++) {
-    const struct moment now = moment_at(&engine, history->time[i]);
-    if (i > 0) {
-      cover(&engine, &before, &now, engine.options->depth / 4);
-    }
-    epoch_fill(&engine, &now, &ejecta->epoch[i]);
-    count_epoch(ejecta, &ejecta->epoch[i]);
-    before = now;
-  }
-  conclude(&engine, ejecta);
   lxg_family_index_destroy(above);
   lxg_family_index_destroy(index);
-  if (engine.failed) {
+  if (status == LXG_OK && engine.failed) {
     lxg_ejecta_free(ejecta);
-    return lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory");
+    status = lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory");
   }
-  return LXG_OK;
+  return status;
+}
+
+enum lxg_status lxg_ejecta_follow(const struct lxg_family *family, const struct lxg_track *track,
+                                  const double time[], size_t count, double escape_energy,
+                                  const struct lxg_ejecta_options *options, struct lxg_ejecta *ejecta,
+                                  struct lxg_error *error) {
+  const struct lxg_ejecta_options standard = lxg_ejecta_options_default();
+  struct engine engine = {.family = family,
+                          .track = track,
+                          .options = options != NULL ? options : &standard,
+                          .escape_energy = escape_energy,
+                          .first = NAN,
+                          .last = NAN,
+                          .largest_jump = 1.0};
+  *ejecta = empty;
+  return go_through(&engine, time, count, ejecta, error);
 }
 
 void lxg_ejecta_free(struct lxg_ejecta *ejecta) {

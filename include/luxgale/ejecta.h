@@ -14,6 +14,7 @@
 #include "luxgale/family.h"
 #include "luxgale/history.h"
 #include "luxgale/status.h"
+#include "luxgale/track.h"
 
 #include <stdbool.h>
 #include <stddef.h>
@@ -68,6 +69,14 @@ struct lxg_ejecta_options lxg_ejecta_options_default(void);
 enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct lxg_history *history,
                                    double escape_energy, const struct lxg_ejecta_options *options,
                                    struct lxg_ejecta *ejecta, struct lxg_error *error);
+
+/* The same along a track of the family, at `count` epochs [s], strictly increasing: luminosities are those of the photosphere,
+ * NaN without a wind (and nothing radiated then), time scales those of the mass-loss rate. Epochs without a wind have the
+ * reason LXG_WIND_NOT_FOUND, which the caller knows better. The track decides between members: each epoch counts one. */
+enum lxg_status lxg_ejecta_follow(const struct lxg_family *family, const struct lxg_track *track,
+                                  const double time[], size_t count, double escape_energy,
+                                  const struct lxg_ejecta_options *options, struct lxg_ejecta *ejecta,
+                                  struct lxg_error *error);
 void lxg_ejecta_free(struct lxg_ejecta *ejecta);
 
 #endif

@@ -147,6 +147,11 @@ enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct 
                                    enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
                                    size_t *count, struct lxg_error *error);
 
+/* Winds solved one by one as a family whose arc lengths the caller states (strictly increasing, for instance their times): what
+ * lies between two of them is interpolated as in a traced one, without its tolerance. It shares no held quantity. LXG_MEMORY. */
+enum lxg_status lxg_family_gather(const struct lxg_wind winds[], const double arc[], size_t count,
+                                  double l_edd, struct lxg_family *family, struct lxg_error *error);
+
 /* Key of a quantity, e.g. "mass_loss_rate"; NULL beyond the list. */
 const char *lxg_family_key(enum lxg_family_quantity quantity);
 

@@ -148,7 +148,7 @@ struct lxg_history_reading {
   double gap_fraction;                       /* as in struct lxg_history_rows */
 };
 
-/* Reads the section `luminosity` of a case; absent: `*history` is NULL and LXG_OK. LXG_INPUT with the place in the case or in the
+/* Reads the section `luminosity` of a case; absent, or of kind `magnitude` (observed.h): `*history` is NULL and LXG_OK. LXG_INPUT with the place in the case or in the
  * table ("luminosity-unused" for a key that the kind has no use for, "not-available", those of documents, tables and
  * histories), LXG_IO, LXG_MEMORY. */
 enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_history_reading *reading,

@@ -18,8 +18,11 @@
 #include "luxgale/ejecta.h"
 #include "luxgale/family.h"
 #include "luxgale/history.h"
+#include "luxgale/observed.h"
 #include "luxgale/opacity.h"
 #include "luxgale/opacity_table.h"
+#include "luxgale/propagation.h"
+#include "luxgale/relations.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
 #include "luxgale/table.h"
@@ -104,9 +107,45 @@ enum lxg_status lxg_report_epoch_flow(struct lxg_table *table, const struct lxg_
 /* `ejecta:`, `energy:`, `epochs:`. */
 void lxg_report_ejecta(struct lxg_node *root, const struct lxg_ejecta *ejecta);
 
-/* Warnings about the ejecta and the history: thin-wind, not-steady, several-branches, luminosity-gap, super-eddington-open. */
+/* Warnings about the ejecta and the history (may be NULL): thin-wind, not-steady, several-branches, luminosity-gap, super-eddington-open. */
 void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejecta *ejecta,
                                 const struct lxg_history *history, const struct lxg_history_excess *excess);
+
+/* ---- observers (report_observed.c) */
+
+/* `case.luminosity` of a light curve: what of it counts, distance, extinction. */
+void lxg_report_observation(struct lxg_node *section, const struct lxg_observed *observed);
+
+/* `light:` how many epochs each light served; a NULL course: all of them the way of the case. */
+void lxg_report_served(struct lxg_node *root, const struct lxg_observed *observed,
+                       const struct lxg_observed_course *course);
+
+/* `light_curve:` peak, decline times, gaps, and published relations beside them; `mean_speed` of the ejecta [cm s^-1] or NaN. */
+void lxg_report_light_curve(struct lxg_node *root, const struct lxg_observed *observed,
+                            const struct lxg_light_decline *decline, double mean_speed);
+void lxg_report_no_light_curve(struct lxg_node *root, const struct lxg_error *error);
+
+/* Columns absolute_magnitude_mag and light of the epoch table. */
+enum lxg_status lxg_report_observed_columns(const struct lxg_observed *observed,
+                                            const struct lxg_observed_course *course, struct lxg_table *table,
+                                            struct lxg_error *error);
+
+/* ---- errors (report_errors.c) */
+
+/* `case.errors:` nothing unless wanted. */
+void lxg_report_error_plan(struct lxg_node *section, const struct lxg_propagation_plan *plan);
+
+/* `errors:` intervals, split of the variance, correlations; or the reason why there are none. */
+void lxg_report_errors(struct lxg_node *root, const struct lxg_propagation_plan *plan,
+                       const struct lxg_propagation *errors);
+/* Warnings: errors-interpolation, errors-failed, errors-windless (`windless`: epochs without a wind at the stated values). */
+void lxg_report_error_warnings(struct lxg_node *warnings, const struct lxg_propagation *errors,
+                               size_t windless);
+void lxg_report_no_errors(struct lxg_node *root, const struct lxg_error *error);
+
+/* Columns NAME_lo and NAME_hi of the epoch table. */
+enum lxg_status lxg_report_error_columns(const struct lxg_propagation *errors, struct lxg_table *table,
+                                         struct lxg_error *error);
 
 /* `decline:` the numbers of a whole eruption; or verdict none with the reason that the error holds. */
 void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline);

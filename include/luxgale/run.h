@@ -18,8 +18,10 @@
 #include "luxgale/family.h"
 #include "luxgale/files.h"
 #include "luxgale/history.h"
+#include "luxgale/observed.h"
 #include "luxgale/opacity.h"
 #include "luxgale/porosity.h"
+#include "luxgale/propagation.h"
 #include "luxgale/settings.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
@@ -44,8 +46,10 @@ struct lxg_case {
   struct lxg_burning burning;
   struct lxg_wind_hold hold[2]; /* in the order of the case; with burning the dark base comes first */
   size_t holds;
-  struct lxg_history *history;
+  struct lxg_history *history;   /* luminosities; NULL where members come from magnitudes or colours */
   struct lxg_history *reduction; /* factor of the law `reduction` against time; NULL: constant */
+  struct lxg_observed *observed; /* a light curve; NULL unless the kind is `magnitude` */
+  struct lxg_propagation_plan errors;
   bool history_from_decline; /* the history is the wind phase of the eruption, computed when it is needed */
   struct lxg_decline_options decline;
   struct lxg_family_options limits; /* of the families that are traced */

@@ -192,7 +192,13 @@ enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_hist
   if (status != LXG_OK) {
     return status;
   }
-  if (kind == KIND_MAGNITUDE || kind == KIND_DECLINE) { /* an eruption is the business of a whole case */
+  if (kind == KIND_MAGNITUDE) { /* the file's keys are those of observed.h, which reads it */
+    status = refuse_keys(section, of_formula, sizeof of_formula / sizeof of_formula[0], kinds[kind], error);
+    return status == LXG_OK ? refuse_keys(section, of_table + 1, sizeof of_table / sizeof of_table[0] - 1,
+                                          kinds[kind], error)
+                            : status;
+  }
+  if (kind == KIND_DECLINE) { /* an eruption is the business of a whole case */
     return lxg_keys_refuse(node, error);
   }
   if (kind == KIND_FORMULA) {

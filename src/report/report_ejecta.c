@@ -96,7 +96,7 @@ void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejec
       ejecta->unsteady);
   warn_count(warnings, "several-branches", "several winds have the luminosity; the chosen branch was taken",
              ejecta->ambiguous);
-  for (size_t i = 0; i < history->gap_count; i++) {
+  for (size_t i = 0; history != NULL && i < history->gap_count; i++) {
     struct lxg_node *gap = lxg_report_warn(warnings, "luminosity-gap",
                                            "long pause without data; luminosities there are a guess");
     lxg_node_add_number(gap, "from_d", history->gap[i].start / LXG_DAY);

@@ -66,6 +66,10 @@ static void echo_decline(const struct lxg_case *input, struct lxg_node *section)
 
 static void echo_history(const struct lxg_case *input, struct lxg_node *section) {
   const struct lxg_history *history = input->history;
+  if (input->observed != NULL) {
+    lxg_report_observation(section, input->observed);
+    return;
+  }
   if (input->history_from_decline) {
     lxg_node_add_text(lxg_node_add_mapping(section, "luminosity"), "kind", "decline");
   }
@@ -139,6 +143,7 @@ void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
     lxg_report_held(hold, input->hold[i].quantity, input->hold[i].value);
   }
   echo_history(input, section);
+  lxg_report_error_plan(section, &input->errors);
   echo_driving(input, section);
   echo_settings(input, section);
   echo_files(input, section);

@@ -27,7 +27,7 @@ static enum lxg_status read_version(struct lxg_node *root, struct lxg_error *err
 
 /* Sections whose commands are not in this version. */
 static enum lxg_status refuse_later(struct lxg_node *root, struct lxg_error *error) {
-  static const char *const later[] = {"lines", "errors"};
+  static const char *const later[] = {"lines"};
   for (size_t i = 0; i < sizeof later / sizeof later[0]; i++) {
     struct lxg_node *node = lxg_node_find(root, later[i]);
     if (!lxg_node_is_none(node)) {
@@ -115,6 +115,25 @@ static enum lxg_status read_body(struct lxg_case *input, struct lxg_node *root, 
   return status;
 }
 
+/* What an observer brings: a light curve, which may be a luminosity history, and errors. */
+static enum lxg_status read_observation(struct lxg_case *input, struct lxg_node *root,
+                                        struct lxg_error *error) {
+  struct lxg_node *luminosity = lxg_node_find(root, "luminosity");
+  enum lxg_status status =
+      lxg_observed_read(luminosity, &input->files, &input->composition, &input->observed, error);
+  if (status == LXG_OK && input->observed != NULL && input->observed->way == LXG_OBSERVED_CORRECTION) {
+    status = lxg_observed_history(input->observed, input->settings.gap_fraction, &input->history, error);
+    if (status == LXG_NO_SOLUTION) { /* an epoch outside the table of corrections is a gap of the input */
+      return lxg_node_error(luminosity, error, "bolometric-range",
+                            "the table of corrections does not cover the light curve");
+    }
+  }
+  return status == LXG_OK
+             ? lxg_propagation_read(lxg_node_find(root, "errors"), &input->settings, input->dwarf,
+                                    input->hold, input->holds, &input->errors, error)
+             : status;
+}
+
 static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *error) {
   struct lxg_node *root = lxg_document_root(input->document);
   enum lxg_status status = lxg_keys_check(root, "", error);
@@ -148,6 +167,9 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
                                      &input->reduction, error);
   }
   if (status == LXG_OK) {
+    status = read_observation(input, root, error);
+  }
+  if (status == LXG_OK) {
     status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
   }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
@@ -179,6 +201,7 @@ void lxg_case_free(struct lxg_case *input) {
   if (input != NULL) {
     lxg_history_destroy(input->history);
     lxg_history_destroy(input->reduction);
+    lxg_observed_destroy(input->observed);
     lxg_opacity_destroy(input->opacity);
     lxg_files_free(&input->files);
     lxg_document_destroy(input->document);

@@ -6,6 +6,7 @@
 #define LUXGALE_RUN_INTERNAL_H
 
 #include "luxgale/ejecta.h"
+#include "luxgale/report.h"
 #include "luxgale/run.h"
 
 /* Opens a report with `program`, `case` and `star`. */
@@ -67,5 +68,29 @@ bool lxg_run_tired(const struct lxg_case *input);
 
 /* The model behind every wind of the case. */
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
+
+/* Magnitudes along a traced family, and the ejecta. */
+enum lxg_status lxg_run_course(const struct lxg_case *input, const struct lxg_ejecta_options *options,
+                               const struct lxg_family *family, struct lxg_observed_course *course,
+                               struct lxg_ejecta *ejecta, struct lxg_error *error);
+
+/* A wind for every epoch with a colour, gathered into `family`, and the ejecta. */
+enum lxg_status lxg_run_colours(const struct lxg_case *input, const struct lxg_ejecta_options *options,
+                                struct lxg_wind_solver *solver, struct lxg_family *family,
+                                struct lxg_ejecta *ejecta, struct lxg_error *error);
+
+/* Photospheric luminosities of the epochs that have one as a history; NULL without any. */
+enum lxg_status lxg_run_seen(const struct lxg_case *input, const struct lxg_ejecta *ejecta,
+                             struct lxg_history **history, struct lxg_error *error);
+
+/* `light_curve:` of the report; `mean_speed` of the ejecta [cm s^-1] or NaN. */
+enum lxg_status lxg_run_light_curve(const struct lxg_case *input, double mean_speed, struct lxg_node *root,
+                                    struct lxg_error *error);
+
+/* Monte Carlo of the case's errors along its history, or along a course (NULL without). Errors of lxg_propagation_run, and
+ * "errors-range", "star-dwarf-mass" where a parameter two sigma off is impossible. */
+enum lxg_status lxg_run_errors(const struct lxg_case *input, const struct lxg_run_options *options,
+                               const struct lxg_family *family, const struct lxg_observed_course *course,
+                               struct lxg_propagation *propagation, struct lxg_error *error);
 
 #endif

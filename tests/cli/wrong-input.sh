@@ -87,6 +87,13 @@ edited "term without its scale" '5a luminosity: {kind: formula, end: 9, terms: [
   'time_scale.*\[key-missing\]'
 edited "unknown isotope" '5a luminosity: {kind: formula, end: 9, terms: [{law: decay, mass: 1e-5, isotopes: {56Ni: 1}}]}' \
   '56Ni.*22Na.*\[isotope-unknown\]'
+edited "magnitudes without a distance" '5a luminosity: {kind: magnitude, file: m.csv, ebv: 0.1}' 'case.yaml:6:.*\[luminosity-distance\]'
+edited "magnitudes without extinction" '5a luminosity: {kind: magnitude, file: m.csv, distance: 3}' 'case.yaml:6:.*\[luminosity-extinction\]'
+edited "unknown light" '5a luminosity: {kind: magnitude, file: m.csv, distance: 3, ebv: 0, light: lamp}' 'lamp.*photosphere.*\[value-word\]'
+edited "errors under another name" '5a errors: {mass: 0.1}' 'errors.*mass.*\[key-unknown\]'
+edited "error of what is not held" '5a errors: {hold: {envelope_mass: 1e-6}}' 'errors.hold.envelope_mass.*\[errors-unheld\]'
+edited "error below zero" '5a errors: {star: {mass: -0.1}}' 'errors.star.mass.*\[errors-sigma\]'
+edited "one draw" '5a errors: {draws: 1}' 'errors.draws.*\[value-range\]'
 edited "anchors" 's/1.0 Msun/\&m 1.0/' 'case.yaml:2:.*\[document-refused\]'
 edited "tags" 's/1.0 Msun/!!float 1.0/' 'case.yaml:2:.*\[document-refused\]'
 edited "second document" '5a ---\ncase: 1' '\[document-refused\]'

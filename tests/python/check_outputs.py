@@ -102,6 +102,25 @@ def decline(folder):
     check("decline: ends", report["wind_duration_d"] < report["turnoff_d"] == time[-1])
 
 
+def observer(folder):
+    """Light curve with errors: intervals in order and around the value, shares of the variance, columns read by astropy with units."""
+    report = outburst(folder, "observer.yaml")
+    epochs = table(os.path.join(folder, "epochs.ecsv"))
+    for name in ("mass_loss_rate_msun_yr", "terminal_speed_km_s", "photosphere_temperature_k", "luminosity_erg_s"):
+        low, value, high = (number(epochs[name + end]) for end in ("_lo", "", "_hi"))
+        check(f"observer: interval of {name}", np.all((low <= value) & (value <= high)))
+        check(f"observer: unit of {name}", epochs[name + "_lo"].unit == epochs[name].unit)
+    for name, one in report["errors"]["results"].items():
+        ends = [one[key] for key in ("lo95", "lo68", "median", "hi68", "hi95")]
+        check(f"observer: order of {name}", ends == sorted(ends), str(ends))
+    shares = [one["total"] for one in report["errors"]["variance"]["ejected_mass_msun"].values() if isinstance(one, dict)]
+    check("observer: shares of the variance", 0.9 < sum(shares) < 1.5, str(shares))
+    # extinction, distance and black body by hand: first epoch
+    flux = 3640e-23 * 10 ** (-0.4 * (8.29 - 5 * np.log10(310) - number(epochs["absolute_magnitude_mag"])[0]))
+    check("observer: A_V", np.isclose(-2.5 * np.log10(flux / 3640e-23), 3.1 * 0.35, rtol=2e-3))
+    return report
+
+
 def forms():
     """The same tree as YAML and as JSON, for strict readers."""
     first = yaml.safe_load(run("wind", "wind.yaml"))
@@ -122,6 +141,7 @@ def main():
         nova = outburst(folder, "quickstart.yaml")
         golden("quickstart", nova)
         golden("supergiant", outburst(folder, "supergiant.yaml"))
+        golden("observer", observer(folder))
         golden("no-wind", yaml.safe_load(run("outburst", "no-wind.yaml", status=1)))
         outburst(folder, "reference.yaml")
         decline(folder)
