@@ -15,8 +15,12 @@
 #include "luxgale/family.h"
 #include "luxgale/files.h"
 #include "luxgale/history.h"
+#include "luxgale/linefit.h"
+#include "luxgale/lines.h"
+#include "luxgale/mass.h"
 #include "luxgale/opacity.h"
 #include "luxgale/porosity.h"
+#include "luxgale/profile.h"
 #include "luxgale/settings.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
@@ -41,6 +45,11 @@ struct lxg_case {
   struct lxg_wind_hold hold[2]; /* in the order of the case */
   size_t holds;
   struct lxg_history *history;
+  struct lxg_lines_section lines;
+  struct lxg_linefit_range fit; /* held_low, held_high: factors of the held value */
+  bool fit_asked;
+  struct lxg_profile_requests profiles;
+  struct lxg_mass_section mass;
   struct lxg_settings settings;
 };
 
@@ -61,6 +70,9 @@ struct lxg_run_options {
   enum lxg_branch branch; /* which of several winds with the same held values */
   bool epochs;            /* fill results.epochs */
   bool structure;         /* fill results.structure */
+  bool profiles;          /* fill results.profiles */
+  bool shell;             /* fill results.shell */
+  bool velocities;        /* fill results.velocities */
   size_t threads;         /* threads for independent work; 0 means 1. Results do not depend on it */
   bool seeded;            /* take `seed` in place of the case's errors.seed */
   long long seed;         /* of the random numbers, >= 0 */
@@ -71,6 +83,9 @@ struct lxg_results {
   struct lxg_document *report;
   struct lxg_table *epochs;    /* NULL if not asked for */
   struct lxg_table *structure; /* NULL if not asked for, or if there is no wind */
+  struct lxg_table *profiles;   /* NULL if not asked for */
+  struct lxg_table *shell;      /* the same */
+  struct lxg_table *velocities; /* the same */
   bool answered;               /* false: the physics gave no answer, or only part; the report says why */
   struct lxg_error why;        /* the reason then */
 };
@@ -93,5 +108,13 @@ enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_ru
 /* `outburst`: a luminosity history through a family of winds to the ejecta. */
 enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_run_options *options,
                                  struct lxg_results *results, struct lxg_error *error);
+
+/* `lines`: measured line speeds against the winds and shells of a history, or against one wind; line profiles; fit. */
+enum lxg_status lxg_run_lines(const struct lxg_case *input, const struct lxg_run_options *options,
+                              struct lxg_results *results, struct lxg_error *error);
+
+/* `mass`: ejected mass from an expansion speed by every method that the case allows. */
+enum lxg_status lxg_run_mass(const struct lxg_case *input, const struct lxg_run_options *options,
+                             struct lxg_results *results, struct lxg_error *error);
 
 #endif

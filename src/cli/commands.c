@@ -9,7 +9,8 @@
 static const struct cli_command commands[] = {
     {"outburst", "turn a luminosity history into winds and an ejecta report",
      "star, composition, one held quantity and `luminosity`",
-     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH), lxg_run_outburst,
+     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_SHELL) | CLI_BIT(CLI_VELOCITIES),
+     lxg_run_outburst,
      "luxgale outburst --epochs epochs.ecsv -o report.yaml examples/quickstart.yaml"},
     {"wind", "solve one steady wind", "star, composition and two held quantities",
      CLI_COMMON | CLI_BIT(CLI_STRUCTURE) | CLI_BIT(CLI_BRANCH), lxg_run_wind,
@@ -17,6 +18,14 @@ static const struct cli_command commands[] = {
     {"family", "trace all winds that share one held quantity, from the thin to the thick end",
      "star, composition and one held quantity", CLI_COMMON | CLI_BIT(CLI_EPOCHS), lxg_run_family,
      "luxgale family -o family.ecsv examples/quickstart.yaml"},
+    {"lines", "compare line speeds with winds and swept shells; line profiles; fit of the stellar mass",
+     "`lines`, star, composition, and one held quantity with `luminosity` or two without",
+     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_PROFILES) | CLI_BIT(CLI_SHELL) |
+         CLI_BIT(CLI_VELOCITIES),
+     lxg_run_lines, "luxgale lines --epochs rows.ecsv examples/spectroscopist.yaml"},
+    {"mass", "ejected mass from an expansion speed by every method that the data allow",
+     "`mass`, star and composition", CLI_COMMON | CLI_BIT(CLI_BRANCH), lxg_run_mass,
+     "luxgale mass examples/spectroscopist.yaml"},
     {"star", "radius, Eddington luminosity, escape speed, tiring rate, ignition mass", "star and composition",
      CLI_COMMON, lxg_run_star, "luxgale star examples/quickstart.yaml"},
 };
@@ -29,8 +38,11 @@ static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_SET] = {"set", 0, "PATH=VALUE",
                  "Replace or add a key of the case, e.g. star.mass='1.1 Msun'; repeatable."},
     [CLI_EPOCHS] = {"epochs", 0, "FILE",
-                    "Write the table (ECSV), one row an epoch or a member of the family."},
+                    "Write the table (ECSV), one row an epoch, a member of the family, or a line measurement."},
     [CLI_STRUCTURE] = {"structure", 0, "FILE", "Write the wind's radial structure (ECSV)."},
+    [CLI_PROFILES] = {"profiles", 0, "FILE", "Write the computed line profiles (ECSV)."},
+    [CLI_SHELL] = {"shell", 0, "FILE", "Write the swept shell against time (ECSV)."},
+    [CLI_VELOCITIES] = {"velocities", 0, "FILE", "Write the ejected mass by speed, dM/dv (ECSV)."},
     [CLI_BRANCH] =
         {"branch", 0, "thin|thick",
          "Where several winds have the held values: the one with the smallest (thin, the default) or largest "

@@ -25,7 +25,7 @@ static enum lxg_status read_version(struct lxg_node *root, struct lxg_error *err
 
 /* Sections whose commands are not in this version. */
 static enum lxg_status refuse_later(struct lxg_node *root, struct lxg_error *error) {
-  static const char *const later[] = {"lines", "errors"};
+  static const char *const later[] = {"errors"};
   for (size_t i = 0; i < sizeof later / sizeof later[0]; i++) {
     struct lxg_node *node = lxg_node_find(root, later[i]);
     if (!lxg_node_is_none(node)) {
@@ -68,6 +68,21 @@ static enum lxg_status read_body(struct lxg_case *input, struct lxg_node *root, 
   return status;
 }
 
+static enum lxg_status read_observations(struct lxg_case *input, struct lxg_node *root,
+                                         struct lxg_error *error) {
+  struct lxg_node *lines = lxg_node_find(root, "lines");
+  enum lxg_status status = lxg_lines_section_read(lines, &input->files, &input->lines, error);
+  if (status == LXG_OK) {
+    status = lxg_linefit_read(lxg_node_find(lines, "fit"), input->star.gm, input->dwarf, &input->fit,
+                              &input->fit_asked, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_profile_requests_read(lxg_node_find(lines, "profiles"), &input->profiles, error);
+  }
+  return status == LXG_OK ? lxg_mass_read(lxg_node_find(root, "mass"), input->l_edd, &input->mass, error)
+                          : status;
+}
+
 static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *error) {
   struct lxg_node *root = lxg_document_root(input->document);
   enum lxg_status status = lxg_keys_check(root, "", error);
@@ -97,6 +112,9 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
                                                 .gap_fraction = input->settings.gap_fraction};
     status = lxg_history_read(lxg_node_find(root, "luminosity"), &reading, &input->history, error);
   }
+  if (status == LXG_OK) {
+    status = read_observations(input, root, error);
+  }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
 }
 
@@ -123,6 +141,8 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
 void lxg_case_free(struct lxg_case *input) {
   if (input != NULL) {
     lxg_history_destroy(input->history);
+    lxg_lines_section_free(&input->lines);
+    lxg_profile_requests_free(&input->profiles);
     lxg_opacity_destroy(input->opacity);
     lxg_files_free(&input->files);
     lxg_document_destroy(input->document);

@@ -15,30 +15,14 @@ struct outburst {
   struct lxg_family family;
   struct lxg_history_excess excess; /* above L_Edd */
   struct lxg_ejecta ejecta;
+  struct lxg_speeds *speeds; /* of the same winds: what the shell is made of */
 };
 
 static void outburst_free(struct outburst *outburst) {
+  lxg_speeds_destroy(outburst->speeds);
   lxg_ejecta_free(&outburst->ejecta);
   lxg_family_free(&outburst->family);
   lxg_wind_solver_destroy(outburst->solver);
-}
-
-static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
-  if (input->history == NULL) {
-    return lxg_error_set(error, LXG_INPUT, "key-missing",
-                         "%s: error: luminosity: `outburst` needs a luminosity history",
-                         lxg_document_name(input->document));
-  }
-  const enum lxg_held driven =
-      input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
-  const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
-  if (status == LXG_OK && input->hold[0].quantity == driven) {
-    return lxg_error_set(
-        error, LXG_INPUT, "hold-dependent",
-        "%s: error: hold.%s: the luminosity history gives this already; hold another quantity",
-        lxg_document_name(input->document), lxg_held_name(driven));
-  }
-  return status;
 }
 
 /* The pipeline: opacity and star -> winds -> family; history -> time above L_Edd; both -> ejecta. */
@@ -58,6 +42,10 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
   if (status == LXG_OK) {
     status = lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius,
                                 &ejecting, &outburst->ejecta, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_speeds_create(&outburst->family, input->history, options->branch, input->star.radius, NULL,
+                               &outburst->speeds, error);
   }
   return status;
 }
@@ -88,7 +76,7 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
   struct outburst outburst = {0};
   enum lxg_status status = lxg_run_begin(input, "outburst", results, error);
   if (status == LXG_OK) {
-    status = require(input, error);
+    status = lxg_run_require_history(input, "outburst", error);
   }
   if (status == LXG_OK) {
     status = compute(input, options, &outburst, error);
@@ -104,9 +92,10 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
     judge(&outburst.ejecta, results);
     lxg_report_super_eddington(root, &outburst.excess);
     lxg_report_ejecta(root, &outburst.ejecta);
+    status = lxg_run_shell(input, options, outburst.speeds, results, error);
     lxg_report_family(root, &outburst.family);
     lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst.ejecta, input->history, &outburst.excess);
-    if (options->epochs) {
+    if (status == LXG_OK && options->epochs) {
       status = lxg_report_epoch_table(&outburst.ejecta, input->l_edd, &results->epochs, error);
     }
   }

@@ -1,0 +1,95 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * linefit.h - the stellar mass and the held quantity that fit measured line speeds best.
+ *
+ * Model: the speed of each row as a function of the stellar mass M and of one held quantity h (with a history: the one it
+ * needs; with two held quantities: the second). Winds are costly, so the speeds are tabulated on a grid in (ln M, ln h), one
+ * family of winds a node (or one a mass, where two are held), and interpolated by a C1 cubic (Catmull-Rom) in ln v. Where a
+ * corner of a cell has no wind the cell has no answer. The fit itself is fit.h; its best point is solved once more without the
+ * grid, and the largest difference, in sigma, is part of the result.
+ *
+ * A white dwarf's radius follows its mass; any other radius stays. Luminosities stay as they are in erg/s.
+ * Call order: lxg_linefit_grid -> lxg_linefit_run -> lxg_linefit_grid_free.
+ */
+#ifndef LUXGALE_LINEFIT_H
+#define LUXGALE_LINEFIT_H
+
+#include "luxgale/family.h"
+#include "luxgale/fit.h"
+#include "luxgale/history.h"
+#include "luxgale/lines.h"
+#include "luxgale/status.h"
+#include "luxgale/wind.h"
+
+#include <stdbool.h>
+#include <stddef.h>
+
+/* What the speeds depend on; everything is borrowed. */
+struct lxg_linefit_model {
+  struct lxg_wind_model wind;         /* its star is replaced by that of each mass */
+  bool dwarf;                         /* the radius follows the mass */
+  struct lxg_wind_hold hold[2];       /* the value of hold[fitted] is replaced */
+  size_t holds;                       /* 1 with a history, else 2 */
+  const struct lxg_history *history;  /* NULL with two held quantities */
+  enum lxg_branch branch;             /* which of several winds */
+  double family_tolerance;            /* of the families (family.h) */
+  const struct lxg_lines *lines;      /* rows to be compared */
+  const struct lxg_line_map *map;     /* which speed a kind is compared with */
+  const struct lxg_line_assignment *assignment; /* which rows belong to the shell; NULL: none */
+};
+
+/* Index in hold[] of the fitted quantity: 0 with a history, else 1. */
+size_t lxg_linefit_fitted(const struct lxg_linefit_model *model);
+
+/* speed[k * rows + i] [cm s^-1] of row i for mass gm [cm^3 s^-2] and held[k] [CGS]; NaN where there is none. Rows compared with
+ * rest are 0. LXG_INPUT for a mass without a white dwarf; failures of the solver other than "there is none"; LXG_MEMORY. */
+enum lxg_status lxg_linefit_speeds(const struct lxg_linefit_model *model, double gm, size_t count,
+                                   const double held[], double speed[], struct lxg_error *error);
+
+/* Where to look. */
+struct lxg_linefit_range {
+  double mass_low, mass_high; /* G M [cm^3 s^-2], low < high */
+  double held_low, held_high; /* [CGS], 0 < low < high */
+  size_t masses, values;      /* nodes of the grid, 4 .. 64 each */
+};
+
+struct lxg_linefit_grid {
+  struct lxg_linefit_range range;
+  size_t rows;
+  double *ln_speed; /* [(mass * values + value) * rows + row]; NaN where there is none */
+  size_t nodes;     /* with a speed for every row that has one anywhere */
+};
+
+/* Fills the grid. LXG_INPUT "linefit-range"; failures of lxg_linefit_speeds. */
+enum lxg_status lxg_linefit_grid(const struct lxg_linefit_model *model, const struct lxg_linefit_range *range,
+                                 struct lxg_linefit_grid *grid, struct lxg_error *error);
+void lxg_linefit_grid_free(struct lxg_linefit_grid *grid);
+
+/* Interpolated speed of a row [cm s^-1]; NaN outside the grid or in a cell without an answer. */
+double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double held, size_t row);
+
+enum { LXG_LINEFIT_MASS, LXG_LINEFIT_HELD, LXG_LINEFIT_PARAMETERS };
+
+struct lxg_linefit_result {
+  struct lxg_fit_result fit; /* estimate[0] = G M [cm^3 s^-2], [1] = held quantity [CGS] */
+  size_t rows;               /* used */
+  double start_chi2;         /* at the best node of the grid */
+  char warning[256];         /* what the data do not constrain; "" if nothing */
+};
+
+/* Fits measured speeds velocity[rows] +- error[rows] [cm s^-1]; rows without a model speed anywhere, or use[i] false, are left
+ * out. scatter [cm s^-1] is added to each error in quadrature. Starts at the best node. LXG_NO_SOLUTION "linefit-empty" if no
+ * node has speeds for all used rows, "linefit-rows" without rows; failures of lxg_fit_run. */
+enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const double velocity[],
+                                const double error_1sigma[], const bool use[], double scatter,
+                                struct lxg_linefit_result *result, struct lxg_error *error);
+
+struct lxg_node;
+
+/* Reads the section `lines.fit` of a case into a range around the case's own mass [cm^3 s^-2]; held_low and held_high are left as
+ * the factors 1/held_factor and held_factor. `*asked` is false when the section is absent. LXG_INPUT with the place
+ * ("linefit-mass", "value-range"). */
+enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf,
+                                 struct lxg_linefit_range *range, bool *asked, struct lxg_error *error);
+
+#endif

@@ -1,0 +1,120 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * linefit.c - least squares on a grid of model speeds (see linefit.h).
+ */
+#include "luxgale/linefit.h"
+
+#include "luxgale/memory.h"
+
+#include <math.h>
+#include <string.h>
+
+/* What the residual function reads. */
+struct problem {
+  const struct lxg_linefit_grid *grid;
+  const double *velocity, *sigma; /* [used], scatter included */
+  const size_t *row;              /* [used] place of each used row in the grid */
+  size_t used;
+};
+
+static enum lxg_status residuals(void *context, const double parameter[], double residual[]) {
+  const struct problem *problem = context;
+  for (size_t i = 0; i < problem->used; i++) {
+    const double model = lxg_linefit_at(problem->grid, parameter[LXG_LINEFIT_MASS],
+                                        parameter[LXG_LINEFIT_HELD], problem->row[i]);
+    if (!isfinite(model)) {
+      return LXG_NO_SOLUTION;
+    }
+    residual[i] = (problem->velocity[i] - model) / problem->sigma[i];
+  }
+  return LXG_OK;
+}
+
+static bool has_speeds(const struct lxg_linefit_grid *grid, size_t row) {
+  for (size_t k = 0; k < grid->range.masses * grid->range.values; k++) {
+    if (isfinite(grid->ln_speed[k * grid->rows + row])) {
+      return true;
+    }
+  }
+  return false;
+}
+
+/* Best of all cell centres: the start of the fit. False if no cell has all speeds. */
+static bool best_start(const struct problem *problem, double residual[], double start[2], double *chi2) {
+  const struct lxg_linefit_range *range = &problem->grid->range;
+  bool found = false;
+  for (size_t m = 0; m + 1 < range->masses; m++) {
+    for (size_t k = 0; k + 1 < range->values; k++) {
+      const double at[2] = {
+          range->mass_low *
+              pow(range->mass_high / range->mass_low, ((double)m + 0.5) / (double)(range->masses - 1)),
+          range->held_low *
+              pow(range->held_high / range->held_low, ((double)k + 0.5) / (double)(range->values - 1))};
+      if (residuals((void *)problem, at, residual) != LXG_OK) {
+        continue;
+      }
+      double sum = 0.0;
+      for (size_t i = 0; i < problem->used; i++) {
+        sum += residual[i] * residual[i];
+      }
+      if (!found || sum < *chi2) {
+        found = true;
+        *chi2 = sum;
+        memcpy(start, at, sizeof at);
+      }
+    }
+  }
+  return found;
+}
+
+static enum lxg_status solve(const struct problem *problem, double residual[],
+                             struct lxg_linefit_result *result, struct lxg_error *error) {
+  const struct lxg_linefit_range *range = &problem->grid->range;
+  double start[2] = {0.0, 0.0};
+  if (!best_start(problem, residual, start, &result->start_chi2)) {
+    return lxg_error_set(error, LXG_NO_SOLUTION, "linefit-empty",
+                         "nowhere in the searched range do winds and shells give a speed for all %zu rows",
+                         problem->used);
+  }
+  const struct lxg_fit_parameter parameter[LXG_LINEFIT_PARAMETERS] = {
+      {"stellar mass", LXG_FIT_INTERVAL, start[0], range->mass_low, range->mass_high},
+      {"held quantity", LXG_FIT_INTERVAL, start[1], range->held_low, range->held_high}};
+  const struct lxg_fit_problem fit = {.parameters = LXG_LINEFIT_PARAMETERS,
+                                      .residuals = problem->used,
+                                      .parameter = parameter,
+                                      .residual = residuals,
+                                      .context = (void *)problem};
+  const enum lxg_status status = lxg_fit_run(&fit, NULL, &result->fit, error);
+  if (status == LXG_OK) {
+    lxg_fit_warning(&fit, &result->fit, result->warning, sizeof result->warning);
+  }
+  return status;
+}
+
+enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const double velocity[],
+                                const double error_1sigma[], const bool use[], double scatter,
+                                struct lxg_linefit_result *result, struct lxg_error *error) {
+  memset(result, 0, sizeof *result);
+  double *number = lxg_alloc(3 * grid->rows, sizeof *number);
+  size_t *row = lxg_alloc(grid->rows, sizeof *row);
+  enum lxg_status status = number != NULL && row != NULL
+                               ? LXG_OK
+                               : lxg_error_set(error, LXG_MEMORY, "memory", "fit of lines: out of memory");
+  if (status == LXG_OK) {
+    double *const sigma = &number[grid->rows], *const residual = &number[2 * grid->rows];
+    for (size_t i = 0; i < grid->rows; i++) {
+      if ((use == NULL || use[i]) && has_speeds(grid, i)) {
+        number[result->rows] = velocity[i];
+        sigma[result->rows] = hypot(error_1sigma[i], scatter);
+        row[result->rows++] = i;
+      }
+    }
+    const struct problem problem = {grid, number, sigma, row, result->rows};
+    status = result->rows > 0 ? solve(&problem, residual, result, error)
+                              : lxg_error_set(error, LXG_NO_SOLUTION, "linefit-rows",
+                                              "no row has a model speed in the searched range");
+  }
+  lxg_free(row);
+  lxg_free(number);
+  return status;
+}
