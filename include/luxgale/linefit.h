@@ -8,7 +8,9 @@
  * corner of a cell has no wind the cell has no answer. The fit itself is fit.h; its best point is solved once more without the
  * grid, and the largest difference, in sigma, is part of the result.
  *
- * A white dwarf's radius follows its mass; any other radius stays. Luminosities stay as they are in erg/s.
+ * A white dwarf's radius follows its mass; any other radius stays. The luminosity of a history stays as it is in erg/s, or stays
+ * the same in units of L_Edd. (The base luminosity of a wind lies within a few percent of L_Edd: measured in erg/s it fixes the
+ * mass by itself.)
  * Call order: lxg_linefit_grid -> lxg_linefit_run -> lxg_linefit_grid_free.
  */
 #ifndef LUXGALE_LINEFIT_H
@@ -31,8 +33,10 @@ struct lxg_linefit_model {
   struct lxg_wind_hold hold[2];       /* the value of hold[fitted] is replaced */
   size_t holds;                       /* 1 with a history, else 2 */
   const struct lxg_history *history;  /* NULL with two held quantities */
+  bool follows;                       /* its luminosity is the same in units of L_Edd for every mass */
   enum lxg_branch branch;             /* which of several winds */
   double family_tolerance;            /* of the families (family.h) */
+  double radius_most;                 /* families end at this photospheric radius [cm] */
   const struct lxg_lines *lines;      /* rows to be compared */
   const struct lxg_line_map *map;     /* which speed a kind is compared with */
   const struct lxg_line_assignment *assignment; /* which rows belong to the shell; NULL: none */
@@ -84,12 +88,18 @@ enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const doubl
                                 const double error_1sigma[], const bool use[], double scatter,
                                 struct lxg_linefit_result *result, struct lxg_error *error);
 
+/* The next range, within `whole`: smaller, several times the interval of the best point or some cells of the grid to either side;
+ * or moved, where the best point lies at an end. False if it would be hardly smaller than the grid's. */
+bool lxg_linefit_zoom(const struct lxg_linefit_grid *grid, const struct lxg_linefit_result *result,
+                      const struct lxg_linefit_range *whole, struct lxg_linefit_range *range);
+
 struct lxg_node;
 
 /* Reads the section `lines.fit` of a case into a range around the case's own mass [cm^3 s^-2]; held_low and held_high are left as
- * the factors 1/held_factor and held_factor. `*asked` is false when the section is absent. LXG_INPUT with the place
+ * the factors 1/held_factor and held_factor. `*asked` is false when the section is absent; `*follows` as in the model. LXG_INPUT with the place
  * ("linefit-mass", "value-range"). */
 enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf,
-                                 struct lxg_linefit_range *range, bool *asked, struct lxg_error *error);
+                                 struct lxg_linefit_range *range, bool *asked, bool *follows,
+                                 struct lxg_error *error);
 
 #endif

@@ -118,6 +118,8 @@ struct lxg_report_fit {
   const struct lxg_linefit_result *result; /* NULL: none was found, `why` says so */
   const struct lxg_error *why;
   enum lxg_held held;
+  const struct lxg_linefit_range *whole; /* what was asked for */
+  int zooms;                             /* finer grids after the first; `grid` is the last */
   bool checked;               /* the best point was solved without the grid */
   double interpolation_sigma; /* largest difference of a speed there, in sigma of its row */
 };

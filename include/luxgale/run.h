@@ -47,7 +47,7 @@ struct lxg_case {
   struct lxg_history *history;
   struct lxg_lines_section lines;
   struct lxg_linefit_range fit; /* held_low, held_high: factors of the held value */
-  bool fit_asked;
+  bool fit_asked, fit_follows; /* see lxg_linefit_read */
   struct lxg_profile_requests profiles;
   struct lxg_mass_section mass;
   struct lxg_settings settings;

@@ -25,11 +25,12 @@
 
 struct lxg_speeds; /* opaque; keeps the structures that were asked for. One a thread, as its solver */
 
-/* Winds along a history. Everything is borrowed and must outlive the result. `solver` serves structures only; NULL: there
- * are none. `radius` [cm] is where gas starts to coast. LXG_MEMORY, LXG_LIMIT. */
+/* Winds along a history, whose luminosity is multiplied by `factor`. Everything is borrowed and must outlive the result. `solver`
+ * serves structures only; NULL: there are none. `radius` [cm] is where gas starts to coast. LXG_MEMORY, LXG_LIMIT. */
 enum lxg_status lxg_speeds_create(const struct lxg_family *family, const struct lxg_history *history,
-                                  enum lxg_branch branch, double radius, struct lxg_wind_solver *solver,
-                                  struct lxg_speeds **speeds, struct lxg_error *error);
+                                  double factor, enum lxg_branch branch, double radius,
+                                  struct lxg_wind_solver *solver, struct lxg_speeds **speeds,
+                                  struct lxg_error *error);
 
 /* One wind at all times: a place of the family that shares `hold`. No shell. */
 enum lxg_status lxg_speeds_create_single(const struct lxg_wind_hold *hold,

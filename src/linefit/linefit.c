@@ -118,3 +118,35 @@ enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const doubl
   lxg_free(number);
   return status;
 }
+
+/* ---- zoom --------------------------------------------------------------------------------------------------------- */
+
+static const double zoom_intervals = 6.0; /* half width in half intervals of 68 % */
+static const double zoom_cells = 1.5;     /* half width in cells of the grid at least */
+static const double zoom_least = 0.7;     /* a range that shrinks less than this is not worth its winds */
+
+/* One parameter: new ends of the range; true if it shrinks, or moves because the best point lies at an end that is none of the
+ * whole range. */
+static bool narrow(const struct lxg_fit_estimate *estimate, double low, double high, size_t nodes,
+                   double whole_low, double whole_high, double *new_low, double *new_high) {
+  const double width = log(high / low), cell = width / (double)(nodes - 1), value = estimate->value;
+  const bool closed = estimate->lower_end == LXG_FIT_CROSSED && estimate->upper_end == LXG_FIT_CROSSED;
+  const bool at_end = (low > whole_low && log(value / low) < 0.5 * cell) ||
+                      (high < whole_high && log(high / value) < 0.5 * cell);
+  const double intervals = closed ? zoom_intervals * 0.5 * log(estimate->upper / estimate->lower) : 0.0;
+  const double half = at_end ? 0.5 * width : fmin(0.5 * width, fmax(intervals, zoom_cells * cell));
+  *new_low = fmax(whole_low, value * exp(-half));
+  *new_high = fmin(whole_high, value * exp(half));
+  return at_end || log(*new_high / *new_low) < zoom_least * width;
+}
+
+bool lxg_linefit_zoom(const struct lxg_linefit_grid *grid, const struct lxg_linefit_result *result,
+                      const struct lxg_linefit_range *whole, struct lxg_linefit_range *range) {
+  const struct lxg_linefit_range *old = &grid->range;
+  *range = *whole;
+  const bool mass = narrow(&result->fit.estimate[LXG_LINEFIT_MASS], old->mass_low, old->mass_high, old->masses,
+                           whole->mass_low, whole->mass_high, &range->mass_low, &range->mass_high);
+  const bool held = narrow(&result->fit.estimate[LXG_LINEFIT_HELD], old->held_low, old->held_high, old->values,
+                           whole->held_low, whole->held_high, &range->held_low, &range->held_high);
+  return mass || held;
+}

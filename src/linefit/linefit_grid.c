@@ -42,12 +42,13 @@ static enum lxg_status row_speeds(const struct lxg_linefit_model *model, struct 
 }
 
 /* One family for one held value, followed along the history. */
-static enum lxg_status along_history(const struct lxg_linefit_model *model, double radius,
+static enum lxg_status along_history(const struct lxg_linefit_model *model, const struct lxg_star *star,
                                      struct lxg_wind_solver *solver, const struct lxg_family *family,
                                      double speed[], struct lxg_error *error) {
   struct lxg_speeds *speeds = NULL;
-  enum lxg_status status =
-      lxg_speeds_create(family, model->history, model->branch, radius, solver, &speeds, error);
+  const double factor = model->follows ? star->gm / model->wind.star.gm : 1.0; /* L_Edd goes with the mass */
+  enum lxg_status status = lxg_speeds_create(family, model->history, factor, model->branch, star->radius,
+                                             solver, &speeds, error);
   if (status == LXG_OK) {
     status = row_speeds(model, speeds, speed, error);
   }
@@ -77,6 +78,7 @@ static enum lxg_status trace(const struct lxg_linefit_model *model, struct lxg_w
                              struct lxg_error *error) {
   struct lxg_family_options options = lxg_family_options_default();
   options.tolerance = model->family_tolerance;
+  options.radius_most = model->radius_most;
   return lxg_family_trace(solver, hold, &options, family, error);
 }
 
@@ -100,7 +102,7 @@ static enum lxg_status single_winds(const struct lxg_linefit_model *model, struc
 }
 
 /* A history: one family a held value. */
-static enum lxg_status histories(const struct lxg_linefit_model *model, double radius,
+static enum lxg_status histories(const struct lxg_linefit_model *model, const struct lxg_star *star,
                                  struct lxg_wind_solver *solver, size_t count, const double held[],
                                  double speed[], struct lxg_error *error) {
   enum lxg_status status = LXG_OK;
@@ -109,7 +111,7 @@ static enum lxg_status histories(const struct lxg_linefit_model *model, double r
     const struct lxg_wind_hold hold = {model->hold[0].quantity, held[k]};
     status = trace(model, solver, &hold, &family, error);
     if (status == LXG_OK) {
-      status = along_history(model, radius, solver, &family, &speed[k * model->lines->count], error);
+      status = along_history(model, star, solver, &family, &speed[k * model->lines->count], error);
     }
     lxg_family_free(&family);
   }
@@ -133,7 +135,7 @@ enum lxg_status lxg_linefit_speeds(const struct lxg_linefit_model *model, double
   }
   if (status == LXG_OK) {
     status = model->history != NULL
-                 ? histories(model, wind.star.radius, solver, count, held, speed, error)
+                 ? histories(model, &wind.star, solver, count, held, speed, error)
                  : single_winds(model, solver, count, held, speed, error);
     if (is_answer(status)) {
       lxg_error_clear(error);

@@ -11,7 +11,7 @@
 /* Defaults: range of masses around the case's own, factor of the held quantity, nodes of the grid. */
 static const double mass_share_low = 0.8, mass_share_high = 1.2, held_factor = 1.4;
 static const double dwarf_mass_most = 1.4; /* [Msun]; the radius vanishes at 1.454 */
-enum { NODES = 6, NODES_LEAST = 4, NODES_MOST = 64 };
+enum { NODES = 7, NODES_LEAST = 4, NODES_MOST = 64 };
 
 static enum lxg_status read_count(struct lxg_node *section, const char *key, size_t *count,
                                   struct lxg_error *error) {
@@ -26,7 +26,10 @@ static enum lxg_status read_count(struct lxg_node *section, const char *key, siz
 }
 
 enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf,
-                                 struct lxg_linefit_range *range, bool *asked, struct lxg_error *error) {
+                                 struct lxg_linefit_range *range, bool *asked, bool *follows,
+                                 struct lxg_error *error) {
+  static const char *const words[] = {"absolute", "eddington"};
+  size_t word = 0;
   *asked = !lxg_node_is_none(section);
   double low = mass_share_low * gm / LXG_GRAVITATION, high = mass_share_high * gm / LXG_GRAVITATION;
   double factor = held_factor;
@@ -49,6 +52,10 @@ enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf
   if (status == LXG_OK) {
     status = read_count(section, "values", &range->values, error);
   }
+  if (status == LXG_OK) {
+    status = lxg_node_get_word(section, "luminosity", words, 2, &word, error);
+  }
+  *follows = word == 1;
   if (status != LXG_OK) {
     return status;
   }

@@ -213,18 +213,25 @@ static void add_parameter(struct lxg_node *section, const char *name, double uni
   lxg_node_add_bool(one, "constrained", estimate->constrained);
 }
 
-static void add_searched(struct lxg_node *section, const struct lxg_report_fit *fit) {
-  const struct lxg_linefit_range *range = &fit->grid->range;
+static void add_range(struct lxg_node *section, const char *key, const struct lxg_report_fit *fit,
+                      const struct lxg_linefit_range *range) {
   const struct report_unit *unit = lxg_report_unit(fit->held);
-  struct lxg_node *searched = lxg_node_add_mapping(section, "searched");
+  struct lxg_node *searched = lxg_node_add_mapping(section, key);
   struct lxg_node *pair = lxg_node_add_sequence(searched, "mass_msun");
   lxg_node_add_number(pair, NULL, range->mass_low / LXG_SOLAR_GM);
   lxg_node_add_number(pair, NULL, range->mass_high / LXG_SOLAR_GM);
   pair = lxg_node_add_sequence(searched, unit->name);
   lxg_node_add_number(pair, NULL, range->held_low / unit->factor);
   lxg_node_add_number(pair, NULL, range->held_high / unit->factor);
-  lxg_node_add_integer(searched, "nodes", (long long)(range->masses * range->values));
-  lxg_node_add_integer(searched, "nodes_with_all_speeds", (long long)fit->grid->nodes);
+}
+
+static void add_searched(struct lxg_node *section, const struct lxg_report_fit *fit) {
+  const struct lxg_linefit_range *range = &fit->grid->range;
+  add_range(section, "searched", fit, fit->whole);
+  add_range(section, "grid", fit, range);
+  lxg_node_add_integer(section, "grid_nodes", (long long)(range->masses * range->values));
+  lxg_node_add_integer(section, "grid_nodes_with_all_speeds", (long long)fit->grid->nodes);
+  lxg_node_add_integer(section, "grid_zooms", fit->zooms);
 }
 
 void lxg_report_fit(struct lxg_node *root, const struct lxg_report_fit *fit) {

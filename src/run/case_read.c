@@ -74,7 +74,7 @@ static enum lxg_status read_observations(struct lxg_case *input, struct lxg_node
   enum lxg_status status = lxg_lines_section_read(lines, &input->files, &input->lines, error);
   if (status == LXG_OK) {
     status = lxg_linefit_read(lxg_node_find(lines, "fit"), input->star.gm, input->dwarf, &input->fit,
-                              &input->fit_asked, error);
+                              &input->fit_asked, &input->fit_follows, error);
   }
   if (status == LXG_OK) {
     status = lxg_profile_requests_read(lxg_node_find(lines, "profiles"), &input->profiles, error);

@@ -64,7 +64,7 @@ static enum lxg_status find_winds(const struct lxg_case *input, const struct lxg
     spectrum->winds = 1;
     status = lxg_family_trace(spectrum->solver, &input->hold[0], NULL, &spectrum->family, error);
     return status == LXG_OK
-               ? lxg_speeds_create(&spectrum->family, input->history, options->branch, input->star.radius,
+               ? lxg_speeds_create(&spectrum->family, input->history, 1.0, options->branch, input->star.radius,
                                    spectrum->solver, &spectrum->speeds, error)
                : status;
   }
@@ -124,7 +124,7 @@ static enum lxg_status report_lines(const struct lxg_case *input, const struct l
     status = lxg_report_lines_table(&report, &results->epochs, error);
   }
   if (status == LXG_OK && input->fit_asked) {
-    status = lxg_run_fit(input, options, spectrum->assignment, warnings, results, error);
+    status = lxg_run_fit(input, options, spectrum->speeds, spectrum->assignment, warnings, results, error);
   }
   return status;
 }

@@ -20,14 +20,16 @@ static enum lxg_status create(struct lxg_wind_solver *solver, struct lxg_speeds 
 }
 
 enum lxg_status lxg_speeds_create(const struct lxg_family *family, const struct lxg_history *history,
-                                  enum lxg_branch branch, double radius, struct lxg_wind_solver *solver,
-                                  struct lxg_speeds **speeds, struct lxg_error *error) {
+                                  double factor, enum lxg_branch branch, double radius,
+                                  struct lxg_wind_solver *solver, struct lxg_speeds **speeds,
+                                  struct lxg_error *error) {
   enum lxg_status status = create(solver, speeds, error);
   if (status != LXG_OK) {
     return status;
   }
   (*speeds)->family = family;
   (*speeds)->history = history;
+  (*speeds)->factor = factor;
   (*speeds)->branch = branch;
   (*speeds)->hold = family->hold;
   (*speeds)->key =
@@ -78,7 +80,7 @@ void lxg_speeds_place(const struct lxg_wind *wind, struct lxg_family_place *plac
 bool lxg_speeds_find(const struct lxg_speeds *speeds, double time, struct lxg_family_place *place) {
   struct lxg_history_value value;
   return lxg_history_at(speeds->history, LXG_HISTORY_VALUE, time, &value) == LXG_OK &&
-         lxg_family_index_branch(speeds->index, value.luminosity, speeds->branch, place) > 0;
+         lxg_family_index_branch(speeds->index, speeds->factor * value.luminosity, speeds->branch, place) > 0;
 }
 
 enum lxg_status lxg_speeds_at(const struct lxg_speeds *speeds, double time, struct lxg_family_place *place,
@@ -94,8 +96,8 @@ enum lxg_status lxg_speeds_at(const struct lxg_speeds *speeds, double time, stru
                          "time = %.10g d: outside the luminosity history, %.10g to %.10g d", time / LXG_DAY,
                          history->time[0] / LXG_DAY, history->time[history->count - 1] / LXG_DAY);
   }
-  if (lxg_family_index_branch(speeds->index, value.luminosity, speeds->branch, place) == 0) {
-    const enum lxg_wind_reason reason = lxg_family_missing(speeds->family, speeds->key, value.luminosity);
+  if (lxg_family_index_branch(speeds->index, speeds->factor * value.luminosity, speeds->branch, place) == 0) {
+    const enum lxg_wind_reason reason = lxg_family_missing(speeds->family, speeds->key, speeds->factor * value.luminosity);
     return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(reason), "no wind at %.10g d: %s",
                          time / LXG_DAY, lxg_wind_reason_text(reason));
   }

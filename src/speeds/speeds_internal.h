@@ -10,6 +10,7 @@
 struct lxg_speeds {
   const struct lxg_family *family; /* NULL for a single wind */
   const struct lxg_history *history;
+  double factor; /* of its luminosity */
   enum lxg_branch branch;
   struct lxg_wind_solver *solver;
   enum lxg_family_quantity key; /* luminosity of the history */
