@@ -6,7 +6,8 @@
  * needs; with two held quantities: the second). Winds are costly, so the speeds are tabulated on a grid in (ln M, ln h), one
  * family of winds a node (or one a mass, where two are held), and interpolated by a C1 cubic (Catmull-Rom) in ln v. Where a
  * corner of a cell has no wind the cell has no answer. The fit itself is fit.h; its best point is solved once more without the
- * grid, and the largest difference, in sigma, is part of the result.
+ * grid, and the largest difference, in sigma, is part of the result. A row has two columns in the grid, the wind's speed for its
+ * kind and the swept shell's, so that it may change its system without new winds.
  *
  * A white dwarf's radius follows its mass; any other radius stays. The luminosity of a history stays as it is in erg/s, or stays
  * the same in units of L_Edd. (The base luminosity of a wind lies within a few percent of L_Edd: measured in erg/s it fixes the
@@ -39,16 +40,20 @@ struct lxg_linefit_model {
   double radius_most;                 /* families end at this photospheric radius [cm] */
   const struct lxg_lines *lines;      /* rows to be compared */
   const struct lxg_line_map *map;     /* which speed a kind is compared with */
-  const struct lxg_line_assignment *assignment; /* which rows belong to the shell; NULL: none */
+  struct lxg_line_assign_settings assign; /* how lxg_linefit_speeds gives rows to wind and shell */
 };
+
+/* Columns of the grid: with a history twice the rows, the shell's after the wind's. */
+size_t lxg_linefit_columns(const struct lxg_linefit_model *model);
 
 /* Index in hold[] of the fitted quantity: 0 with a history, else 1. */
 size_t lxg_linefit_fitted(const struct lxg_linefit_model *model);
 
-/* speed[k * rows + i] [cm s^-1] of row i for mass gm [cm^3 s^-2] and held[k] [CGS]; NaN where there is none. Rows compared with
- * rest are 0. LXG_INPUT for a mass without a white dwarf; failures of the solver other than "there is none"; LXG_MEMORY. */
+/* speed[k * columns + i] [cm s^-1] of column i for mass gm [cm^3 s^-2] and held[k] [CGS]; NaN where there is none, and for rows
+ * compared with rest. assignment[rows] (NULL allowed) receives the systems of the rows for the last held value. LXG_INPUT for a mass without a white dwarf; failures of the solver other than "there is none"; LXG_MEMORY. */
 enum lxg_status lxg_linefit_speeds(const struct lxg_linefit_model *model, double gm, size_t count,
-                                   const double held[], double speed[], struct lxg_error *error);
+                                   const double held[], double speed[],
+                                   struct lxg_line_assignment assignment[], struct lxg_error *error);
 
 /* Where to look. */
 struct lxg_linefit_range {
@@ -59,9 +64,9 @@ struct lxg_linefit_range {
 
 struct lxg_linefit_grid {
   struct lxg_linefit_range range;
-  size_t rows;
-  double *ln_speed; /* [(mass * values + value) * rows + row]; NaN where there is none */
-  size_t nodes;     /* with a speed for every row that has one anywhere */
+  size_t columns;
+  double *ln_speed; /* [(mass * values + value) * columns + column]; NaN where there is none */
+  size_t nodes;     /* with a speed in every column that has one anywhere */
 };
 
 /* Fills the grid. LXG_INPUT "linefit-range"; failures of lxg_linefit_speeds. */
@@ -69,21 +74,21 @@ enum lxg_status lxg_linefit_grid(const struct lxg_linefit_model *model, const st
                                  struct lxg_linefit_grid *grid, struct lxg_error *error);
 void lxg_linefit_grid_free(struct lxg_linefit_grid *grid);
 
-/* Interpolated speed of a row [cm s^-1]; NaN outside the grid or in a cell without an answer. */
-double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double held, size_t row);
+/* Interpolated speed of a column [cm s^-1]; NaN outside the grid or in a cell without an answer. */
+double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double held, size_t column);
 
 enum { LXG_LINEFIT_MASS, LXG_LINEFIT_HELD, LXG_LINEFIT_PARAMETERS };
 
 struct lxg_linefit_result {
   struct lxg_fit_result fit; /* estimate[0] = G M [cm^3 s^-2], [1] = held quantity [CGS] */
-  size_t rows;               /* used */
+  size_t used;               /* columns */
   double start_chi2;         /* at the best node of the grid */
   char warning[256];         /* what the data do not constrain; "" if nothing */
 };
 
-/* Fits measured speeds velocity[rows] +- error[rows] [cm s^-1]; rows without a model speed anywhere, or use[i] false, are left
- * out. scatter [cm s^-1] is added to each error in quadrature. Starts at the best node. LXG_NO_SOLUTION "linefit-empty" if no
- * node has speeds for all used rows, "linefit-rows" without rows; failures of lxg_fit_run. */
+/* Fits measured speeds velocity[columns] +- error[columns] [cm s^-1]; columns without a model speed anywhere, or use[i] false, are
+ * left out. scatter [cm s^-1] is added to each error in quadrature. Starts at the best node. LXG_NO_SOLUTION "linefit-empty" if no
+ * node has speeds in all used columns, "linefit-rows" without any; failures of lxg_fit_run. */
 enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const double velocity[],
                                 const double error_1sigma[], const bool use[], double scatter,
                                 struct lxg_linefit_result *result, struct lxg_error *error);

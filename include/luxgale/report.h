@@ -120,6 +120,7 @@ struct lxg_report_fit {
   enum lxg_held held;
   const struct lxg_linefit_range *whole; /* what was asked for */
   int zooms;                             /* finer grids after the first; `grid` is the last */
+  bool settled;                          /* no row would change its system at the best point */
   bool checked;               /* the best point was solved without the grid */
   double interpolation_sigma; /* largest difference of a speed there, in sigma of its row */
 };

@@ -13,7 +13,7 @@
 struct problem {
   const struct lxg_linefit_grid *grid;
   const double *velocity, *sigma; /* [used], scatter included */
-  const size_t *row;              /* [used] place of each used row in the grid */
+  const size_t *column;           /* [used] place of each in the grid */
   size_t used;
 };
 
@@ -21,7 +21,7 @@ static enum lxg_status residuals(void *context, const double parameter[], double
   const struct problem *problem = context;
   for (size_t i = 0; i < problem->used; i++) {
     const double model = lxg_linefit_at(problem->grid, parameter[LXG_LINEFIT_MASS],
-                                        parameter[LXG_LINEFIT_HELD], problem->row[i]);
+                                        parameter[LXG_LINEFIT_HELD], problem->column[i]);
     if (!isfinite(model)) {
       return LXG_NO_SOLUTION;
     }
@@ -30,9 +30,9 @@ static enum lxg_status residuals(void *context, const double parameter[], double
   return LXG_OK;
 }
 
-static bool has_speeds(const struct lxg_linefit_grid *grid, size_t row) {
+static bool has_speeds(const struct lxg_linefit_grid *grid, size_t column) {
   for (size_t k = 0; k < grid->range.masses * grid->range.values; k++) {
-    if (isfinite(grid->ln_speed[k * grid->rows + row])) {
+    if (isfinite(grid->ln_speed[k * grid->columns + column])) {
       return true;
     }
   }
@@ -95,26 +95,26 @@ enum lxg_status lxg_linefit_run(const struct lxg_linefit_grid *grid, const doubl
                                 const double error_1sigma[], const bool use[], double scatter,
                                 struct lxg_linefit_result *result, struct lxg_error *error) {
   memset(result, 0, sizeof *result);
-  double *number = lxg_alloc(3 * grid->rows, sizeof *number);
-  size_t *row = lxg_alloc(grid->rows, sizeof *row);
-  enum lxg_status status = number != NULL && row != NULL
+  double *number = lxg_alloc(3 * grid->columns, sizeof *number);
+  size_t *column = lxg_alloc(grid->columns, sizeof *column);
+  enum lxg_status status = number != NULL && column != NULL
                                ? LXG_OK
                                : lxg_error_set(error, LXG_MEMORY, "memory", "fit of lines: out of memory");
   if (status == LXG_OK) {
-    double *const sigma = &number[grid->rows], *const residual = &number[2 * grid->rows];
-    for (size_t i = 0; i < grid->rows; i++) {
+    double *const sigma = &number[grid->columns], *const residual = &number[2 * grid->columns];
+    for (size_t i = 0; i < grid->columns; i++) {
       if ((use == NULL || use[i]) && has_speeds(grid, i)) {
-        number[result->rows] = velocity[i];
-        sigma[result->rows] = hypot(error_1sigma[i], scatter);
-        row[result->rows++] = i;
+        number[result->used] = velocity[i];
+        sigma[result->used] = hypot(error_1sigma[i], scatter);
+        column[result->used++] = i;
       }
     }
-    const struct problem problem = {grid, number, sigma, row, result->rows};
-    status = result->rows > 0 ? solve(&problem, residual, result, error)
+    const struct problem problem = {grid, number, sigma, column, result->used};
+    status = result->used > 0 ? solve(&problem, residual, result, error)
                               : lxg_error_set(error, LXG_NO_SOLUTION, "linefit-rows",
                                               "no row has a model speed in the searched range");
   }
-  lxg_free(row);
+  lxg_free(column);
   lxg_free(number);
   return status;
 }

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * linefit_grid.c - model speeds of all rows for one mass, on a grid of masses and held values, and between its nodes (see
+ * linefit_grid.c - model speeds of all columns for one mass, on a grid of masses and held values, and between its nodes (see
  * linefit.h).
  */
 #include "luxgale/linefit.h"
@@ -23,34 +23,37 @@ static bool is_answer(enum lxg_status status) {
   return status == LXG_OK || status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED || status == LXG_DOMAIN;
 }
 
-/* Speeds of all rows from the model speeds of one set of winds. */
-static enum lxg_status row_speeds(const struct lxg_linefit_model *model, struct lxg_speeds *speeds,
-                                  double speed[], struct lxg_error *error) {
+size_t lxg_linefit_columns(const struct lxg_linefit_model *model) {
+  return model->history != NULL ? 2 * model->lines->count : model->lines->count;
+}
+
+/* Columns of one set of winds, and the systems of the rows. */
+static enum lxg_status take_speeds(const struct lxg_linefit_model *model, struct lxg_speeds *speeds,
+                                   double speed[], struct lxg_line_assignment assignment[],
+                                   struct lxg_error *error) {
   const size_t rows = model->lines->count;
-  struct lxg_line_comparison *compared = lxg_alloc(rows, sizeof *compared);
-  struct lxg_line_chi2 chi2;
-  if (compared == NULL) {
-    return lxg_error_set(error, LXG_MEMORY, "memory", "model speeds: out of memory");
-  }
-  const enum lxg_status status = lxg_lines_compare(model->lines, model->map, model->assignment, 0.0,
-                                                   lxg_speeds_velocity, speeds, compared, &chi2, error);
+  const enum lxg_status status = lxg_lines_assign(model->lines, model->map, lxg_speeds_velocity, speeds,
+                                                  &model->assign, assignment, error);
   for (size_t i = 0; i < rows && status == LXG_OK; i++) {
-    speed[i] = compared[i].velocity;
+    speed[i] = assignment[i].wind_velocity;
+    if (model->history != NULL) {
+      speed[rows + i] = assignment[i].shell_velocity;
+    }
   }
-  lxg_free(compared);
   return status;
 }
 
 /* One family for one held value, followed along the history. */
 static enum lxg_status along_history(const struct lxg_linefit_model *model, const struct lxg_star *star,
                                      struct lxg_wind_solver *solver, const struct lxg_family *family,
-                                     double speed[], struct lxg_error *error) {
+                                     double speed[], struct lxg_line_assignment assignment[],
+                                     struct lxg_error *error) {
   struct lxg_speeds *speeds = NULL;
   const double factor = model->follows ? star->gm / model->wind.star.gm : 1.0; /* L_Edd goes with the mass */
   enum lxg_status status = lxg_speeds_create(family, model->history, factor, model->branch, star->radius,
                                              solver, &speeds, error);
   if (status == LXG_OK) {
-    status = row_speeds(model, speeds, speed, error);
+    status = take_speeds(model, speeds, speed, assignment, error);
   }
   lxg_speeds_destroy(speeds);
   return status;
@@ -59,15 +62,16 @@ static enum lxg_status along_history(const struct lxg_linefit_model *model, cons
 /* One wind of the family, the same for all rows. */
 static enum lxg_status one_wind(const struct lxg_linefit_model *model, struct lxg_wind_solver *solver,
                                 const struct lxg_family *family, const struct lxg_family_index *index,
-                                double held, double speed[], struct lxg_error *error) {
+                                double held, double speed[], struct lxg_line_assignment assignment[],
+                                struct lxg_error *error) {
   struct lxg_family_place place;
   struct lxg_speeds *speeds = NULL;
   if (lxg_family_index_branch(index, held, model->branch, &place) == 0) {
-    return LXG_OK; /* the rows stay NaN */
+    return LXG_OK; /* the columns stay NaN */
   }
   enum lxg_status status = lxg_speeds_create_single(&family->hold, &place, solver, &speeds, error);
   if (status == LXG_OK) {
-    status = row_speeds(model, speeds, speed, error);
+    status = take_speeds(model, speeds, speed, assignment, error);
   }
   lxg_speeds_destroy(speeds);
   return status;
@@ -85,7 +89,7 @@ static enum lxg_status trace(const struct lxg_linefit_model *model, struct lxg_w
 /* Two held quantities: one family a mass serves every held value. */
 static enum lxg_status single_winds(const struct lxg_linefit_model *model, struct lxg_wind_solver *solver,
                                     size_t count, const double held[], double speed[],
-                                    struct lxg_error *error) {
+                                    struct lxg_line_assignment assignment[], struct lxg_error *error) {
   struct lxg_family family = {0};
   struct lxg_family_index *index = NULL;
   enum lxg_status status = trace(model, solver, &model->hold[0], &family, error);
@@ -94,7 +98,8 @@ static enum lxg_status single_winds(const struct lxg_linefit_model *model, struc
         lxg_family_index_create(&family, (enum lxg_family_quantity)model->hold[1].quantity, &index, error);
   }
   for (size_t k = 0; k < count && status == LXG_OK; k++) {
-    status = one_wind(model, solver, &family, index, held[k], &speed[k * model->lines->count], error);
+    status = one_wind(model, solver, &family, index, held[k], &speed[k * lxg_linefit_columns(model)],
+                      assignment, error);
   }
   lxg_family_index_destroy(index);
   lxg_family_free(&family);
@@ -104,14 +109,16 @@ static enum lxg_status single_winds(const struct lxg_linefit_model *model, struc
 /* A history: one family a held value. */
 static enum lxg_status histories(const struct lxg_linefit_model *model, const struct lxg_star *star,
                                  struct lxg_wind_solver *solver, size_t count, const double held[],
-                                 double speed[], struct lxg_error *error) {
+                                 double speed[], struct lxg_line_assignment assignment[],
+                                 struct lxg_error *error) {
   enum lxg_status status = LXG_OK;
   for (size_t k = 0; k < count && (status == LXG_OK || is_answer(status)); k++) {
     struct lxg_family family = {0};
     const struct lxg_wind_hold hold = {model->hold[0].quantity, held[k]};
     status = trace(model, solver, &hold, &family, error);
     if (status == LXG_OK) {
-      status = along_history(model, star, solver, &family, &speed[k * model->lines->count], error);
+      status = along_history(model, star, solver, &family, &speed[k * lxg_linefit_columns(model)],
+                      assignment, error);
     }
     lxg_family_free(&family);
   }
@@ -119,12 +126,20 @@ static enum lxg_status histories(const struct lxg_linefit_model *model, const st
 }
 
 enum lxg_status lxg_linefit_speeds(const struct lxg_linefit_model *model, double gm, size_t count,
-                                   const double held[], double speed[], struct lxg_error *error) {
+                                   const double held[], double speed[],
+                                   struct lxg_line_assignment assignment[], struct lxg_error *error) {
+  struct lxg_line_assignment *own = NULL;
   struct lxg_wind_model wind = model->wind;
   struct lxg_wind_solver *solver = NULL;
   enum lxg_status status = LXG_OK;
-  for (size_t i = 0; i < count * model->lines->count; i++) {
+  for (size_t i = 0; i < count * lxg_linefit_columns(model); i++) {
     speed[i] = NAN;
+  }
+  if (assignment == NULL) {
+    assignment = own = lxg_alloc(model->lines->count, sizeof *own);
+    if (own == NULL) {
+      return lxg_error_set(error, LXG_MEMORY, "memory", "model speeds: out of memory");
+    }
   }
   wind.star.gm = gm;
   if (model->dwarf) {
@@ -135,14 +150,15 @@ enum lxg_status lxg_linefit_speeds(const struct lxg_linefit_model *model, double
   }
   if (status == LXG_OK) {
     status = model->history != NULL
-                 ? histories(model, &wind.star, solver, count, held, speed, error)
-                 : single_winds(model, solver, count, held, speed, error);
+                 ? histories(model, &wind.star, solver, count, held, speed, assignment, error)
+                 : single_winds(model, solver, count, held, speed, assignment, error);
     if (is_answer(status)) {
       lxg_error_clear(error);
       status = LXG_OK;
     }
   }
   lxg_wind_solver_destroy(solver);
+  lxg_free(own);
   return status;
 }
 
@@ -170,12 +186,12 @@ static size_t whole_nodes(const struct lxg_linefit_grid *grid) {
   size_t whole = 0;
   for (size_t k = 0; k < nodes; k++) {
     bool all = true;
-    for (size_t i = 0; i < grid->rows && all; i++) {
+    for (size_t i = 0; i < grid->columns && all; i++) {
       bool anywhere = false;
       for (size_t other = 0; other < nodes && !anywhere; other++) {
-        anywhere = isfinite(grid->ln_speed[other * grid->rows + i]);
+        anywhere = isfinite(grid->ln_speed[other * grid->columns + i]);
       }
-      all = !anywhere || isfinite(grid->ln_speed[k * grid->rows + i]);
+      all = !anywhere || isfinite(grid->ln_speed[k * grid->columns + i]);
     }
     whole += all;
   }
@@ -191,8 +207,8 @@ enum lxg_status lxg_linefit_grid(const struct lxg_linefit_model *model, const st
     return status;
   }
   grid->range = *range;
-  grid->rows = model->lines->count;
-  const size_t stride = range->values * grid->rows;
+  grid->columns = lxg_linefit_columns(model);
+  const size_t stride = range->values * grid->columns;
   grid->ln_speed = lxg_alloc(range->masses * stride, sizeof *grid->ln_speed);
   if (grid->ln_speed == NULL) {
     return lxg_error_set(error, LXG_MEMORY, "memory", "grid of the fit: out of memory");
@@ -202,7 +218,7 @@ enum lxg_status lxg_linefit_grid(const struct lxg_linefit_model *model, const st
   }
   for (size_t m = 0; m < range->masses && status == LXG_OK; m++) {
     status = lxg_linefit_speeds(model, node(range->mass_low, range->mass_high, range->masses, m),
-                                range->values, held, &grid->ln_speed[m * stride], error);
+                                range->values, held, &grid->ln_speed[m * stride], NULL, error);
   }
   for (size_t i = 0; i < range->masses * stride && status == LXG_OK; i++) {
     grid->ln_speed[i] = grid->ln_speed[i] > 0.0 ? log(grid->ln_speed[i]) : (double)NAN;
@@ -245,15 +261,15 @@ static bool locate(double low, double high, size_t count, double value, size_t *
   return true;
 }
 
-/* ln v of a row at node (m, k); NaN beyond the grid. m and k are one larger than the node, so that -1 can be said. */
-static double value_at(const struct lxg_linefit_grid *grid, size_t m, size_t k, size_t row) {
+/* ln v of a column at node (m, k); NaN beyond the grid. m and k are one larger than the node, so that -1 can be said. */
+static double value_at(const struct lxg_linefit_grid *grid, size_t m, size_t k, size_t column) {
   if (m == 0 || k == 0 || m > grid->range.masses || k > grid->range.values) {
     return NAN;
   }
-  return grid->ln_speed[((m - 1) * grid->range.values + k - 1) * grid->rows + row];
+  return grid->ln_speed[((m - 1) * grid->range.values + k - 1) * grid->columns + column];
 }
 
-double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double held, size_t row) {
+double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double held, size_t column) {
   const struct lxg_linefit_range *range = &grid->range;
   size_t m = 0, k = 0;
   double s = 0.0, t = 0.0, line[4];
@@ -262,8 +278,8 @@ double lxg_linefit_at(const struct lxg_linefit_grid *grid, double gm, double hel
     return NAN;
   }
   for (size_t i = 0; i < 4; i++) {
-    const double y[4] = {value_at(grid, m + i, k, row), value_at(grid, m + i, k + 1, row),
-                         value_at(grid, m + i, k + 2, row), value_at(grid, m + i, k + 3, row)};
+    const double y[4] = {value_at(grid, m + i, k, column), value_at(grid, m + i, k + 1, column),
+                         value_at(grid, m + i, k + 2, column), value_at(grid, m + i, k + 3, column)};
     line[i] = isfinite(y[1]) && isfinite(y[2]) ? cubic(y, t) : (double)NAN;
   }
   return isfinite(line[1]) && isfinite(line[2]) ? exp(cubic(line, s)) : (double)NAN;

@@ -250,7 +250,7 @@ void lxg_report_fit(struct lxg_node *root, const struct lxg_report_fit *fit) {
   add_parameter(section, unit->name, unit->factor, &result->estimate[LXG_LINEFIT_HELD]);
   lxg_node_add_number(section, "correlation",
                       mass[LXG_LINEFIT_HELD] / sqrt(mass[LXG_LINEFIT_MASS] * held[LXG_LINEFIT_HELD]));
-  lxg_node_add_integer(section, "rows", (long long)fit->result->rows);
+  lxg_node_add_integer(section, "rows", (long long)fit->result->used);
   lxg_node_add_number(section, "chi2", result->chi2);
   lxg_node_add_integer(section, "degrees", result->degrees);
   lxg_node_add_number(section, "p_value", result->p_value);
@@ -266,6 +266,9 @@ void lxg_report_fit_warnings(struct lxg_node *warnings, const struct lxg_report_
   }
   if (fit->result->warning[0] != '\0') {
     lxg_report_warn(warnings, "fit-unconstrained", fit->result->warning);
+  }
+  if (!fit->settled) {
+    lxg_report_warn(warnings, "fit-unsettled", "at the best point some rows would belong to another system, wind or shell");
   }
   if (!fit->checked || fit->interpolation_sigma > interpolation_most) {
     struct lxg_node *warning =

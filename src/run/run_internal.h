@@ -34,8 +34,8 @@ enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run
 
 /* Fit of the stellar mass and the held quantity to the case's lines; reports it and adds warnings. */
 enum lxg_status lxg_run_fit(const struct lxg_case *input, const struct lxg_run_options *options,
-                            const struct lxg_speeds *speeds, const struct lxg_line_assignment *assignment,
-                            struct lxg_node *warnings, struct lxg_results *results, struct lxg_error *error);
+                            struct lxg_speeds *speeds, struct lxg_node *warnings,
+                            struct lxg_results *results, struct lxg_error *error);
 
 /* Computes all line profiles of the case; free with lxg_run_profiles_free. */
 enum lxg_status lxg_run_profiles(const struct lxg_case *input, struct lxg_speeds *speeds,

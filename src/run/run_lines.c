@@ -124,7 +124,7 @@ static enum lxg_status report_lines(const struct lxg_case *input, const struct l
     status = lxg_report_lines_table(&report, &results->epochs, error);
   }
   if (status == LXG_OK && input->fit_asked) {
-    status = lxg_run_fit(input, options, spectrum->speeds, spectrum->assignment, warnings, results, error);
+    status = lxg_run_fit(input, options, spectrum->speeds, warnings, results, error);
   }
   return status;
 }
