@@ -29,17 +29,17 @@
 
 /* What the speeds depend on; everything is borrowed. */
 struct lxg_linefit_model {
-  struct lxg_wind_model wind;         /* its star is replaced by that of each mass */
-  bool dwarf;                         /* the radius follows the mass */
-  struct lxg_wind_hold hold[2];       /* the value of hold[fitted] is replaced */
-  size_t holds;                       /* 1 with a history, else 2 */
-  const struct lxg_history *history;  /* NULL with two held quantities */
-  bool follows;                       /* its luminosity is the same in units of L_Edd for every mass */
-  enum lxg_branch branch;             /* which of several winds */
-  double family_tolerance;            /* of the families (family.h) */
-  double radius_most;                 /* families end at this photospheric radius [cm] */
-  const struct lxg_lines *lines;      /* rows to be compared */
-  const struct lxg_line_map *map;     /* which speed a kind is compared with */
+  struct lxg_wind_model wind;             /* its star is replaced by that of each mass */
+  bool dwarf;                             /* the radius follows the mass */
+  struct lxg_wind_hold hold[2];           /* the value of hold[fitted] is replaced */
+  size_t holds;                           /* 1 with a history, else 2 */
+  const struct lxg_history *history;      /* NULL with two held quantities */
+  bool follows;                           /* its luminosity is the same in units of L_Edd for every mass */
+  enum lxg_branch branch;                 /* which of several winds */
+  double family_tolerance;                /* of the families (family.h) */
+  double radius_most;                     /* families end at this photospheric radius [cm] */
+  const struct lxg_lines *lines;          /* rows to be compared */
+  const struct lxg_line_map *map;         /* which speed a kind is compared with */
   struct lxg_line_assign_settings assign; /* how lxg_linefit_speeds gives rows to wind and shell */
 };
 
@@ -85,6 +85,11 @@ struct lxg_linefit_result {
   double start_chi2;         /* at the best node of the grid */
   char warning[256];         /* what the data do not constrain; "" if nothing */
 };
+
+/* Chooses use[columns]: for each row the wind's column or the shell's, as they fit best in the best cell of the grid (rows of one
+ * component together; components named wind or shell at their word). False if no cell has a speed for every row. */
+bool lxg_linefit_start(const struct lxg_linefit_model *model, const struct lxg_linefit_grid *grid,
+                       bool use[]);
 
 /* Fits measured speeds velocity[columns] +- error[columns] [cm s^-1]; columns without a model speed anywhere, or use[i] false, are
  * left out. scatter [cm s^-1] is added to each error in quadrature. Starts at the best node. LXG_NO_SOLUTION "linefit-empty" if no

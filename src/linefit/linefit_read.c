@@ -31,6 +31,10 @@ enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf
   static const char *const words[] = {"absolute", "eddington"};
   size_t word = 0;
   *asked = !lxg_node_is_none(section);
+  *follows = false;
+  if (!*asked) {
+    return LXG_OK;
+  }
   double low = mass_share_low * gm / LXG_GRAVITATION, high = mass_share_high * gm / LXG_GRAVITATION;
   double factor = held_factor;
   if (dwarf) {
@@ -60,7 +64,7 @@ enum lxg_status lxg_linefit_read(struct lxg_node *section, double gm, bool dwarf
     return status;
   }
   const double most = dwarf ? lxg_star_dwarf_limit_msun() * LXG_SOLAR_MASS : INFINITY;
-  if (*asked && !(low > 0.0 && high > low && high < most)) {
+  if (!(low > 0.0 && high > low && high < most)) {
     return lxg_node_error(section, error, "linefit-mass",
                           "masses from %.6g to %.6g Msun: they rise from above 0%s", low / LXG_SOLAR_MASS,
                           high / LXG_SOLAR_MASS, dwarf ? " and stay below the white-dwarf limit" : "");

@@ -74,6 +74,9 @@ enum lxg_status lxg_lines_section_read(struct lxg_node *section, struct lxg_file
   *read = (struct lxg_lines_section){.lines = NULL};
   lxg_line_map_default(&read->map);
   lxg_line_assign_defaults(&read->assign);
+  if (lxg_node_is_none(section)) {
+    return LXG_OK;
+  }
   enum lxg_status status = lxg_keys_check(section, "lines", error);
   if (status == LXG_OK) {
     status = lxg_node_get_quantity(section, "scatter", LXG_DIMENSION_SPEED, NULL, NULL, &read->assign.scatter,
@@ -82,7 +85,7 @@ enum lxg_status lxg_lines_section_read(struct lxg_node *section, struct lxg_file
   if (status == LXG_OK && !(read->assign.scatter >= 0.0)) {
     return lxg_node_error(lxg_node_find(section, "scatter"), error, "line-scatter", "0 or more");
   }
-  if (status == LXG_OK) {
+  if (status == LXG_OK && !lxg_node_is_none(lxg_node_find(section, "map"))) {
     status = read_map(lxg_node_find(section, "map"), &read->map, error);
   }
   if (status == LXG_OK && !lxg_node_is_none(lxg_node_find(section, "priors"))) {

@@ -61,6 +61,9 @@ enum lxg_status lxg_mass_read(struct lxg_node *section, double l_edd, struct lxg
                               struct lxg_error *error) {
   *read = (struct lxg_mass_section){.present = !lxg_node_is_none(section)};
   const struct lxg_units_context context = {.eddington_luminosity = l_edd};
+  if (!read->present) {
+    return LXG_OK;
+  }
   enum lxg_status status = lxg_keys_check(section, "mass", error);
   for (int q = 0; q < LXG_MASS_QUANTITIES && status == LXG_OK; q++) {
     const char *key = lxg_mass_quantity_name((enum lxg_mass_quantity)q);
@@ -71,7 +74,8 @@ enum lxg_status lxg_mass_read(struct lxg_node *section, double l_edd, struct lxg
     status = read_one(section, key, &context, &datum, error);
     if (status == LXG_OK && datum.given) {
       const double unit = q == LXG_MASS_RADIO_FLUX ? jansky : 1.0;
-      status = lxg_mass_give(&read->data, (enum lxg_mass_quantity)q, datum.value / unit, datum.error / unit, error);
+      status = lxg_mass_give(&read->data, (enum lxg_mass_quantity)q, datum.value / unit, datum.error / unit,
+                             error);
       if (status != LXG_OK) {
         return lxg_keys_locate(lxg_node_find(section, key), error);
       }

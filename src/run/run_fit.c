@@ -2,8 +2,8 @@
  *
  * run_fit.c - the fit of stellar mass and held quantity to the line speeds of a case (see linefit.h).
  *
- * Every row is taken to belong to the wind or to the shell: first by the case's own mass and held value, then by the best point,
- * until both agree. Leaving out what fits neither would make any fit look good.
+ * Every row is taken to belong to the wind or to the shell: first as they fit best in the best cell of the grid, then by the best
+ * point, until both agree. Leaving out what fits neither would make any fit look good.
  */
 #include "luxgale/memory.h"
 #include "luxgale/report.h"
@@ -23,7 +23,8 @@ static const double radius_factor = 8.0;
 static const double interpolation_aim = 0.1;
 enum { ZOOMS = 4, ROUNDS = 6 }; /* finer grids, and changes of system on each, at most */
 
-static struct lxg_linefit_model model_of(const struct lxg_case *input, const struct lxg_run_options *options) {
+static struct lxg_linefit_model model_of(const struct lxg_case *input,
+                                         const struct lxg_run_options *options) {
   struct lxg_linefit_model model = {.wind = lxg_run_model(input),
                                     .dwarf = input->dwarf,
                                     .hold = {input->hold[0], input->hold[1]},
@@ -46,9 +47,9 @@ static struct lxg_linefit_model model_of(const struct lxg_case *input, const str
 /* What the fit works on: measured speeds for every column, and which column of each row is used. */
 struct rows {
   size_t count, columns;
-  double *velocity, *sigma; /* [columns] [cm s^-1] */
-  bool *use;                /* [columns] */
-  double *speed;            /* [columns] at the best point, solved without the grid [cm s^-1] */
+  double *velocity, *sigma;               /* [columns] [cm s^-1] */
+  bool *use;                              /* [columns] */
+  double *speed;                          /* [columns] at the best point, solved without the grid [cm s^-1] */
   struct lxg_line_assignment *assignment; /* [count] there */
 };
 
@@ -74,9 +75,9 @@ static bool take_systems(struct rows *rows) {
   return changed;
 }
 
-/* Rows of the case with the systems that its own winds give them. */
-static enum lxg_status rows_make(const struct lxg_linefit_model *model, struct lxg_speeds *speeds,
-                                 struct rows *rows, struct lxg_error *error) {
+/* Rows of the case, of no system yet. */
+static enum lxg_status rows_make(const struct lxg_linefit_model *model, struct rows *rows,
+                                 struct lxg_error *error) {
   const struct lxg_lines *lines = model->lines;
   *rows = (struct rows){.count = lines->count, .columns = lxg_linefit_columns(model)};
   rows->velocity = lxg_alloc(rows->columns, sizeof *rows->velocity);
@@ -92,12 +93,7 @@ static enum lxg_status rows_make(const struct lxg_linefit_model *model, struct l
     rows->velocity[i] = lines->line[i % lines->count].velocity;
     rows->sigma[i] = lines->line[i % lines->count].error;
   }
-  const enum lxg_status status = lxg_lines_assign(lines, model->map, lxg_speeds_velocity, speeds,
-                                                  &model->assign, rows->assignment, error);
-  if (status == LXG_OK) {
-    take_systems(rows);
-  }
-  return status;
+  return LXG_OK;
 }
 
 /* Solves the best point anew and compares it with the grid. */
@@ -113,8 +109,7 @@ static enum lxg_status check(const struct lxg_linefit_model *model, const struct
   for (size_t i = 0; i < grid->columns && status == LXG_OK; i++) {
     const double interpolated = lxg_linefit_at(grid, gm, held, i);
     if (rows->use[i] && isfinite(interpolated)) {
-      const double off =
-          fabs(rows->speed[i] - interpolated) / hypot(rows->sigma[i], model->assign.scatter);
+      const double off = fabs(rows->speed[i] - interpolated) / hypot(rows->sigma[i], model->assign.scatter);
       report->checked = report->checked && isfinite(off);
       report->interpolation_sigma = fmax(report->interpolation_sigma, off);
     }
@@ -131,7 +126,8 @@ static enum lxg_status fit_rows(const struct lxg_linefit_model *model, const str
   for (int round = 0; round < ROUNDS && status == LXG_OK; round++) {
     report->result = NULL;
     lxg_error_clear(why);
-    status = lxg_linefit_run(grid, rows->velocity, rows->sigma, rows->use, model->assign.scatter, result, why);
+    status =
+        lxg_linefit_run(grid, rows->velocity, rows->sigma, rows->use, model->assign.scatter, result, why);
     if (status == LXG_OK) {
       report->result = result;
       status = check(model, grid, result, rows, report, error);
@@ -158,6 +154,16 @@ static double largest_radius(const struct lxg_case *input, const struct lxg_spee
   return radius;
 }
 
+/* True if an interval ends where a cell has no answer: a finer grid comes nearer to where winds end. */
+static bool is_cut(const struct lxg_linefit_result *result) {
+  bool cut = false;
+  for (size_t i = 0; i < LXG_LINEFIT_PARAMETERS; i++) {
+    const struct lxg_fit_estimate *estimate = &result->fit.estimate[i];
+    cut = cut || estimate->lower_end == LXG_FIT_EDGE || estimate->upper_end == LXG_FIT_EDGE;
+  }
+  return cut;
+}
+
 /* Grid, fit and check, on ever smaller grids until the best point solved anew agrees. `why` tells a fit without answer. */
 static enum lxg_status search(const struct lxg_linefit_model *model, const struct lxg_linefit_range *whole,
                               struct rows *rows, struct lxg_linefit_grid *grid,
@@ -170,8 +176,14 @@ static enum lxg_status search(const struct lxg_linefit_model *model, const struc
     if (status != LXG_OK) {
       return status;
     }
+    if (!lxg_linefit_start(model, grid, rows->use)) {
+      report->result = NULL;
+      return lxg_error_set(why, LXG_NO_SOLUTION, "linefit-empty",
+                           "nowhere in the searched range do winds and shells give a speed for every row");
+    }
     status = fit_rows(model, grid, rows, result, report, why, error);
-    if (status != LXG_OK || (report->checked && report->interpolation_sigma <= interpolation_aim) ||
+    if (status != LXG_OK || report->result == NULL ||
+        (report->checked && report->interpolation_sigma <= interpolation_aim && !is_cut(result)) ||
         report->zooms == ZOOMS || !lxg_linefit_zoom(grid, result, whole, &range)) {
       return status;
     }
@@ -179,7 +191,7 @@ static enum lxg_status search(const struct lxg_linefit_model *model, const struc
 }
 
 enum lxg_status lxg_run_fit(const struct lxg_case *input, const struct lxg_run_options *options,
-                            struct lxg_speeds *speeds, struct lxg_node *warnings,
+                            const struct lxg_speeds *speeds, struct lxg_node *warnings,
                             struct lxg_results *results, struct lxg_error *error) {
   struct lxg_linefit_model model = model_of(input, options);
   const struct lxg_wind_hold *held = &input->hold[lxg_linefit_fitted(&model)];
@@ -197,7 +209,7 @@ enum lxg_status lxg_run_fit(const struct lxg_case *input, const struct lxg_run_o
   whole.held_high *= held->value;
   struct lxg_report_fit report = {.grid = &grid, .why = &why, .held = held->quantity, .whole = &whole};
   struct rows rows;
-  enum lxg_status status = rows_make(&model, speeds, &rows, error);
+  enum lxg_status status = rows_make(&model, &rows, error);
   if (status == LXG_OK) {
     status = search(&model, &whole, &rows, &grid, &result, &report, &why, error);
   }

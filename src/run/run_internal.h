@@ -34,7 +34,7 @@ enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run
 
 /* Fit of the stellar mass and the held quantity to the case's lines; reports it and adds warnings. */
 enum lxg_status lxg_run_fit(const struct lxg_case *input, const struct lxg_run_options *options,
-                            struct lxg_speeds *speeds, struct lxg_node *warnings,
+                            const struct lxg_speeds *speeds, struct lxg_node *warnings,
                             struct lxg_results *results, struct lxg_error *error);
 
 /* Computes all line profiles of the case; free with lxg_run_profiles_free. */
