@@ -105,21 +105,25 @@ START_TEST(speeds_by_model) {
   assert_status(lxg_speeds_at(winds.speeds, t, &place, &error), LXG_OK, &error);
   assert_status(lxg_speeds_structure(winds.speeds, t, &structure, &error), LXG_OK, &error);
   const struct lxg_wind_row *photosphere = &structure->row[structure->photosphere];
-  assert_status(lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_PHOTOSPHERE, 0.0, &v, &error), LXG_OK, &error);
+  assert_status(lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_PHOTOSPHERE, 0.0, &v, &error), LXG_OK,
+                &error);
   assert_close(v, photosphere->speed, 2e-4); /* the family's interpolation */
-  assert_status(lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_TERMINAL, 0.0, &v, &error), LXG_OK, &error);
+  assert_status(lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_TERMINAL, 0.0, &v, &error), LXG_OK,
+                &error);
   assert_close(v, structure->row[structure->count - 1].speed, 2e-4);
   assert_status(
-      lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_DEPTH, photosphere->optical_depth, &v, &error), LXG_OK,
-      &error);
+      lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_DEPTH, photosphere->optical_depth, &v, &error),
+      LXG_OK, &error);
   assert_close(v, photosphere->speed, 1e-12);
   error.code[0] = '\0';
   ck_assert_int_eq(lxg_speeds_velocity(winds.speeds, t, LXG_LINE_MODEL_DEPTH, 1e30, &v, &error), LXG_DOMAIN);
   ck_assert_str_eq(error.code, "speeds-depth");
-  ck_assert_int_eq(lxg_speeds_velocity(winds.speeds, 7.0 * LXG_DAY, LXG_LINE_MODEL_SHELL, 0.0, &v, &error), LXG_NO_SOLUTION);
+  ck_assert_int_eq(lxg_speeds_velocity(winds.speeds, 7.0 * LXG_DAY, LXG_LINE_MODEL_SHELL, 0.0, &v, &error),
+                   LXG_NO_SOLUTION);
   ck_assert_str_eq(error.code, "speeds-shell");
   ck_assert_int_eq(
-      lxg_speeds_velocity(winds.speeds, 161.0 * LXG_DAY, LXG_LINE_MODEL_TERMINAL, 0.0, &v, &error), LXG_DOMAIN);
+      lxg_speeds_velocity(winds.speeds, 161.0 * LXG_DAY, LXG_LINE_MODEL_TERMINAL, 0.0, &v, &error),
+      LXG_DOMAIN);
   ck_assert_str_eq(error.code, "speeds-time");
   ck_assert_int_eq(
       lxg_speeds_velocity(winds.speeds, 159.0 * LXG_DAY, LXG_LINE_MODEL_TERMINAL, 0.0, &v, &error),
@@ -136,9 +140,9 @@ static const struct {
   double day;
   enum lxg_line_kind kind;
 } measured[] = {
-    {2.5, LXG_LINE_ABSORPTION},  {2.5, LXG_LINE_BLUE_EDGE},   {21.0, LXG_LINE_ABSORPTION},
-    {33.0, LXG_LINE_BLUE_EDGE},  {47.0, LXG_LINE_ABSORPTION}, {62.0, LXG_LINE_ABSORPTION},
-    {62.0, LXG_LINE_BLUE_EDGE},  {75.0, LXG_LINE_ABSORPTION}, {83.0, LXG_LINE_BLUE_EDGE},
+    {2.5, LXG_LINE_ABSORPTION},   {2.5, LXG_LINE_BLUE_EDGE},   {21.0, LXG_LINE_ABSORPTION},
+    {33.0, LXG_LINE_BLUE_EDGE},   {47.0, LXG_LINE_ABSORPTION}, {62.0, LXG_LINE_ABSORPTION},
+    {62.0, LXG_LINE_BLUE_EDGE},   {75.0, LXG_LINE_ABSORPTION}, {83.0, LXG_LINE_BLUE_EDGE},
     {110.0, LXG_LINE_ABSORPTION}, /* declared to be the shell's */
 };
 enum { ROWS = sizeof measured / sizeof measured[0], SHELL_ROW = ROWS - 1 };
@@ -219,8 +223,8 @@ START_TEST(round_trip) {
     inside[1] += holds(&result.fit.estimate[LXG_LINEFIT_HELD], held);
   }
   for (int i = 0; i < 2; i++) {
-    ck_assert_msg(inside[i] >= 0.60 * RUNS && inside[i] <= 0.76 * RUNS, "parameter %d: %u of %d runs", i, inside[i],
-                  RUNS);
+    ck_assert_msg(inside[i] >= 0.60 * RUNS && inside[i] <= 0.76 * RUNS, "parameter %d: %u of %d runs", i,
+                  inside[i], RUNS);
   }
   lxg_linefit_grid_free(&grid);
   lxg_lines_destroy(lines);
@@ -251,9 +255,12 @@ START_TEST(interpolation) {
   const double x = log(1.43), y = log(2.2);
   assert_close(log(lxg_linefit_at(&grid, 1.43e26, 6.6, 1)), 17.0 + 0.3 * x + 0.2 * y - 0.1 * x * y, 1e-14);
   ck_assert(isnan(lxg_linefit_at(&grid, 0.99e26, 6.6, 1)) && isnan(lxg_linefit_at(&grid, 1.2e26, 9.1, 1)));
-  assert_close(log(lxg_linefit_at(&grid, 1.7e26, 9.0, 0)), 17.0 + 0.3 * log(1.7) - 0.1 * log(1.7) * log(3.0), 1e-14);
-  grid.ln_speed[(2 * 4 + 1) * 2 + 1] = NAN; /* a node without a wind: no answer in its four cells, the others as before */
-  ck_assert(isnan(lxg_linefit_at(&grid, 1.25e26, 4.0, 1)) && isfinite(lxg_linefit_at(&grid, 1.25e26, 4.0, 0)));
+  assert_close(log(lxg_linefit_at(&grid, 1.7e26, 9.0, 0)), 17.0 + 0.3 * log(1.7) - 0.1 * log(1.7) * log(3.0),
+               1e-14);
+  grid.ln_speed[(2 * 4 + 1) * 2 + 1] =
+      NAN; /* a node without a wind: no answer in its four cells, the others as before */
+  ck_assert(isnan(lxg_linefit_at(&grid, 1.25e26, 4.0, 1)) &&
+            isfinite(lxg_linefit_at(&grid, 1.25e26, 4.0, 0)));
   assert_close(log(lxg_linefit_at(&grid, 1.05e26, 8.0, 1)),
                17.0 + 0.3 * log(1.05) + 0.2 * log(8.0 / 3.0) - 0.1 * log(1.05) * log(8.0 / 3.0), 1e-14);
   lxg_linefit_grid_free(&grid);

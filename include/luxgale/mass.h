@@ -140,7 +140,7 @@ double lxg_mass_radio_rate(double flux, double speed, double frequency, double t
 /* The section `mass`. Its own luminosity and speed select the steady wind whose rate the caller finds. */
 struct lxg_mass_section {
   bool present;
-  struct lxg_mass_data data;                   /* as given */
+  struct lxg_mass_data data;                    /* as given */
   struct lxg_mass_datum photosphere_luminosity; /* [erg s^-1] */
 };
 

@@ -130,11 +130,12 @@ void lxg_profile_escape(double depth, double sigma, double radius_ratio, double 
 struct lxg_profile_request {
   const char *label; /* borrowed from the document */
   struct lxg_profile_line line;
-  double optical_depth; /* Sobolev depth tau_0 at the photosphere that fixes the strength; NaN: the strength is given */
-  double wavelength;    /* [cm]; NaN if not given */
-  size_t points;        /* velocities of the profile */
-  size_t count;         /* epochs */
-  double *time;         /* [count] [s] */
+  double
+      optical_depth; /* Sobolev depth tau_0 at the photosphere that fixes the strength; NaN: the strength is given */
+  double wavelength; /* [cm]; NaN if not given */
+  size_t points;     /* velocities of the profile */
+  size_t count;      /* epochs */
+  double *time;      /* [count] [s] */
 };
 
 struct lxg_profile_requests {

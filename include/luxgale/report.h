@@ -121,8 +121,8 @@ struct lxg_report_fit {
   const struct lxg_linefit_range *whole; /* what was asked for */
   int zooms;                             /* finer grids after the first; `grid` is the last */
   bool settled;                          /* no row would change its system at the best point */
-  bool checked;               /* the best point was solved without the grid */
-  double interpolation_sigma; /* largest difference of a speed there, in sigma of its row */
+  bool checked;                          /* the best point was solved without the grid */
+  double interpolation_sigma;            /* largest difference of a speed there, in sigma of its row */
 };
 
 /* `fit:`; warnings fit-unconstrained, fit-interpolation. */
@@ -143,9 +143,9 @@ enum lxg_status lxg_report_velocity_table(const struct lxg_speeds *speeds, doubl
 /* One computed line profile. */
 struct lxg_report_profile {
   const struct lxg_profile_request *request;
-  double time;                /* [s]; NaN for a wind without history */
-  struct lxg_profile profile; /* all zero if there is none */
-  double strength;            /* k that was used [cm^3 g^-1 s^-1] */
+  double time;                              /* [s]; NaN for a wind without history */
+  struct lxg_profile profile;               /* all zero if there is none */
+  double strength;                          /* k that was used [cm^3 g^-1 s^-1] */
   double photosphere_speed, terminal_speed; /* [cm s^-1] */
   bool computed;
   struct lxg_error why;

@@ -47,7 +47,7 @@ struct lxg_case {
   struct lxg_history *history;
   struct lxg_lines_section lines;
   struct lxg_linefit_range fit; /* held_low, held_high: factors of the held value */
-  bool fit_asked, fit_follows; /* see lxg_linefit_read */
+  bool fit_asked, fit_follows;  /* see lxg_linefit_read */
   struct lxg_profile_requests profiles;
   struct lxg_mass_section mass;
   struct lxg_settings settings;
@@ -81,13 +81,13 @@ struct lxg_run_options {
 /* What a command gives. */
 struct lxg_results {
   struct lxg_document *report;
-  struct lxg_table *epochs;    /* NULL if not asked for */
-  struct lxg_table *structure; /* NULL if not asked for, or if there is no wind */
+  struct lxg_table *epochs;     /* NULL if not asked for */
+  struct lxg_table *structure;  /* NULL if not asked for, or if there is no wind */
   struct lxg_table *profiles;   /* NULL if not asked for */
   struct lxg_table *shell;      /* the same */
   struct lxg_table *velocities; /* the same */
-  bool answered;               /* false: the physics gave no answer, or only part; the report says why */
-  struct lxg_error why;        /* the reason then */
+  bool answered;                /* false: the physics gave no answer, or only part; the report says why */
+  struct lxg_error why;         /* the reason then */
 };
 
 /* NULL is allowed. */

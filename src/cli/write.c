@@ -73,10 +73,8 @@ enum lxg_status cli_write(const struct cli_request *request, struct lxg_results 
     const char *path;
     const struct lxg_table *table;
   } tables[] = {
-      {request->epochs, results->epochs},
-      {request->structure, results->structure},
-      {request->profiles, results->profiles},
-      {request->shell, results->shell},
+      {request->epochs, results->epochs},         {request->structure, results->structure},
+      {request->profiles, results->profiles},     {request->shell, results->shell},
       {request->velocities, results->velocities},
   };
   for (size_t i = 0; i < sizeof tables / sizeof tables[0] && status == LXG_OK; i++) {

@@ -45,11 +45,10 @@ static bool best_start(const struct problem *problem, double residual[], double 
   bool found = false;
   for (size_t m = 0; m + 1 < range->masses; m++) {
     for (size_t k = 0; k + 1 < range->values; k++) {
-      const double at[2] = {
-          range->mass_low *
-              pow(range->mass_high / range->mass_low, ((double)m + 0.5) / (double)(range->masses - 1)),
-          range->held_low *
-              pow(range->held_high / range->held_low, ((double)k + 0.5) / (double)(range->values - 1))};
+      const double at[2] = {range->mass_low * pow(range->mass_high / range->mass_low,
+                                                  ((double)m + 0.5) / (double)(range->masses - 1)),
+                            range->held_low * pow(range->held_high / range->held_low,
+                                                  ((double)k + 0.5) / (double)(range->values - 1))};
       if (residuals((void *)problem, at, residual) != LXG_OK) {
         continue;
       }
@@ -144,9 +143,11 @@ bool lxg_linefit_zoom(const struct lxg_linefit_grid *grid, const struct lxg_line
                       const struct lxg_linefit_range *whole, struct lxg_linefit_range *range) {
   const struct lxg_linefit_range *old = &grid->range;
   *range = *whole;
-  const bool mass = narrow(&result->fit.estimate[LXG_LINEFIT_MASS], old->mass_low, old->mass_high, old->masses,
-                           whole->mass_low, whole->mass_high, &range->mass_low, &range->mass_high);
-  const bool held = narrow(&result->fit.estimate[LXG_LINEFIT_HELD], old->held_low, old->held_high, old->values,
-                           whole->held_low, whole->held_high, &range->held_low, &range->held_high);
+  const bool mass =
+      narrow(&result->fit.estimate[LXG_LINEFIT_MASS], old->mass_low, old->mass_high, old->masses,
+             whole->mass_low, whole->mass_high, &range->mass_low, &range->mass_high);
+  const bool held =
+      narrow(&result->fit.estimate[LXG_LINEFIT_HELD], old->held_low, old->held_high, old->values,
+             whole->held_low, whole->held_high, &range->held_low, &range->held_high);
   return mass || held;
 }

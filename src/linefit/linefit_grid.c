@@ -50,8 +50,8 @@ static enum lxg_status along_history(const struct lxg_linefit_model *model, cons
                                      struct lxg_error *error) {
   struct lxg_speeds *speeds = NULL;
   const double factor = model->follows ? star->gm / model->wind.star.gm : 1.0; /* L_Edd goes with the mass */
-  enum lxg_status status = lxg_speeds_create(family, model->history, factor, model->branch, star->radius,
-                                             solver, &speeds, error);
+  enum lxg_status status =
+      lxg_speeds_create(family, model->history, factor, model->branch, star->radius, solver, &speeds, error);
   if (status == LXG_OK) {
     status = take_speeds(model, speeds, speed, assignment, error);
   }
@@ -117,8 +117,8 @@ static enum lxg_status histories(const struct lxg_linefit_model *model, const st
     const struct lxg_wind_hold hold = {model->hold[0].quantity, held[k]};
     status = trace(model, solver, &hold, &family, error);
     if (status == LXG_OK) {
-      status = along_history(model, star, solver, &family, &speed[k * lxg_linefit_columns(model)],
-                      assignment, error);
+      status = along_history(model, star, solver, &family, &speed[k * lxg_linefit_columns(model)], assignment,
+                             error);
     }
     lxg_family_free(&family);
   }

@@ -17,7 +17,8 @@ static enum lxg_status get(struct lxg_node *item, const char *key, double *value
   *value = NAN;
   const enum lxg_status status = lxg_node_get_number(item, key, value, error);
   if (status == LXG_OK && !isnan(*value) && !(zero ? *value >= 0.0 : *value > 0.0)) {
-    return lxg_node_error(lxg_node_find(item, key), error, "profile-value", "%s", zero ? "0 or more" : "above 0");
+    return lxg_node_error(lxg_node_find(item, key), error, "profile-value", "%s",
+                          zero ? "0 or more" : "above 0");
   }
   return status;
 }
@@ -59,11 +60,13 @@ static enum lxg_status read_resonance(struct lxg_node *item, struct lxg_profile_
   }
   if (!isnan(strength) + !isnan(request->optical_depth) + !isnan(oscillator) != 1 ||
       isnan(oscillator) != isnan(ions) || (!isnan(oscillator) && isnan(request->wavelength))) {
-    return lxg_node_error(item, error, "profile-strength",
-                          "one of strength, optical_depth, or oscillator_strength with wavelength and ions_per_gram");
+    return lxg_node_error(
+        item, error, "profile-strength",
+        "one of strength, optical_depth, or oscillator_strength with wavelength and ions_per_gram");
   }
-  request->line.strength =
-      !isnan(oscillator) ? lxg_profile_strength(oscillator, request->wavelength, ions) : isnan(strength) ? 0.0 : strength;
+  request->line.strength = !isnan(oscillator) ? lxg_profile_strength(oscillator, request->wavelength, ions)
+                           : isnan(strength)  ? 0.0
+                                              : strength;
   return LXG_OK;
 }
 
@@ -97,9 +100,11 @@ static enum lxg_status read_times(struct lxg_node *list, struct lxg_profile_requ
   enum lxg_status status = lxg_node_as_sequence(list, error);
   if (status == LXG_OK && lxg_node_count(list) > 0) {
     request->time = lxg_alloc(lxg_node_count(list), sizeof *request->time);
-    status = request->time != NULL ? LXG_OK : lxg_error_set(error, LXG_MEMORY, "memory", "profiles: out of memory");
+    status = request->time != NULL ? LXG_OK
+                                   : lxg_error_set(error, LXG_MEMORY, "memory", "profiles: out of memory");
   }
-  for (struct lxg_node *item = lxg_node_first(list); item != NULL && status == LXG_OK; item = lxg_node_next(item)) {
+  for (struct lxg_node *item = lxg_node_first(list); item != NULL && status == LXG_OK;
+       item = lxg_node_next(item)) {
     status =
         lxg_node_as_quantity(item, LXG_DIMENSION_TIME, NULL, NULL, &request->time[request->count++], error);
   }
@@ -127,8 +132,8 @@ static enum lxg_status read_one(struct lxg_node *item, struct lxg_profile_reques
     status = lxg_node_get_integer(item, "points", &points, error);
   }
   if (status == LXG_OK && (points < POINTS_LEAST || points > POINTS_MOST || points % 2 == 0)) {
-    return lxg_node_error(lxg_node_find(item, "points"), error, "profile-points", "odd, %d to %d", POINTS_LEAST,
-                          POINTS_MOST);
+    return lxg_node_error(lxg_node_find(item, "points"), error, "profile-points", "odd, %d to %d",
+                          POINTS_LEAST, POINTS_MOST);
   }
   if (status == LXG_OK) {
     status = lxg_node_get_quantity(item, "wavelength", LXG_DIMENSION_WAVELENGTH, NULL, NULL,
@@ -158,10 +163,12 @@ enum lxg_status lxg_profile_requests_read(struct lxg_node *list, struct lxg_prof
   enum lxg_status status = lxg_node_as_sequence(list, error);
   if (status == LXG_OK && lxg_node_count(list) > 0) {
     requests->request = lxg_alloc(lxg_node_count(list), sizeof *requests->request);
-    status = requests->request != NULL ? LXG_OK
-                                       : lxg_error_set(error, LXG_MEMORY, "memory", "profiles: out of memory");
+    status = requests->request != NULL
+                 ? LXG_OK
+                 : lxg_error_set(error, LXG_MEMORY, "memory", "profiles: out of memory");
   }
-  for (struct lxg_node *item = lxg_node_first(list); item != NULL && status == LXG_OK; item = lxg_node_next(item)) {
+  for (struct lxg_node *item = lxg_node_first(list); item != NULL && status == LXG_OK;
+       item = lxg_node_next(item)) {
     status = read_one(item, &requests->request[requests->count++], error);
   }
   return status;

@@ -70,8 +70,8 @@ static void add_systems(struct lxg_node *section, const struct lxg_report_lines 
 }
 
 void lxg_report_lines(struct lxg_node *root, const struct lxg_report_lines *lines) {
-  static const char *const keys[LXG_LINE_KINDS] = {"absorption", "blue_edge", "half_maximum", "zero_intensity",
-                                                   "emission_peak"};
+  static const char *const keys[LXG_LINE_KINDS] = {"absorption", "blue_edge", "half_maximum",
+                                                   "zero_intensity", "emission_peak"};
   const struct lxg_line_chi2 *chi2 = lines->chi2;
   struct lxg_node *section = lxg_node_add_mapping(root, "lines");
   lxg_node_add_integer(section, "count", (long long)lines->lines->count);
@@ -113,9 +113,8 @@ void lxg_report_lines_warnings(struct lxg_node *warnings, const struct lxg_repor
     lxg_node_add_number(warning, "probability_below", sure);
   }
   if (lines->chi2->left > 0) {
-    lxg_node_add_integer(
-        lxg_report_warn(warnings, "line-left", "rows that were not compared; each says why"), "rows",
-        (long long)lines->chi2->left);
+    lxg_node_add_integer(lxg_report_warn(warnings, "line-left", "rows that were not compared; each says why"),
+                         "rows", (long long)lines->chi2->left);
   }
 }
 
@@ -196,7 +195,8 @@ enum lxg_status lxg_report_lines_table(const struct lxg_report_lines *lines, str
 /* ---- fit ---------------------------------------------------------------------------------------------------------- */
 
 static const char *end_text(enum lxg_fit_end end) {
-  static const char *const texts[] = {[LXG_FIT_CROSSED] = "crossed", [LXG_FIT_OPEN] = "open", [LXG_FIT_EDGE] = "no-wind"};
+  static const char *const texts[] = {
+      [LXG_FIT_CROSSED] = "crossed", [LXG_FIT_OPEN] = "open", [LXG_FIT_EDGE] = "no-wind"};
   return texts[end];
 }
 
@@ -268,12 +268,13 @@ void lxg_report_fit_warnings(struct lxg_node *warnings, const struct lxg_report_
     lxg_report_warn(warnings, "fit-unconstrained", fit->result->warning);
   }
   if (!fit->settled) {
-    lxg_report_warn(warnings, "fit-unsettled", "at the best point some rows would belong to another system, wind or shell");
+    lxg_report_warn(warnings, "fit-unsettled",
+                    "at the best point some rows would belong to another system, wind or shell");
   }
   if (!fit->checked || fit->interpolation_sigma > interpolation_most) {
-    struct lxg_node *warning =
-        lxg_report_warn(warnings, "fit-interpolation",
-                        "the best point solved anew differs from the interpolated speeds; take more masses and values");
+    struct lxg_node *warning = lxg_report_warn(
+        warnings, "fit-interpolation",
+        "the best point solved anew differs from the interpolated speeds; take more masses and values");
     lxg_node_add_number(warning, "sigma", fit->checked ? fit->interpolation_sigma : (double)NAN);
   }
 }

@@ -43,7 +43,9 @@ static void add_steady(struct lxg_node *section, const struct lxg_report_steady 
   struct lxg_node *one = lxg_node_add_mapping(section, "steady_wind");
   lxg_node_add_text(one, "verdict", steady->solved ? "solved" : "none");
   if (!steady->solved) {
-    lxg_node_add_text(one, "reason", steady->asked ? steady->why.line[0] : "photosphere_luminosity and speed select the wind; not both are given");
+    lxg_node_add_text(one, "reason",
+                      steady->asked ? steady->why.line[0]
+                                    : "photosphere_luminosity and speed select the wind; not both are given");
     lxg_node_add_text(one, "reason_code", steady->asked ? steady->why.code : "mass-not-given");
     return;
   }
@@ -74,15 +76,18 @@ void lxg_report_mass(struct lxg_node *root, const struct lxg_mass_data *data,
 void lxg_report_mass_warnings(struct lxg_node *warnings, const struct lxg_mass_summary *summary,
                               const struct lxg_report_steady *steady) {
   if (summary->bound_broken) {
-    lxg_report_warn(warnings, "mass-bound-broken", "the methods' mean exceeds what the radiated energy can lift");
+    lxg_report_warn(warnings, "mass-bound-broken",
+                    "the methods' mean exceeds what the radiated energy can lift");
   }
   if (steady->asked && !steady->solved) {
-    lxg_node_add_text(lxg_report_warn(warnings, "mass-no-wind", "no steady wind has this luminosity and speed"),
-                      "reason_code", steady->why.code);
+    lxg_node_add_text(
+        lxg_report_warn(warnings, "mass-no-wind", "no steady wind has this luminosity and speed"),
+        "reason_code", steady->why.code);
   }
   if (steady->solved && steady->winds > 1) {
-    lxg_node_add_integer(lxg_report_warn(warnings, "several-branches",
-                                         "several winds have this luminosity and speed; the chosen branch was taken"),
-                         "winds", (long long)steady->winds);
+    lxg_node_add_integer(
+        lxg_report_warn(warnings, "several-branches",
+                        "several winds have this luminosity and speed; the chosen branch was taken"),
+        "winds", (long long)steady->winds);
   }
 }

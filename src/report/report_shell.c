@@ -39,7 +39,8 @@ static void add_state(struct lxg_node *section, const char *key, const struct lx
   lxg_node_add_number(at, "mass_msun", state->mass / LXG_SOLAR_MASS);
   lxg_node_add_number(at, "ejected_share", state->mass / ejected);
   lxg_node_add_number(at, "speed_km_s", state->speed / LXG_KM);
-  lxg_node_add_number(at, "wind_speed_km_s", state->wind_speed > 0.0 ? state->wind_speed / LXG_KM : (double)NAN);
+  lxg_node_add_number(at, "wind_speed_km_s",
+                      state->wind_speed > 0.0 ? state->wind_speed / LXG_KM : (double)NAN);
   lxg_node_add_number(at, "radius_cm", state->radius);
   lxg_node_add_number(at, "column_g_cm2", state->column);
   lxg_node_add_number(at, "power_erg_s", state->power_behind + state->power_ahead);
@@ -49,9 +50,8 @@ static void add_state(struct lxg_node *section, const char *key, const struct lx
 static void add_shell(struct lxg_node *root, const struct lxg_speeds *speeds, double end,
                       const struct lxg_shell_state state[SHELL_TIMES], const bool exists[SHELL_TIMES]) {
   const struct lxg_shell_history *history = lxg_speeds_shell(speeds);
-  struct lxg_shell_onset onset = {.forms = false,
-                                  .reason = "no gas leaves the star",
-                                  .reason_code = "shell-no-gas"};
+  struct lxg_shell_onset onset = {
+      .forms = false, .reason = "no gas leaves the star", .reason_code = "shell-no-gas"};
   struct lxg_node *section = lxg_node_add_mapping(root, "swept_shell");
   if (history != NULL) {
     lxg_shell_first(history, end, &onset);
@@ -84,7 +84,7 @@ static void add_shell(struct lxg_node *root, const struct lxg_speeds *speeds, do
 /* ---- distribution ------------------------------------------------------------------------------------------------- */
 
 struct distribution {
-  double edge[VELOCITY_BINS + 1]; /* [cm s^-1] */
+  double edge[VELOCITY_BINS + 1];                     /* [cm s^-1] */
   double before[VELOCITY_BINS], after[VELOCITY_BINS]; /* [g] */
 };
 
@@ -96,8 +96,8 @@ static enum lxg_status distribute(const struct lxg_speeds *speeds, double end, s
   for (size_t i = 0; i <= VELOCITY_BINS; i++) {
     all->edge[i] = i == VELOCITY_BINS ? fast : slow + (fast - slow) * (double)i / VELOCITY_BINS;
   }
-  return lxg_shell_distribution(lxg_speeds_shell(speeds), end, VELOCITY_BINS, all->edge, all->before, all->after,
-                                outside, error);
+  return lxg_shell_distribution(lxg_speeds_shell(speeds), end, VELOCITY_BINS, all->edge, all->before,
+                                all->after, outside, error);
 }
 
 /* Speed below which a share of the mass lies, linear in its bin. */
@@ -115,7 +115,8 @@ static double quantile(const double edge[], const double mass[], double share) {
   return NAN;
 }
 
-static void add_quantiles(struct lxg_node *section, const char *key, const double edge[], const double mass[]) {
+static void add_quantiles(struct lxg_node *section, const char *key, const double edge[],
+                          const double mass[]) {
   struct lxg_node *one = lxg_node_add_mapping(section, key);
   lxg_node_add_number(one, "tenth_km_s", quantile(edge, mass, 0.1) / LXG_KM);
   lxg_node_add_number(one, "half_km_s", quantile(edge, mass, 0.5) / LXG_KM);
@@ -188,17 +189,13 @@ enum lxg_status lxg_report_shell_table(const struct lxg_speeds *speeds, double s
   }
   for (size_t i = 0; i < rows && status == LXG_OK; i++) {
     const struct lxg_shell_state *s = &state[i];
-    const double number[SHELL_COLUMNS] = {s->time / LXG_DAY,
-                                          s->mass / LXG_SOLAR_MASS,
-                                          s->speed / LXG_KM,
-                                          s->radius,
-                                          s->column,
-                                          s->wind_speed > 0.0 ? s->wind_speed / LXG_KM : (double)NAN,
-                                          s->power_behind,
-                                          s->power_ahead,
-                                          s->dissipated,
-                                          s->first / LXG_DAY,
-                                          s->last / LXG_DAY};
+    const double number[SHELL_COLUMNS] = {
+        s->time / LXG_DAY, s->mass / LXG_SOLAR_MASS,
+        s->speed / LXG_KM, s->radius,
+        s->column,         s->wind_speed > 0.0 ? s->wind_speed / LXG_KM : (double)NAN,
+        s->power_behind,   s->power_ahead,
+        s->dissipated,     s->first / LXG_DAY,
+        s->last / LXG_DAY};
     status = set_numbers(*table, i, number, exists[i] ? SHELL_COLUMNS : 1, error);
   }
   if (status != LXG_OK) {
@@ -230,9 +227,8 @@ enum lxg_status lxg_report_velocity_table(const struct lxg_speeds *speeds, doubl
   for (size_t i = 0; i < rows && status == LXG_OK; i++) {
     const double low = all.edge[i] / LXG_KM, high = all.edge[i + 1] / LXG_KM;
     const double before = all.before[i] / LXG_SOLAR_MASS, after = all.after[i] / LXG_SOLAR_MASS;
-    const double number[VELOCITY_COLUMNS] = {low,   high,
-                                             before, after,
-                                             before / (high - low), after / (high - low)};
+    const double number[VELOCITY_COLUMNS] = {
+        low, high, before, after, before / (high - low), after / (high - low)};
     status = set_numbers(*table, i, number, VELOCITY_COLUMNS, error);
   }
   if (status == LXG_OK) {

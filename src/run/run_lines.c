@@ -64,8 +64,8 @@ static enum lxg_status find_winds(const struct lxg_case *input, const struct lxg
     spectrum->winds = 1;
     status = lxg_family_trace(spectrum->solver, &input->hold[0], NULL, &spectrum->family, error);
     return status == LXG_OK
-               ? lxg_speeds_create(&spectrum->family, input->history, 1.0, options->branch, input->star.radius,
-                                   spectrum->solver, &spectrum->speeds, error)
+               ? lxg_speeds_create(&spectrum->family, input->history, 1.0, options->branch,
+                                   input->star.radius, spectrum->solver, &spectrum->speeds, error)
                : status;
   }
   struct lxg_wind winds[MOST_WINDS];
@@ -74,8 +74,7 @@ static enum lxg_status find_winds(const struct lxg_case *input, const struct lxg
                               &spectrum->winds, error);
   if (status == LXG_OK) {
     lxg_speeds_place(&winds[0], &place);
-    status =
-        lxg_speeds_create_single(&input->hold[0], &place, spectrum->solver, &spectrum->speeds, error);
+    status = lxg_speeds_create_single(&input->hold[0], &place, spectrum->solver, &spectrum->speeds, error);
   }
   return status;
 }
@@ -143,9 +142,9 @@ static enum lxg_status report_profiles(const struct lxg_case *input, const struc
       lxg_run_unanswered(results, &spectrum->profile[i].why);
     }
   }
-  return options->profiles ? lxg_report_profile_table(spectrum->profile, spectrum->profiles,
-                                                      &results->profiles, error)
-                           : LXG_OK;
+  return options->profiles
+             ? lxg_report_profile_table(spectrum->profile, spectrum->profiles, &results->profiles, error)
+             : LXG_OK;
 }
 
 /* Everything that follows from the winds. Warnings are collected beside the report, where they stand last. */

@@ -34,8 +34,8 @@ static enum lxg_status take_from_case(const struct lxg_case *input, struct lxg_m
     status = give_unless_given(data, LXG_MASS_HYDROGEN, input->composition.hydrogen, error);
   }
   if (status == LXG_OK && history != NULL && history->kind == LXG_HISTORY_PHOTOSPHERE && history->count > 1) {
-    status = lxg_history_energy(history, LXG_HISTORY_VALUE, history->time[0], history->time[history->count - 1],
-                                &energy, error);
+    status = lxg_history_energy(history, LXG_HISTORY_VALUE, history->time[0],
+                                history->time[history->count - 1], &energy, error);
     if (status == LXG_OK) {
       status = give_unless_given(data, LXG_MASS_RADIATED_ENERGY, energy, error);
     }

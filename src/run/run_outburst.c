@@ -44,8 +44,8 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
                                 &ejecting, &outburst->ejecta, error);
   }
   if (status == LXG_OK) {
-    status = lxg_speeds_create(&outburst->family, input->history, 1.0, options->branch, input->star.radius, NULL,
-                               &outburst->speeds, error);
+    status = lxg_speeds_create(&outburst->family, input->history, 1.0, options->branch, input->star.radius,
+                               NULL, &outburst->speeds, error);
   }
   return status;
 }

@@ -43,8 +43,8 @@ static enum lxg_status make_flow(const struct lxg_speeds_structure *structure,
   return status;
 }
 
-static enum lxg_status compute(const struct lxg_speeds_structure *structure,
-                               struct lxg_report_profile *one, struct lxg_error *error) {
+static enum lxg_status compute(const struct lxg_speeds_structure *structure, struct lxg_report_profile *one,
+                               struct lxg_error *error) {
   const struct lxg_profile_request *request = one->request;
   const struct lxg_wind_row *photosphere = &structure->row[structure->photosphere];
   struct lxg_profile_table *table = NULL;
@@ -53,7 +53,8 @@ static enum lxg_status compute(const struct lxg_speeds_structure *structure,
   lxg_profile_defaults(&settings);
   settings.count = request->points;
   if (!isnan(request->optical_depth)) { /* tau_0 = k rho r/v at the photosphere */
-    line.strength = request->optical_depth * photosphere->speed / (photosphere->density * photosphere->radius);
+    line.strength =
+        request->optical_depth * photosphere->speed / (photosphere->density * photosphere->radius);
   }
   one->strength = line.strength;
   one->photosphere_speed = photosphere->speed;
@@ -99,9 +100,10 @@ enum lxg_status lxg_run_profiles(const struct lxg_case *input, struct lxg_speeds
   *count = 0;
   for (size_t i = 0; i < requests->count; i++) {
     if (input->history != NULL && requests->request[i].count == 0) {
-      return lxg_error_set(error, LXG_INPUT, "key-missing",
-                           "%s: error: lines.profiles[%zu].times: with a luminosity history it names the epochs",
-                           lxg_document_name(input->document), i);
+      return lxg_error_set(
+          error, LXG_INPUT, "key-missing",
+          "%s: error: lines.profiles[%zu].times: with a luminosity history it names the epochs",
+          lxg_document_name(input->document), i);
     }
     all += input->history != NULL ? requests->request[i].count : 1;
   }
@@ -119,8 +121,8 @@ enum lxg_status lxg_run_profiles(const struct lxg_case *input, struct lxg_speeds
     const size_t times = input->history != NULL ? request->count : 1;
     for (size_t k = 0; k < times && status == LXG_OK; k++) {
       struct lxg_report_profile *one = &(*profile)[(*count)++];
-      *one = (struct lxg_report_profile){
-          .request = request, .time = input->history != NULL ? request->time[k] : (double)NAN};
+      *one = (struct lxg_report_profile){.request = request,
+                                         .time = input->history != NULL ? request->time[k] : (double)NAN};
       status = run_one(speeds, one, error);
     }
   }

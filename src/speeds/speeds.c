@@ -97,7 +97,8 @@ enum lxg_status lxg_speeds_at(const struct lxg_speeds *speeds, double time, stru
                          history->time[0] / LXG_DAY, history->time[history->count - 1] / LXG_DAY);
   }
   if (lxg_family_index_branch(speeds->index, speeds->factor * value.luminosity, speeds->branch, place) == 0) {
-    const enum lxg_wind_reason reason = lxg_family_missing(speeds->family, speeds->key, speeds->factor * value.luminosity);
+    const enum lxg_wind_reason reason =
+        lxg_family_missing(speeds->family, speeds->key, speeds->factor * value.luminosity);
     return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(reason), "no wind at %.10g d: %s",
                          time / LXG_DAY, lxg_wind_reason_text(reason));
   }
@@ -171,8 +172,8 @@ enum lxg_status lxg_speeds_velocity(void *context, double epoch, enum lxg_line_m
   }
   const enum lxg_status status = lxg_speeds_at(speeds, epoch, &place, reason);
   if (status == LXG_OK) {
-    *velocity =
-        place.value[model == LXG_LINE_MODEL_TERMINAL ? LXG_FAMILY_TERMINAL_SPEED : LXG_FAMILY_PHOTOSPHERE_SPEED];
+    *velocity = place.value[model == LXG_LINE_MODEL_TERMINAL ? LXG_FAMILY_TERMINAL_SPEED
+                                                             : LXG_FAMILY_PHOTOSPHERE_SPEED];
   }
   return status;
 }

@@ -13,7 +13,8 @@
 #include <math.h>
 
 /* Mdot rises as about the fiftieth power of the base luminosity. */
-static const struct lxg_history_sampling sampling = {.tolerance = 1e-4, .steepness = 50.0, .max_count = 20001};
+static const struct lxg_history_sampling sampling = {
+    .tolerance = 1e-4, .steepness = 50.0, .max_count = 20001};
 enum {
   PARTS = 12,        /* of each interval between sampling times */
   EDGE_HALVINGS = 40 /* of an interval in which a wind begins or ends */

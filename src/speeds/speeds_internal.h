@@ -16,7 +16,7 @@ struct lxg_speeds {
   enum lxg_family_quantity key; /* luminosity of the history */
   struct lxg_family_index *index;
   struct lxg_shell_history *shell;
-  double slowest, fastest; /* of the gas in it [cm s^-1] */
+  double slowest, fastest;        /* of the gas in it [cm s^-1] */
   struct lxg_wind_hold hold;      /* what all winds share */
   struct lxg_family_place single; /* of a single wind */
   size_t count;
