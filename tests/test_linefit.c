@@ -53,9 +53,12 @@ static void solve_winds(const struct lxg_case *input, double radius_most, struct
   assert_status(lxg_wind_solver_create(&model, NULL, &winds->solver, &error), LXG_OK, &error);
   assert_status(lxg_family_trace(winds->solver, &input->hold[0], &options, &winds->family, &error), LXG_OK,
                 &error);
-  assert_status(lxg_speeds_create(&winds->family, input->history, 1.0, LXG_BRANCH_THIN, input->star.radius,
-                                  winds->solver, &winds->speeds, &error),
-                LXG_OK, &error);
+  const struct lxg_speeds_source source = {.family = &winds->family,
+                                           .history = input->history,
+                                           .factor = 1.0,
+                                           .branch = LXG_BRANCH_THIN,
+                                           .radius = input->star.radius};
+  assert_status(lxg_speeds_create(&source, winds->solver, &winds->speeds, &error), LXG_OK, &error);
 }
 
 static void free_winds(struct winds *winds) {

@@ -25,12 +25,22 @@
 
 struct lxg_speeds; /* opaque; keeps the structures that were asked for. One a thread, as its solver */
 
-/* Winds along a history, whose luminosity is multiplied by `factor`. Everything is borrowed and must outlive the result. `solver`
- * serves structures only; NULL: there are none. `radius` [cm] is where gas starts to coast. LXG_MEMORY, LXG_LIMIT. */
-enum lxg_status lxg_speeds_create(const struct lxg_family *family, const struct lxg_history *history,
-                                  double factor, enum lxg_branch branch, double radius,
-                                  struct lxg_wind_solver *solver, struct lxg_speeds **speeds,
-                                  struct lxg_error *error);
+/* Winds along a history. All borrowed. */
+struct lxg_speeds_source {
+  const struct lxg_family *family;
+  const struct lxg_family
+      *above;   /* winds of epochs brighter than `limit`, as in ejecta.h; NULL: one family for all */
+  double limit; /* [erg s^-1] */
+  const struct lxg_history *history;
+  double factor; /* of its luminosity */
+  enum lxg_branch branch;
+  double radius; /* where gas starts to coast [cm] */
+};
+
+/* The source's parts must outlive the result, not the source itself. `solver` serves structures only; NULL: there are none.
+ * LXG_MEMORY, LXG_LIMIT. */
+enum lxg_status lxg_speeds_create(const struct lxg_speeds_source *source, struct lxg_wind_solver *solver,
+                                  struct lxg_speeds **speeds, struct lxg_error *error);
 
 /* One wind at all times: a place of the family that shares `hold`. No shell. */
 enum lxg_status lxg_speeds_create_single(const struct lxg_wind_hold *hold,
@@ -55,8 +65,8 @@ struct lxg_speeds_structure {
   size_t count, photosphere; /* rows, index of the photosphere */
 };
 
-/* Solves for it once and keeps it as long as the speeds live. Failures of lxg_speeds_at and of the solver; LXG_BUG without a
- * solver. */
+/* Solves for it once and keeps it as long as the speeds live. Failures of lxg_speeds_at and of the solver; LXG_DOMAIN
+ * "speeds-structure" without a solver. */
 enum lxg_status lxg_speeds_structure(struct lxg_speeds *speeds, double time,
                                      const struct lxg_speeds_structure **structure, struct lxg_error *error);
 

@@ -50,8 +50,12 @@ static enum lxg_status along_history(const struct lxg_linefit_model *model, cons
                                      struct lxg_error *error) {
   struct lxg_speeds *speeds = NULL;
   const double factor = model->follows ? star->gm / model->wind.star.gm : 1.0; /* L_Edd goes with the mass */
-  enum lxg_status status =
-      lxg_speeds_create(family, model->history, factor, model->branch, star->radius, solver, &speeds, error);
+  const struct lxg_speeds_source source = {.family = family,
+                                           .history = model->history,
+                                           .factor = factor,
+                                           .branch = model->branch,
+                                           .radius = star->radius};
+  enum lxg_status status = lxg_speeds_create(&source, solver, &speeds, error);
   if (status == LXG_OK) {
     status = take_speeds(model, speeds, speed, assignment, error);
   }

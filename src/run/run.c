@@ -52,13 +52,14 @@ enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *
 
 enum lxg_status lxg_run_require_history(const struct lxg_case *input, const char *command,
                                         struct lxg_error *error) {
-  if (input->history == NULL) {
+  if (input->history == NULL && !input->history_from_decline) {
     return lxg_error_set(error, LXG_INPUT, "key-missing",
                          "%s: error: luminosity: `%s` needs a luminosity history",
                          lxg_document_name(input->document), command);
   }
-  const enum lxg_held driven =
-      input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
+  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
+                                   ? LXG_HELD_BASE_LUMINOSITY
+                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
   const enum lxg_status status = lxg_run_require_holds(input, command, 1, error);
   if (status == LXG_OK && input->hold[0].quantity == driven) {
     return lxg_error_set(
@@ -73,7 +74,8 @@ struct lxg_wind_model lxg_run_model(const struct lxg_case *input) {
   return (struct lxg_wind_model){.star = input->star,
                                  .composition = input->composition,
                                  .opacity = input->opacity,
-                                 .porosity = input->porosity};
+                                 .porosity = input->porosity,
+                                 .burning = input->burning};
 }
 
 enum lxg_status lxg_run_star(const struct lxg_case *input, const struct lxg_run_options *options,

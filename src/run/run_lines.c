@@ -19,7 +19,8 @@ enum { MOST_WINDS = 16 };
 /* What the stages fill, one after the other. */
 struct spectrum {
   struct lxg_wind_solver *solver;
-  struct lxg_family family;
+  struct lxg_history *own;    /* computed from the eruption of the case, or NULL */
+  struct lxg_run_winds along; /* the history */
   struct lxg_speeds *speeds;
   size_t winds; /* that share both held values; 1 with a history */
   struct lxg_line_assignment *assignment;
@@ -34,8 +35,9 @@ static void spectrum_free(struct spectrum *spectrum) {
   lxg_free(spectrum->assignment);
   lxg_free(spectrum->comparison);
   lxg_speeds_destroy(spectrum->speeds);
-  lxg_family_free(&spectrum->family);
+  lxg_run_winds_free(&spectrum->along);
   lxg_wind_solver_destroy(spectrum->solver);
+  lxg_history_destroy(spectrum->own);
 }
 
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
@@ -48,8 +50,9 @@ static enum lxg_status require(const struct lxg_case *input, struct lxg_error *e
     return lxg_error_set(error, LXG_INPUT, "key-missing", "%s: error: lines.file: a fit needs measured lines",
                          lxg_document_name(input->document));
   }
-  return input->history == NULL ? lxg_run_require_holds(input, "lines", 2, error)
-                                : lxg_run_require_history(input, "lines", error);
+  return input->history == NULL && !input->history_from_decline
+             ? lxg_run_require_holds(input, "lines", 2, error)
+             : lxg_run_require_history(input, "lines", error);
 }
 
 /* The winds: a family followed along the history, or one wind. */
@@ -62,11 +65,10 @@ static enum lxg_status find_winds(const struct lxg_case *input, const struct lxg
   }
   if (input->history != NULL) {
     spectrum->winds = 1;
-    status = lxg_family_trace(spectrum->solver, &input->hold[0], NULL, &spectrum->family, error);
-    return status == LXG_OK
-               ? lxg_speeds_create(&spectrum->family, input->history, 1.0, options->branch,
-                                   input->star.radius, spectrum->solver, &spectrum->speeds, error)
-               : status;
+    status = lxg_run_winds(input, options->branch, &spectrum->along, error);
+    return status == LXG_OK ? lxg_run_speeds(input, options->branch, &spectrum->along, spectrum->solver,
+                                             &spectrum->speeds, error)
+                            : status;
   }
   struct lxg_wind winds[MOST_WINDS];
   struct lxg_family_place place;
@@ -122,6 +124,11 @@ static enum lxg_status report_lines(const struct lxg_case *input, const struct l
   if (options->epochs) {
     status = lxg_report_lines_table(&report, &results->epochs, error);
   }
+  if (status == LXG_OK && input->fit_asked && spectrum->along.two) {
+    return lxg_error_set(error, LXG_INPUT, "linefit-porous",
+                         "%s: error: lines.fit: not available where plain winds hand over to porous ones",
+                         lxg_document_name(input->document));
+  }
   if (status == LXG_OK && input->fit_asked) {
     status = lxg_run_fit(input, options, spectrum->speeds, warnings, results, error);
   }
@@ -169,9 +176,11 @@ static enum lxg_status report(const struct lxg_case *input, const struct lxg_run
   return status == LXG_OK ? lxg_run_shell(input, options, spectrum->speeds, results, error) : status;
 }
 
-enum lxg_status lxg_run_lines(const struct lxg_case *input, const struct lxg_run_options *options,
+enum lxg_status lxg_run_lines(const struct lxg_case *given, const struct lxg_run_options *options,
                               struct lxg_results *results, struct lxg_error *error) {
   struct spectrum spectrum = {0};
+  struct lxg_case completed = *given; /* with the history of its own eruption, where it asks for that */
+  const struct lxg_case *input = &completed;
   struct lxg_document *aside = NULL; /* warnings on their way */
   enum lxg_status status = lxg_run_begin(input, "lines", results, error);
   if (status == LXG_OK) {
@@ -179,6 +188,10 @@ enum lxg_status lxg_run_lines(const struct lxg_case *input, const struct lxg_run
   }
   if (status == LXG_OK) {
     status = lxg_document_create("warnings", &aside, error);
+  }
+  if (status == LXG_OK && given->history_from_decline) {
+    status = lxg_run_decline_history(given, &spectrum.own, &completed.limits, error);
+    completed.history = spectrum.own;
   }
   if (status == LXG_OK) {
     status = find_winds(input, options, &spectrum, error);

@@ -6,6 +6,19 @@
 #include "luxgale/run.h"
 #include "run/run_internal.h"
 
+enum lxg_status lxg_run_speeds(const struct lxg_case *input, enum lxg_branch branch,
+                               const struct lxg_run_winds *winds, struct lxg_wind_solver *solver,
+                               struct lxg_speeds **speeds, struct lxg_error *error) {
+  const struct lxg_speeds_source source = {.family = &winds->family,
+                                           .above = winds->two ? &winds->above : NULL,
+                                           .limit = winds->limit,
+                                           .history = input->history,
+                                           .factor = 1.0,
+                                           .branch = branch,
+                                           .radius = input->star.radius};
+  return lxg_speeds_create(&source, winds->two ? NULL : solver, speeds, error);
+}
+
 enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run_options *options,
                               const struct lxg_speeds *speeds, struct lxg_results *results,
                               struct lxg_error *error) {

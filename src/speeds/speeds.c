@@ -19,27 +19,31 @@ static enum lxg_status create(struct lxg_wind_solver *solver, struct lxg_speeds 
   return LXG_OK;
 }
 
-enum lxg_status lxg_speeds_create(const struct lxg_family *family, const struct lxg_history *history,
-                                  double factor, enum lxg_branch branch, double radius,
-                                  struct lxg_wind_solver *solver, struct lxg_speeds **speeds,
-                                  struct lxg_error *error) {
+enum lxg_status lxg_speeds_create(const struct lxg_speeds_source *source, struct lxg_wind_solver *solver,
+                                  struct lxg_speeds **speeds, struct lxg_error *error) {
   enum lxg_status status = create(solver, speeds, error);
   if (status != LXG_OK) {
     return status;
   }
-  (*speeds)->family = family;
-  (*speeds)->history = history;
-  (*speeds)->factor = factor;
-  (*speeds)->branch = branch;
-  (*speeds)->hold = family->hold;
-  (*speeds)->key =
-      history->kind == LXG_HISTORY_BASE ? LXG_FAMILY_BASE_LUMINOSITY : LXG_FAMILY_PHOTOSPHERE_LUMINOSITY;
-  status = lxg_family_index_create(family, (*speeds)->key, &(*speeds)->index, error);
+  struct lxg_speeds *made = *speeds;
+  made->family = source->family;
+  made->above = source->above;
+  made->limit = source->limit;
+  made->history = source->history;
+  made->factor = source->factor;
+  made->branch = source->branch;
+  made->hold = source->family->hold;
+  made->key = source->history->kind == LXG_HISTORY_BASE ? LXG_FAMILY_BASE_LUMINOSITY
+                                                        : LXG_FAMILY_PHOTOSPHERE_LUMINOSITY;
+  status = lxg_family_index_create(made->family, made->key, &made->index, error);
+  if (status == LXG_OK && made->above != NULL) {
+    status = lxg_family_index_create(made->above, made->key, &made->above_index, error);
+  }
   if (status == LXG_OK) {
-    status = lxg_speeds_eject(*speeds, radius, error);
+    status = lxg_speeds_eject(made, source->radius, error);
   }
   if (status != LXG_OK) {
-    lxg_speeds_destroy(*speeds);
+    lxg_speeds_destroy(made);
     *speeds = NULL;
   }
   return status;
@@ -67,6 +71,7 @@ void lxg_speeds_destroy(struct lxg_speeds *speeds) {
   lxg_free(speeds->structure);
   lxg_shell_destroy(speeds->shell);
   lxg_family_index_destroy(speeds->index);
+  lxg_family_index_destroy(speeds->above_index);
   lxg_free(speeds);
 }
 
@@ -77,10 +82,20 @@ void lxg_speeds_place(const struct lxg_wind *wind, struct lxg_family_place *plac
 #undef SPEEDS_TAKE
 }
 
+/* True if the second family has the winds of this luminosity. */
+static bool is_above(const struct lxg_speeds *speeds, double luminosity) {
+  return speeds->above != NULL && luminosity > speeds->limit;
+}
+
+static size_t members(const struct lxg_speeds *speeds, double luminosity, struct lxg_family_place *place) {
+  return lxg_family_index_branch(is_above(speeds, luminosity) ? speeds->above_index : speeds->index,
+                                 luminosity, speeds->branch, place);
+}
+
 bool lxg_speeds_find(const struct lxg_speeds *speeds, double time, struct lxg_family_place *place) {
   struct lxg_history_value value;
   return lxg_history_at(speeds->history, LXG_HISTORY_VALUE, time, &value) == LXG_OK &&
-         lxg_family_index_branch(speeds->index, speeds->factor * value.luminosity, speeds->branch, place) > 0;
+         members(speeds, speeds->factor * value.luminosity, place) > 0;
 }
 
 enum lxg_status lxg_speeds_at(const struct lxg_speeds *speeds, double time, struct lxg_family_place *place,
@@ -96,9 +111,10 @@ enum lxg_status lxg_speeds_at(const struct lxg_speeds *speeds, double time, stru
                          "time = %.10g d: outside the luminosity history, %.10g to %.10g d", time / LXG_DAY,
                          history->time[0] / LXG_DAY, history->time[history->count - 1] / LXG_DAY);
   }
-  if (lxg_family_index_branch(speeds->index, speeds->factor * value.luminosity, speeds->branch, place) == 0) {
-    const enum lxg_wind_reason reason =
-        lxg_family_missing(speeds->family, speeds->key, speeds->factor * value.luminosity);
+  const double luminosity = speeds->factor * value.luminosity;
+  if (members(speeds, luminosity, place) == 0) {
+    const enum lxg_wind_reason reason = lxg_family_missing(
+        is_above(speeds, luminosity) ? speeds->above : speeds->family, speeds->key, luminosity);
     return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(reason), "no wind at %.10g d: %s",
                          time / LXG_DAY, lxg_wind_reason_text(reason));
   }

@@ -15,6 +15,9 @@ struct lxg_speeds {
   struct lxg_wind_solver *solver;
   enum lxg_family_quantity key; /* luminosity of the history */
   struct lxg_family_index *index;
+  const struct lxg_family *above; /* see struct lxg_speeds_source */
+  struct lxg_family_index *above_index;
+  double limit; /* [erg s^-1] */
   struct lxg_shell_history *shell;
   double slowest, fastest;        /* of the gas in it [cm s^-1] */
   struct lxg_wind_hold hold;      /* what all winds share */

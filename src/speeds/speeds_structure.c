@@ -55,7 +55,8 @@ enum lxg_status lxg_speeds_structure(struct lxg_speeds *speeds, double time,
     }
   }
   if (speeds->solver == NULL) {
-    return lxg_error_set(error, LXG_BUG, "speeds-solver", "structure of a wind without a solver");
+    return lxg_error_set(error, LXG_DOMAIN, "speeds-structure",
+                         "structures are not available where plain winds hand over to porous ones");
   }
   struct lxg_speeds_structure *made = NULL;
   enum lxg_status status = make(speeds, time, &made, error);
