@@ -54,6 +54,7 @@ struct lxg_case {
   bool fit_asked, fit_follows;  /* see lxg_linefit_read */
   struct lxg_profile_requests profiles;
   struct lxg_mass_section mass;
+  struct lxg_history *reduction; /* factor of the law `reduction` against time; NULL: constant */
   bool history_from_decline; /* the history is the wind phase of the eruption, computed when it is needed */
   struct lxg_decline_options decline;
   struct lxg_family_options limits; /* of the families that are traced */

@@ -40,3 +40,18 @@ enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run
   }
   return status;
 }
+
+enum lxg_status lxg_run_no_shell(const struct lxg_case *input, const struct lxg_run_options *options,
+                                 struct lxg_node *root, struct lxg_error *error) {
+  static const char reason[] = "not computed where the reduction of the opacity changes with time";
+  if (options->shell || options->velocities) {
+    return lxg_error_set(error, LXG_INPUT, "shell-not-available",
+                         "%s: error: porosity.factor: swept shells are %s",
+                         lxg_document_name(input->document), reason);
+  }
+  struct lxg_node *section = lxg_node_add_mapping(root, "swept_shell");
+  lxg_node_add_none(section, "forms");
+  lxg_node_add_text(section, "reason", reason);
+  lxg_node_add_text(section, "reason_code", "shell-not-available");
+  return LXG_OK;
+}
