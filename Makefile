@@ -29,7 +29,7 @@ LIB       := $(BUILD)/libluxgale.a
 JOBS      ?= 2
 
 # Suites that run again under the address and undefined-behaviour sanitizers; the others are too slow for that.
-SLOW      ?= wind family
+SLOW      ?= wind family linefit
 QUICK      = $(filter-out $(SLOW),$(SUITES))
 
 .PHONY: all tests programs clean format format-check check-layers check-symbols

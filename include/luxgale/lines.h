@@ -205,4 +205,22 @@ enum lxg_status lxg_lines_compare_given(const struct lxg_lines *lines, const dou
                                         struct lxg_line_comparison result[], struct lxg_line_chi2 *chi2,
                                         struct lxg_error *error);
 
+/* ---- section of a case ---- */
+
+/* The section `lines`, but for `fit` and `profiles`, which other modules read. */
+struct lxg_lines_section {
+  struct lxg_lines *lines; /* NULL if no file is given */
+  struct lxg_line_map map;
+  struct lxg_line_assign_settings assign; /* scatter included */
+};
+
+struct lxg_node;
+struct lxg_files;
+
+/* Reads it; absent: defaults, no lines. LXG_INPUT with the place: "line-map", "line-prior", "line-scatter", and those of
+ * lxg_lines_read. */
+enum lxg_status lxg_lines_section_read(struct lxg_node *section, struct lxg_files *files,
+                                       struct lxg_lines_section *read, struct lxg_error *error);
+void lxg_lines_section_free(struct lxg_lines_section *section);
+
 #endif

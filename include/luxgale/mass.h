@@ -135,4 +135,20 @@ double lxg_mass_radio_flux(double mass_loss, double speed, double frequency, dou
 double lxg_mass_radio_rate(double flux, double speed, double frequency, double temperature, double distance,
                            double mean_weight, double charge, double electrons_per_ion);
 
+/* ---- section of a case ---- */
+
+/* The section `mass`. Its own luminosity and speed select the steady wind whose rate the caller finds. */
+struct lxg_mass_section {
+  bool present;
+  struct lxg_mass_data data;                    /* as given */
+  struct lxg_mass_datum photosphere_luminosity; /* [erg s^-1] */
+};
+
+struct lxg_node;
+
+/* Reads it; absent: all zero. Every quantity NAME may have its 1-sigma error NAME_error. `l_edd` is the unit Ledd. LXG_INPUT
+ * with the place ("mass-value", "mass-error", "mass-error-alone": an error without its quantity). */
+enum lxg_status lxg_mass_read(struct lxg_node *section, double l_edd, struct lxg_mass_section *read,
+                              struct lxg_error *error);
+
 #endif

@@ -124,4 +124,31 @@ void lxg_profile_free(struct lxg_profile *profile);
 /* beta and beta_c of (P2) for tau_0, sigma and r/R, by Gauss quadrature graded to the structure of f. */
 void lxg_profile_escape(double depth, double sigma, double radius_ratio, double *beta, double *beta_core);
 
+/* ---- section of a case ---- */
+
+/* One line asked for: an item of `lines.profiles`. */
+struct lxg_profile_request {
+  const char *label; /* borrowed from the document */
+  struct lxg_profile_line line;
+  double
+      optical_depth; /* Sobolev depth tau_0 at the photosphere that fixes the strength; NaN: the strength is given */
+  double wavelength; /* [cm]; NaN if not given */
+  size_t points;     /* velocities of the profile */
+  size_t count;      /* epochs */
+  double *time;      /* [count] [s] */
+};
+
+struct lxg_profile_requests {
+  size_t count;
+  struct lxg_profile_request *request;
+};
+
+struct lxg_node;
+
+/* Reads the list `lines.profiles`; absent: none. LXG_INPUT with the place: "profile-strength" (none, or more than one way to
+ * say how strong the line is), "profile-unused" (a key of the other kind), "profile-value", "profile-points". */
+enum lxg_status lxg_profile_requests_read(struct lxg_node *list, struct lxg_profile_requests *requests,
+                                          struct lxg_error *error);
+void lxg_profile_requests_free(struct lxg_profile_requests *requests);
+
 #endif

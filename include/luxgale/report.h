@@ -18,16 +18,22 @@
 #include "luxgale/ejecta.h"
 #include "luxgale/family.h"
 #include "luxgale/history.h"
+#include "luxgale/linefit.h"
+#include "luxgale/lines.h"
+#include "luxgale/mass.h"
 #include "luxgale/observed.h"
 #include "luxgale/opacity.h"
 #include "luxgale/opacity_table.h"
+#include "luxgale/profile.h"
 #include "luxgale/propagation.h"
 #include "luxgale/relations.h"
+#include "luxgale/speeds.h"
 #include "luxgale/star.h"
 #include "luxgale/status.h"
 #include "luxgale/table.h"
 #include "luxgale/wind.h"
 
+#include <stdbool.h>
 #include <stddef.h>
 
 /* Critical optical depth below which diffusion is a doubtful description of the light (warning `thin-wind`). */
@@ -183,6 +189,87 @@ enum lxg_status lxg_report_family_table(const struct lxg_family *family, struct 
 /* One row an epoch; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
 enum lxg_status lxg_report_epoch_table(const struct lxg_ejecta *ejecta, double l_edd,
                                        struct lxg_table **table, struct lxg_error *error);
+
+/* ---- lines, shells, mass ---- */
+
+/* Line measurements with what the model says of them; assignment NULL where there is no shell. */
+struct lxg_report_lines {
+  const struct lxg_lines *lines;
+  const struct lxg_line_map *map;
+  const struct lxg_line_assignment *assignment;
+  const struct lxg_line_comparison *comparison;
+  const struct lxg_line_chi2 *chi2;
+  double scatter; /* [cm s^-1] */
+};
+
+/* `lines:` chi^2, the map, how many rows belong to which system, and every row. */
+void lxg_report_lines(struct lxg_node *root, const struct lxg_report_lines *lines);
+
+/* Warnings: line-left (rows without a model speed, or of neither system), assignment-unsure. */
+void lxg_report_lines_warnings(struct lxg_node *warnings, const struct lxg_report_lines *lines);
+
+/* One row a measurement. */
+enum lxg_status lxg_report_lines_table(const struct lxg_report_lines *lines, struct lxg_table **table,
+                                       struct lxg_error *error);
+
+/* A fit of mass and held quantity, and how far its interpolation is off. */
+struct lxg_report_fit {
+  const struct lxg_linefit_grid *grid;
+  const struct lxg_linefit_result *result; /* NULL: none was found, `why` says so */
+  const struct lxg_error *why;
+  enum lxg_held held;
+  const struct lxg_linefit_range *whole; /* what was asked for */
+  int zooms;                             /* finer grids after the first; `grid` is the last */
+  bool settled;                          /* no row would change its system at the best point */
+  bool checked;                          /* the best point was solved without the grid */
+  double interpolation_sigma;            /* largest difference of a speed there, in sigma of its row */
+};
+
+/* `fit:`; warnings fit-unconstrained, fit-interpolation. */
+void lxg_report_fit(struct lxg_node *root, const struct lxg_report_fit *fit);
+void lxg_report_fit_warnings(struct lxg_node *warnings, const struct lxg_report_fit *fit);
+
+/* `swept_shell:` from `start` to `end` [s], and `velocity_distribution:` at `end`. LXG_MEMORY. */
+enum lxg_status lxg_report_shell(struct lxg_node *root, const struct lxg_speeds *speeds, double start,
+                                 double end, struct lxg_error *error);
+
+/* The most massive shell at equal steps of time; and dM/dv of all gas that left before `end`. A table without rows when no
+ * gas leaves. */
+enum lxg_status lxg_report_shell_table(const struct lxg_speeds *speeds, double start, double end,
+                                       struct lxg_table **table, struct lxg_error *error);
+enum lxg_status lxg_report_velocity_table(const struct lxg_speeds *speeds, double end,
+                                          struct lxg_table **table, struct lxg_error *error);
+
+/* One computed line profile. */
+struct lxg_report_profile {
+  const struct lxg_profile_request *request;
+  double time;                              /* [s]; NaN for a wind without history */
+  struct lxg_profile profile;               /* all zero if there is none */
+  double strength;                          /* k that was used [cm^3 g^-1 s^-1] */
+  double photosphere_speed, terminal_speed; /* [cm s^-1] */
+  bool computed;
+  struct lxg_error why;
+};
+
+/* `profiles:` numbers of each; and all their points as one table. */
+void lxg_report_profiles(struct lxg_node *root, const struct lxg_report_profile profiles[], size_t count);
+enum lxg_status lxg_report_profile_table(const struct lxg_report_profile profiles[], size_t count,
+                                         struct lxg_table **table, struct lxg_error *error);
+
+/* Where the rate of the steady wind in `mass` comes from. */
+struct lxg_report_steady {
+  bool asked;           /* luminosity and speed were given */
+  bool solved;          /* a wind has them */
+  size_t winds;         /* how many */
+  double rate, error;   /* [g s^-1] */
+  struct lxg_error why; /* if not solved */
+};
+
+/* `mass:` what was given, every method with assumptions, errors or what is missing, spread and reading. */
+void lxg_report_mass(struct lxg_node *root, const struct lxg_mass_data *data,
+                     const struct lxg_mass_summary *summary, const struct lxg_report_steady *steady);
+void lxg_report_mass_warnings(struct lxg_node *warnings, const struct lxg_mass_summary *summary,
+                              const struct lxg_report_steady *steady);
 
 /* `opacity:` at one point (log10 T, log10 R): value, slopes and, for the formula, the share of each source. */
 void lxg_report_opacity_point(struct lxg_node *root, const struct lxg_opacity *opacity, double log_t,

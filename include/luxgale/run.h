@@ -18,9 +18,13 @@
 #include "luxgale/family.h"
 #include "luxgale/files.h"
 #include "luxgale/history.h"
+#include "luxgale/linefit.h"
+#include "luxgale/lines.h"
+#include "luxgale/mass.h"
 #include "luxgale/observed.h"
 #include "luxgale/opacity.h"
 #include "luxgale/porosity.h"
+#include "luxgale/profile.h"
 #include "luxgale/propagation.h"
 #include "luxgale/settings.h"
 #include "luxgale/star.h"
@@ -46,7 +50,12 @@ struct lxg_case {
   struct lxg_burning burning;
   struct lxg_wind_hold hold[2]; /* in the order of the case; with burning the dark base comes first */
   size_t holds;
-  struct lxg_history *history;   /* luminosities; NULL where members come from magnitudes or colours */
+  struct lxg_history *history; /* luminosities; NULL where members come from magnitudes or colours */
+  struct lxg_lines_section lines;
+  struct lxg_linefit_range fit; /* held_low, held_high: factors of the held value */
+  bool fit_asked, fit_follows;  /* see lxg_linefit_read */
+  struct lxg_profile_requests profiles;
+  struct lxg_mass_section mass;
   struct lxg_history *reduction; /* factor of the law `reduction` against time; NULL: constant */
   struct lxg_observed *observed; /* a light curve; NULL unless the kind is `magnitude` */
   struct lxg_propagation_plan errors;
@@ -87,6 +96,9 @@ struct lxg_run_options {
   enum lxg_branch branch;         /* which of several winds with the same held values */
   bool epochs;                    /* fill results.epochs */
   bool structure;                 /* fill results.structure */
+  bool profiles;                  /* fill results.profiles */
+  bool shell;                     /* fill results.shell */
+  bool velocities;                /* fill results.velocities */
   size_t threads;                 /* threads for independent work; 0 means 1. Results do not depend on it */
   bool seeded;                    /* take `seed` in place of the case's errors.seed */
   long long seed;                 /* of the random numbers, >= 0 */
@@ -95,11 +107,14 @@ struct lxg_run_options {
 
 /* What a command gives. */
 struct lxg_results {
-  struct lxg_document *report; /* NULL if the command gives nothing but the table `epochs` */
-  struct lxg_table *epochs;    /* one row an epoch, a member, a point, a node; NULL if not asked for */
-  struct lxg_table *structure; /* NULL if not asked for, or if there is no wind */
-  bool answered;               /* false: the physics gave no answer, or only part; the report says why */
-  struct lxg_error why;        /* the reason then */
+  struct lxg_document *report;  /* NULL if the command gives nothing but the table `epochs` */
+  struct lxg_table *epochs;     /* one row an epoch, a member, a point, a node; NULL if not asked for */
+  struct lxg_table *structure;  /* NULL if not asked for, or if there is no wind */
+  struct lxg_table *profiles;   /* NULL if not asked for */
+  struct lxg_table *shell;      /* the same */
+  struct lxg_table *velocities; /* the same */
+  bool answered;                /* false: the physics gave no answer, or only part; the report says why */
+  struct lxg_error why;         /* the reason then */
 };
 
 /* NULL is allowed. */
@@ -124,6 +139,14 @@ enum lxg_status lxg_run_decline(const struct lxg_case *input, const struct lxg_r
 /* `outburst`: a luminosity history through a family of winds to the ejecta. */
 enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_run_options *options,
                                  struct lxg_results *results, struct lxg_error *error);
+
+/* `lines`: measured line speeds against the winds and shells of a history, or against one wind; line profiles; fit. */
+enum lxg_status lxg_run_lines(const struct lxg_case *input, const struct lxg_run_options *options,
+                              struct lxg_results *results, struct lxg_error *error);
+
+/* `mass`: ejected mass from an expansion speed by every method that the case allows. */
+enum lxg_status lxg_run_mass(const struct lxg_case *input, const struct lxg_run_options *options,
+                             struct lxg_results *results, struct lxg_error *error);
 
 /* `opacity at`: values and slopes at one point (report) or many (table `epochs` alone). LXG_INPUT "opacity-points" without either. */
 enum lxg_status lxg_run_opacity_at(const struct lxg_case *input, const struct lxg_run_options *options,

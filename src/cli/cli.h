@@ -19,6 +19,9 @@ enum cli_option_id {
   CLI_SET,
   CLI_EPOCHS,
   CLI_STRUCTURE,
+  CLI_PROFILES,
+  CLI_SHELL,
+  CLI_VELOCITIES,
   CLI_BRANCH,
   CLI_THREADS,
   CLI_SEED,
@@ -83,6 +86,7 @@ struct cli_request {
   const char **set; /* overrides, to be freed by lxg_free */
   size_t set_count;
   const char *epochs, *structure; /* files, NULL if not asked for */
+  const char *profiles, *shell, *velocities;
   bool quiet, verbose;
   bool help, version;
   struct lxg_run_options run;

@@ -44,6 +44,9 @@ static int run(struct cli_request *request, struct lxg_error *error) {
   tell_files(request, &input);
   request->run.epochs = wants_table(request);
   request->run.structure = request->structure != NULL;
+  request->run.profiles = request->profiles != NULL;
+  request->run.shell = request->shell != NULL;
+  request->run.velocities = request->velocities != NULL;
   status = request->command->run(&input, &request->run, &results, error);
   if (status == LXG_OK) {
     status = cli_write(request, &results, error);

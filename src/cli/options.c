@@ -125,6 +125,15 @@ static enum lxg_status apply(struct cli_request *request, size_t option, const c
   case CLI_STRUCTURE:
     request->structure = value;
     break;
+  case CLI_PROFILES:
+    request->profiles = value;
+    break;
+  case CLI_SHELL:
+    request->shell = value;
+    break;
+  case CLI_VELOCITIES:
+    request->velocities = value;
+    break;
   case CLI_BRANCH:
     return set_branch(request, value, error);
   case CLI_THREADS:
@@ -270,9 +279,11 @@ static enum lxg_status check(const struct cli_request *request, unsigned long lo
                            cli_option_row(i)->name, request->command->name);
     }
   }
-  const char *const places[] = {request->output, request->epochs, request->structure};
-  for (size_t i = 0; i < 3; i++) {
-    for (size_t j = i + 1; j < 3; j++) {
+  const char *const places[] = {request->output,   request->epochs, request->structure,
+                                request->profiles, request->shell,  request->velocities};
+  const size_t count = sizeof places / sizeof places[0];
+  for (size_t i = 0; i < count; i++) {
+    for (size_t j = i + 1; j < count; j++) {
       if (places[i] != NULL && places[j] != NULL && strcmp(places[i], places[j]) == 0) {
         return lxg_error_set(error, LXG_USAGE, "output-twice", "%s: two results cannot go to one place",
                              places[i]);

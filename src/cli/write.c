@@ -71,11 +71,18 @@ static void tell_warnings(struct lxg_document *report) {
 enum lxg_status cli_write(const struct cli_request *request, struct lxg_results *results,
                           struct lxg_error *error) {
   enum lxg_status status = LXG_OK;
-  if (request->epochs != NULL && results->epochs != NULL) {
-    status = write_table(request, request->epochs, results->epochs, error);
-  }
-  if (status == LXG_OK && request->structure != NULL && results->structure != NULL) {
-    status = write_table(request, request->structure, results->structure, error);
+  const struct {
+    const char *path;
+    const struct lxg_table *table;
+  } tables[] = {
+      {request->epochs, results->epochs},         {request->structure, results->structure},
+      {request->profiles, results->profiles},     {request->shell, results->shell},
+      {request->velocities, results->velocities},
+  };
+  for (size_t i = 0; i < sizeof tables / sizeof tables[0] && status == LXG_OK; i++) {
+    if (tables[i].path != NULL && tables[i].table != NULL) {
+      status = write_table(request, tables[i].path, tables[i].table, error);
+    }
   }
   if (status == LXG_OK) {
     const bool as_table = has_suffix(request->output, ".ecsv") || results->report == NULL;

@@ -84,6 +84,25 @@ static void echo_history(const struct lxg_case *input, struct lxg_node *section)
   lxg_node_add_number(luminosity, "last_d", history->time[history->count - 1] / LXG_DAY);
 }
 
+static void echo_lines(const struct lxg_case *input, struct lxg_node *section) {
+  if (input->lines.lines == NULL && input->profiles.count == 0) {
+    return;
+  }
+  struct lxg_node *lines = lxg_node_add_mapping(section, "lines");
+  lxg_node_add_integer(lines, "rows", input->lines.lines != NULL ? (long long)input->lines.lines->count : 0);
+  lxg_node_add_number(lines, "scatter_km_s", input->lines.assign.scatter / LXG_KM);
+  struct lxg_node *priors = lxg_node_add_mapping(lines, "priors");
+  for (int system = 0; system < LXG_LINE_SYSTEMS; system++) {
+    lxg_node_add_number(priors, lxg_line_system_name((enum lxg_line_system)system),
+                        input->lines.assign.prior[system]);
+  }
+  lxg_node_add_integer(lines, "profiles", (long long)input->profiles.count);
+  lxg_node_add_bool(lines, "fit", input->fit_asked);
+  if (input->fit_asked) {
+    lxg_node_add_text(lines, "fit_luminosity", input->fit_follows ? "eddington" : "absolute");
+  }
+}
+
 static void echo_driving(const struct lxg_case *input, struct lxg_node *section) {
   if (input->claimed) {
     const struct lxg_driving_claim *claim = &input->claim;
@@ -144,6 +163,7 @@ void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
   }
   echo_history(input, section);
   lxg_report_error_plan(section, &input->errors);
+  echo_lines(input, section);
   echo_driving(input, section);
   echo_settings(input, section);
   echo_files(input, section);

@@ -25,18 +25,6 @@ static enum lxg_status read_version(struct lxg_node *root, struct lxg_error *err
   return status;
 }
 
-/* Sections whose commands are not in this version. */
-static enum lxg_status refuse_later(struct lxg_node *root, struct lxg_error *error) {
-  static const char *const later[] = {"lines"};
-  for (size_t i = 0; i < sizeof later / sizeof later[0]; i++) {
-    struct lxg_node *node = lxg_node_find(root, later[i]);
-    if (!lxg_node_is_none(node)) {
-      return lxg_keys_refuse(node, error);
-    }
-  }
-  return LXG_OK;
-}
-
 /* With burning the luminosity at R_0 is held at zero, unless the case gives the star's own, and families end at the ignition
  * mass. */
 static enum lxg_status hold_dark_base(struct lxg_case *input, struct lxg_node *section,
@@ -134,6 +122,22 @@ static enum lxg_status read_observation(struct lxg_case *input, struct lxg_node 
              : status;
 }
 
+/* What a spectroscopist brings. */
+static enum lxg_status read_line_sections(struct lxg_case *input, struct lxg_node *root,
+                                          struct lxg_error *error) {
+  struct lxg_node *lines = lxg_node_find(root, "lines");
+  enum lxg_status status = lxg_lines_section_read(lines, &input->files, &input->lines, error);
+  if (status == LXG_OK) {
+    status = lxg_linefit_read(lxg_node_find(lines, "fit"), input->star.gm, input->dwarf, &input->fit,
+                              &input->fit_asked, &input->fit_follows, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_profile_requests_read(lxg_node_find(lines, "profiles"), &input->profiles, error);
+  }
+  return status == LXG_OK ? lxg_mass_read(lxg_node_find(root, "mass"), input->l_edd, &input->mass, error)
+                          : status;
+}
+
 static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *error) {
   struct lxg_node *root = lxg_document_root(input->document);
   enum lxg_status status = lxg_keys_check(root, "", error);
@@ -148,9 +152,6 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
   }
   if (status == LXG_OK) {
     status = read_body(input, root, error);
-  }
-  if (status == LXG_OK) {
-    status = refuse_later(root, error);
   }
   if (status == LXG_OK) {
     status = lxg_wind_hold_read(lxg_node_find(root, "hold"), &input->star, input->l_edd, input->hold,
@@ -171,6 +172,9 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
   }
   if (status == LXG_OK) {
     status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
+  }
+  if (status == LXG_OK) {
+    status = read_line_sections(input, root, error);
   }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
 }
@@ -200,6 +204,8 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
 void lxg_case_free(struct lxg_case *input) {
   if (input != NULL) {
     lxg_history_destroy(input->history);
+    lxg_lines_section_free(&input->lines);
+    lxg_profile_requests_free(&input->profiles);
     lxg_history_destroy(input->reduction);
     lxg_observed_destroy(input->observed);
     lxg_opacity_destroy(input->opacity);

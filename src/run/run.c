@@ -14,6 +14,9 @@ void lxg_results_free(struct lxg_results *results) {
     lxg_document_destroy(results->report);
     lxg_table_destroy(results->epochs);
     lxg_table_destroy(results->structure);
+    lxg_table_destroy(results->profiles);
+    lxg_table_destroy(results->shell);
+    lxg_table_destroy(results->velocities);
     *results = (struct lxg_results){0};
   }
 }
@@ -52,6 +55,26 @@ enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *
   return lxg_error_set(error, LXG_INPUT, "hold-count", "%s: error: hold: %zu held, but `%s` needs %s",
                        lxg_document_name(input->document), input->holds, command,
                        count == 2 ? "two held quantities" : "exactly one held quantity");
+}
+
+enum lxg_status lxg_run_require_history(const struct lxg_case *input, const char *command,
+                                        struct lxg_error *error) {
+  if (input->history == NULL && !input->history_from_decline) {
+    return lxg_error_set(error, LXG_INPUT, "key-missing",
+                         "%s: error: luminosity: `%s` needs a luminosity history",
+                         lxg_document_name(input->document), command);
+  }
+  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
+                                   ? LXG_HELD_BASE_LUMINOSITY
+                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
+  const enum lxg_status status = lxg_run_require_holds(input, command, 1, error);
+  if (status == LXG_OK && input->hold[0].quantity == driven) {
+    return lxg_error_set(
+        error, LXG_INPUT, "hold-dependent",
+        "%s: error: hold.%s: the luminosity history gives this already; hold another quantity",
+        lxg_document_name(input->document), lxg_held_name(driven));
+  }
+  return status;
 }
 
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input) {

@@ -8,6 +8,7 @@
 #include "luxgale/ejecta.h"
 #include "luxgale/report.h"
 #include "luxgale/run.h"
+#include "luxgale/speeds.h"
 
 /* Opens a report with `program`, `case` and `star`. */
 enum lxg_status lxg_run_begin(const struct lxg_case *input, const char *command, struct lxg_results *results,
@@ -92,5 +93,34 @@ enum lxg_status lxg_run_light_curve(const struct lxg_case *input, double mean_sp
 enum lxg_status lxg_run_errors(const struct lxg_case *input, const struct lxg_run_options *options,
                                const struct lxg_family *family, const struct lxg_observed_course *course,
                                struct lxg_propagation *propagation, struct lxg_error *error);
+
+/* LXG_INPUT unless the case has a history and exactly one held quantity that the history does not give. */
+enum lxg_status lxg_run_require_history(const struct lxg_case *input, const char *command,
+                                        struct lxg_error *error);
+
+/* Speeds of the winds of a history; `solver` for structures, NULL: there are none. */
+enum lxg_status lxg_run_speeds(const struct lxg_case *input, enum lxg_branch branch,
+                               const struct lxg_run_winds *winds, struct lxg_wind_solver *solver,
+                               struct lxg_speeds **speeds, struct lxg_error *error);
+
+/* Swept shell and velocities of a history, in the report and as tables; nothing without a history. */
+enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run_options *options,
+                              const struct lxg_speeds *speeds, struct lxg_results *results,
+                              struct lxg_error *error);
+
+/* `swept_shell:` none, where the reduction of the opacity changes with time: the winds of such a history are not followed to a shell.
+ * LXG_INPUT "shell-not-available" if one of its tables is asked for. */
+enum lxg_status lxg_run_no_shell(const struct lxg_case *input, const struct lxg_run_options *options,
+                                 struct lxg_node *root, struct lxg_error *error);
+
+/* Fit of the stellar mass and the held quantity to the case's lines; reports it and adds warnings. */
+enum lxg_status lxg_run_fit(const struct lxg_case *input, const struct lxg_run_options *options,
+                            const struct lxg_speeds *speeds, struct lxg_node *warnings,
+                            struct lxg_results *results, struct lxg_error *error);
+
+/* Computes all line profiles of the case; free with lxg_run_profiles_free. */
+enum lxg_status lxg_run_profiles(const struct lxg_case *input, struct lxg_speeds *speeds,
+                                 struct lxg_report_profile **profile, size_t *count, struct lxg_error *error);
+void lxg_run_profiles_free(struct lxg_report_profile profile[], size_t count);
 
 #endif

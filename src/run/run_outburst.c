@@ -18,10 +18,12 @@ struct outburst {
   struct lxg_observed_course course; /* magnitudes along the family; empty otherwise */
   struct lxg_ejecta ejecta;
   struct lxg_propagation errors;
+  struct lxg_speeds *speeds; /* of the same winds: what the shell is made of */
 };
 
 static void outburst_free(struct outburst *outburst) {
   lxg_propagation_free(&outburst->errors);
+  lxg_speeds_destroy(outburst->speeds);
   lxg_ejecta_free(&outburst->ejecta);
   lxg_observed_course_free(&outburst->course);
   lxg_run_winds_free(&outburst->winds);
@@ -57,36 +59,19 @@ static enum lxg_status require_simple(const struct lxg_case *input, struct lxg_e
 }
 
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
-  const char *name = lxg_document_name(input->document);
-  if (input->history == NULL && input->observed == NULL && !input->history_from_decline) {
-    return lxg_error_set(error, LXG_INPUT, "key-missing",
-                         "%s: error: luminosity: `outburst` needs a luminosity history", name);
+  const enum lxg_status status = require_simple(input, error);
+  if (status != LXG_OK || input->observed == NULL || input->history != NULL) {
+    return status == LXG_OK ? lxg_run_require_history(input, "outburst", error) : status;
   }
-  enum lxg_status status = require_simple(input, error);
-  if (status == LXG_OK && by_colours(input)) {
+  if (by_colours(input)) {
     return input->holds == 0
                ? LXG_OK
                : lxg_error_set(
                      error, LXG_INPUT, "hold-count",
                      "%s: error: hold: colours give two quantities of each epoch; nothing else can be held",
-                     name);
+                     lxg_document_name(input->document));
   }
-  if (status == LXG_OK) {
-    status = lxg_run_require_holds(input, "outburst", 1, error);
-  }
-  if (status != LXG_OK || (input->history == NULL && !input->history_from_decline)) {
-    return status;
-  }
-  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
-                                   ? LXG_HELD_BASE_LUMINOSITY
-                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
-  if (input->hold[0].quantity == driven) {
-    return lxg_error_set(
-        error, LXG_INPUT, "hold-dependent",
-        "%s: error: hold.%s: the luminosity history gives this already; hold another quantity", name,
-        lxg_held_name(driven));
-  }
-  return LXG_OK;
+  return lxg_run_require_holds(input, "outburst", 1, error);
 }
 
 /* The winds of magnitudes or colours; their luminosities become the history of the case. */
@@ -188,6 +173,19 @@ static enum lxg_status add_errors(const struct lxg_case *input, const struct lxg
 }
 
 /* What the light is by itself, and which light served. */
+/* The shell that later, faster gas sweeps up, where the winds follow one luminosity history. */
+static enum lxg_status add_shell(const struct lxg_case *input, const struct lxg_run_options *options,
+                                 struct outburst *outburst, struct lxg_results *results,
+                                 struct lxg_error *error) {
+  const bool members = input->observed != NULL && input->observed->way != LXG_OBSERVED_CORRECTION;
+  if (input->reduction != NULL || members) {
+    return lxg_run_no_shell(input, options, lxg_document_root(results->report), error);
+  }
+  const enum lxg_status status =
+      lxg_run_speeds(input, options->branch, &outburst->winds, NULL, &outburst->speeds, error);
+  return status == LXG_OK ? lxg_run_shell(input, options, outburst->speeds, results, error) : status;
+}
+
 static enum lxg_status add_light(const struct lxg_case *input, const struct outburst *outburst,
                                  struct lxg_node *root, struct lxg_error *error) {
   if (input->observed == NULL) {
@@ -236,6 +234,9 @@ static enum lxg_status report(const struct lxg_case *input, const struct lxg_run
   }
   if (status == LXG_OK) {
     status = add_light(input, outburst, root, error);
+  }
+  if (status == LXG_OK) {
+    status = add_shell(input, options, outburst, results, error);
   }
   if (status == LXG_OK) {
     status = tabulate(input, options, outburst, results, error);
@@ -287,7 +288,6 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *given, const struct lxg_
                                  struct lxg_results *results, struct lxg_error *error) {
   struct outburst outburst = {0};
   struct lxg_case completed = *given;
-
   const struct lxg_case *input = &completed;
   enum lxg_status status = lxg_run_begin(given, "outburst", results, error);
   if (status == LXG_OK) {
