@@ -61,9 +61,13 @@ struct lxg_run_options {
   enum lxg_branch branch; /* which of several winds with the same held values */
   bool epochs;            /* fill results.epochs */
   bool structure;         /* fill results.structure */
+  bool pictures;          /* fill every table that a picture needs */
   size_t threads;         /* threads for independent work; 0 means 1. Results do not depend on it */
   bool seeded;            /* take `seed` in place of the case's errors.seed */
   long long seed;         /* of the random numbers, >= 0 */
+  /* Told what is being done as each stage begins; NULL: nobody is told. */
+  void (*stage)(void *context, const char *doing);
+  void *context;
 };
 
 /* What a command gives. */
@@ -71,6 +75,8 @@ struct lxg_results {
   struct lxg_document *report;
   struct lxg_table *epochs;    /* NULL if not asked for */
   struct lxg_table *structure; /* NULL if not asked for, or if there is no wind */
+  struct lxg_table *family;    /* of `outburst` for pictures; NULL if not asked for */
+  struct lxg_table *map;       /* opacity around a wind's track, for pictures; NULL if not asked for */
   bool answered;               /* false: the physics gave no answer, or only part; the report says why */
   struct lxg_error why;        /* the reason then */
 };

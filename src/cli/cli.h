@@ -19,6 +19,8 @@ enum cli_option_id {
   CLI_SET,
   CLI_EPOCHS,
   CLI_STRUCTURE,
+  CLI_PLOTS,
+  CLI_HTML,
   CLI_BRANCH,
   CLI_THREADS,
   CLI_SEED,
@@ -34,6 +36,9 @@ enum cli_option_id {
 #define CLI_COMMON                                                                                           \
   (CLI_BIT(CLI_OUTPUT) | CLI_BIT(CLI_FORMAT) | CLI_BIT(CLI_SET) | CLI_BIT(CLI_THREADS) | CLI_BIT(CLI_SEED) | \
    CLI_BIT(CLI_QUIET) | CLI_BIT(CLI_VERBOSE) | CLI_BIT(CLI_HELP) | CLI_BIT(CLI_VERSION))
+
+/* Options of commands with pictures. */
+#define CLI_PICTURES (CLI_BIT(CLI_PLOTS) | CLI_BIT(CLI_HTML))
 
 struct cli_option {
   const char *name;     /* after -- */
@@ -66,6 +71,7 @@ struct cli_request {
   const char **set; /* overrides, to be freed by lxg_free */
   size_t set_count;
   const char *epochs, *structure; /* files, NULL if not asked for */
+  const char *plots, *html;       /* folder of pictures and file of the page, NULL if not asked for */
   bool quiet, verbose;
   bool help, version;
   struct lxg_run_options run;
@@ -83,7 +89,11 @@ enum lxg_status cli_version(struct lxg_error *error);
 void cli_complain(const struct lxg_error *error);
 
 /* Writes what a command gave to the places that were asked for. */
-enum lxg_status cli_write(const struct cli_request *request, struct lxg_results *results,
-                          struct lxg_error *error);
+enum lxg_status cli_write(const struct cli_request *request, const struct lxg_case *input,
+                          struct lxg_results *results, struct lxg_error *error);
+
+/* Draws the pictures and writes the page that were asked for; what could not be drawn becomes a warning of the report. */
+enum lxg_status cli_pictures(const struct cli_request *request, const struct lxg_case *input,
+                             struct lxg_results *results, struct lxg_error *error);
 
 #endif

@@ -9,14 +9,14 @@
 static const struct cli_command commands[] = {
     {"outburst", "turn a luminosity history into winds and an ejecta report",
      "star, composition, one held quantity and `luminosity`",
-     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH), lxg_run_outburst,
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH), lxg_run_outburst,
      "luxgale outburst --epochs epochs.ecsv -o report.yaml examples/quickstart.yaml"},
     {"wind", "solve one steady wind", "star, composition and two held quantities",
-     CLI_COMMON | CLI_BIT(CLI_STRUCTURE) | CLI_BIT(CLI_BRANCH), lxg_run_wind,
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_STRUCTURE) | CLI_BIT(CLI_BRANCH), lxg_run_wind,
      "luxgale wind --set hold.launch_radius='2e10 cm' examples/wind.yaml"},
     {"family", "trace all winds that share one held quantity, from the thin to the thick end",
-     "star, composition and one held quantity", CLI_COMMON | CLI_BIT(CLI_EPOCHS), lxg_run_family,
-     "luxgale family -o family.ecsv examples/quickstart.yaml"},
+     "star, composition and one held quantity", CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS),
+     lxg_run_family, "luxgale family -o family.ecsv examples/quickstart.yaml"},
     {"star", "radius, Eddington luminosity, escape speed, tiring rate, ignition mass", "star and composition",
      CLI_COMMON, lxg_run_star, "luxgale star examples/quickstart.yaml"},
 };
@@ -31,6 +31,10 @@ static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_EPOCHS] = {"epochs", 0, "FILE",
                     "Write the table (ECSV), one row an epoch or a member of the family."},
     [CLI_STRUCTURE] = {"structure", 0, "FILE", "Write the wind's radial structure (ECSV)."},
+    [CLI_PLOTS] = {"plots", 0, "FOLDER",
+                   "Draw pictures there (SVG, PDF, PNG), their gnuplot scripts and data beside them."},
+    [CLI_HTML] = {"html", 0, "FILE",
+                  "Write one page with results, pictures, warnings and input, to send or print."},
     [CLI_BRANCH] =
         {"branch", 0, "thin|thick",
          "Where several winds have the held values: the one with the smallest (thin, the default) or largest "

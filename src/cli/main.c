@@ -41,9 +41,10 @@ static int run(struct cli_request *request, struct lxg_error *error) {
   tell_files(request, &input);
   request->run.epochs = wants_table(request);
   request->run.structure = request->structure != NULL;
+  request->run.pictures = request->plots != NULL || request->html != NULL;
   status = request->command->run(&input, &request->run, &results, error);
   if (status == LXG_OK) {
-    status = cli_write(request, &results, error);
+    status = cli_write(request, &input, &results, error);
   }
   const int answer = results.answered ? 0 : 1;
   lxg_results_free(&results);

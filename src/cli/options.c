@@ -93,6 +93,12 @@ static enum lxg_status apply(struct cli_request *request, size_t option, const c
   case CLI_STRUCTURE:
     request->structure = value;
     break;
+  case CLI_PLOTS:
+    request->plots = value;
+    break;
+  case CLI_HTML:
+    request->html = value;
+    break;
   case CLI_BRANCH:
     return set_branch(request, value, error);
   case CLI_THREADS:
@@ -182,9 +188,9 @@ static enum lxg_status check(const struct cli_request *request, unsigned used, s
                            cli_option_row(i)->name, request->command->name);
     }
   }
-  const char *const places[] = {request->output, request->epochs, request->structure};
-  for (size_t i = 0; i < 3; i++) {
-    for (size_t j = i + 1; j < 3; j++) {
+  const char *const places[] = {request->output, request->epochs, request->structure, request->html};
+  for (size_t i = 0; i < 4; i++) {
+    for (size_t j = i + 1; j < 4; j++) {
       if (places[i] != NULL && places[j] != NULL && strcmp(places[i], places[j]) == 0) {
         return lxg_error_set(error, LXG_USAGE, "output-twice", "%s: two results cannot go to one place",
                              places[i]);

@@ -66,10 +66,10 @@ static void tell_warnings(struct lxg_document *report) {
   }
 }
 
-enum lxg_status cli_write(const struct cli_request *request, struct lxg_results *results,
-                          struct lxg_error *error) {
-  enum lxg_status status = LXG_OK;
-  if (request->epochs != NULL && results->epochs != NULL) {
+enum lxg_status cli_write(const struct cli_request *request, const struct lxg_case *input,
+                          struct lxg_results *results, struct lxg_error *error) {
+  enum lxg_status status = cli_pictures(request, input, results, error);
+  if (status == LXG_OK && request->epochs != NULL && results->epochs != NULL) {
     status = write_table(request, request->epochs, results->epochs, error);
   }
   if (status == LXG_OK && request->structure != NULL && results->structure != NULL) {

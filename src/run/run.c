@@ -12,6 +12,8 @@ void lxg_results_free(struct lxg_results *results) {
     lxg_document_destroy(results->report);
     lxg_table_destroy(results->epochs);
     lxg_table_destroy(results->structure);
+    lxg_table_destroy(results->family);
+    lxg_table_destroy(results->map);
     *results = (struct lxg_results){0};
   }
 }
@@ -45,6 +47,12 @@ enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *
   return lxg_error_set(error, LXG_INPUT, "hold-count", "%s: error: hold: %zu held, but `%s` needs %s",
                        lxg_document_name(input->document), input->holds, command,
                        count == 2 ? "two held quantities" : "exactly one held quantity");
+}
+
+void lxg_run_stage(const struct lxg_run_options *options, const char *doing) {
+  if (options->stage != NULL) {
+    options->stage(options->context, doing);
+  }
 }
 
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input) {

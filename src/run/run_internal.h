@@ -18,6 +18,9 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error);
 
+/* Tells the caller, if it wants to know, what begins now ("tracing the family of winds"). */
+void lxg_run_stage(const struct lxg_run_options *options, const char *doing);
+
 /* The model behind every wind of the case. */
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
 

@@ -53,9 +53,11 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
     status = lxg_wind_solver_create(&model, NULL, &outburst->solver, error);
   }
   if (status == LXG_OK) {
+    lxg_run_stage(options, "tracing the family of winds");
     status = lxg_family_trace(outburst->solver, &input->hold[0], NULL, &outburst->family, error);
   }
   if (status == LXG_OK) {
+    lxg_run_stage(options, "following the history");
     status = lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius,
                                 &ejecting, &outburst->ejecta, error);
   }
@@ -106,8 +108,11 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
     lxg_report_ejecta(root, &outburst.ejecta);
     lxg_report_family(root, &outburst.family);
     lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst.ejecta, input->history, &outburst.excess);
-    if (options->epochs) {
+    if (options->epochs || options->pictures) {
       status = lxg_report_epoch_table(&outburst.ejecta, input->l_edd, &results->epochs, error);
+    }
+    if (status == LXG_OK && options->pictures) {
+      status = lxg_report_family_table(&outburst.family, &results->family, error);
     }
   }
   if (status == LXG_OK) {

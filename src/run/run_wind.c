@@ -85,6 +85,7 @@ static enum lxg_status search(const struct lxg_case *input, const struct lxg_run
     return cold;
   }
   const int steps = wind->newton_steps;
+  lxg_run_stage(options, "searching other winds with these values");
   enum lxg_status status = find_branches(input, solver, branches, error);
   if (!is_answer(status)) {
     return status;
@@ -115,13 +116,17 @@ static void report_branches(struct lxg_node *section, const struct branches *bra
   }
 }
 
-static enum lxg_status add_structure(const struct lxg_case *input, struct lxg_wind_solver *solver,
-                                     struct lxg_results *results, struct lxg_error *error) {
+static enum lxg_status add_structure(const struct lxg_case *input, const struct lxg_run_options *options,
+                                     struct lxg_wind_solver *solver, struct lxg_results *results,
+                                     struct lxg_error *error) {
   struct lxg_wind_row *rows = NULL;
   size_t count = 0, critical = 0, photosphere = 0;
   enum lxg_status status = lxg_wind_structure(solver, &rows, &count, &critical, &photosphere, error);
   if (status == LXG_OK) {
     status = lxg_report_structure_table(rows, count, input->opacity, &results->structure, error);
+  }
+  if (status == LXG_OK && options->pictures) {
+    status = lxg_report_opacity_map(input->opacity, rows, photosphere + 1, &results->map, error);
   }
   lxg_free(rows);
   return status;
@@ -141,6 +146,7 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
     status = lxg_wind_solver_create(&model, NULL, &solver, error);
   }
   if (status == LXG_OK) {
+    lxg_run_stage(options, "searching the wind");
     status = search(input, options, solver, &branches, &wind, error);
   }
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
@@ -160,8 +166,8 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
     }
     status = lxg_document_status(results->report, error);
   }
-  if (status == LXG_OK && results->answered && options->structure) {
-    status = add_structure(input, solver, results, error);
+  if (status == LXG_OK && results->answered && (options->structure || options->pictures)) {
+    status = add_structure(input, options, solver, results, error);
   }
   lxg_wind_solver_destroy(solver);
   return status;
