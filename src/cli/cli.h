@@ -8,6 +8,7 @@
 #include "luxgale/document.h"
 #include "luxgale/run.h"
 #include "luxgale/status.h"
+#include "luxgale/text.h"
 
 #include <stdbool.h>
 #include <stddef.h>
@@ -24,6 +25,7 @@ enum cli_option_id {
   CLI_BRANCH,
   CLI_THREADS,
   CLI_SEED,
+  CLI_FOR,
   CLI_QUIET,
   CLI_VERBOSE,
   CLI_HELP,
@@ -36,6 +38,11 @@ enum cli_option_id {
 #define CLI_COMMON                                                                                           \
   (CLI_BIT(CLI_OUTPUT) | CLI_BIT(CLI_FORMAT) | CLI_BIT(CLI_SET) | CLI_BIT(CLI_THREADS) | CLI_BIT(CLI_SEED) | \
    CLI_BIT(CLI_QUIET) | CLI_BIT(CLI_VERBOSE) | CLI_BIT(CLI_HELP) | CLI_BIT(CLI_VERSION))
+
+/* Options of `new`, which takes no case. */
+#define CLI_NEW                                                                                              \
+  (CLI_BIT(CLI_OUTPUT) | CLI_BIT(CLI_FOR) | CLI_BIT(CLI_QUIET) | CLI_BIT(CLI_VERBOSE) | CLI_BIT(CLI_HELP) |  \
+   CLI_BIT(CLI_VERSION))
 
 /* Options of commands with pictures. */
 #define CLI_PICTURES (CLI_BIT(CLI_PLOTS) | CLI_BIT(CLI_HTML))
@@ -50,7 +57,7 @@ struct cli_option {
 struct cli_command {
   const char *name;
   const char *sentence;
-  const char *needs; /* what the case must hold */
+  const char *needs; /* what the case must hold; NULL: the command takes no case */
   unsigned options;  /* bits, common ones included */
   enum lxg_status (*run)(const struct lxg_case *input, const struct lxg_run_options *options,
                          struct lxg_results *results, struct lxg_error *error);
@@ -68,10 +75,12 @@ struct cli_request {
   const char *case_path;
   const char *output; /* "-" by default */
   enum lxg_document_format format;
+  bool aligned;     /* text for people instead */
   const char **set; /* overrides, to be freed by lxg_free */
   size_t set_count;
   const char *epochs, *structure; /* files, NULL if not asked for */
   const char *plots, *html;       /* folder of pictures and file of the page, NULL if not asked for */
+  const char *reader;             /* of `new`: for whom the case is */
   bool quiet, verbose;
   bool help, version;
   struct lxg_run_options run;
@@ -80,13 +89,40 @@ struct cli_request {
 /* Understands argv[1...]. LXG_USAGE with a sentence. */
 enum lxg_status cli_request_read(struct cli_request *request, int argc, char **argv, struct lxg_error *error);
 
-/* Prints the general help, or that of a topic: a command, case, units, settings, reasons, or the path of a key. LXG_USAGE for
- * an unknown one. */
-enum lxg_status cli_help(const char *topic, struct lxg_error *error);
+/* Prints the general help, or that of a topic: a command, case, units, settings, reasons, reason CODE, or the path of a key.
+ * LXG_USAGE for an unknown one. */
+enum lxg_status cli_help(const char *topic, const char *code, struct lxg_error *error);
 enum lxg_status cli_version(struct lxg_error *error);
 
 /* Prints "luxgale: FILE:LINE:COL: error: text [code]" and its contexts. */
 void cli_complain(const struct lxg_error *error);
+
+/* Codes that `help reason` explains (NULL beyond the end), and the explanation. LXG_USAGE for an unknown one. */
+const char *cli_reason_code(size_t index);
+const char *cli_reason_meaning(size_t index);
+enum lxg_status cli_reason_explain(struct lxg_buffer *out, const char *code, struct lxg_error *error);
+
+/* `new`: writes a starter case. LXG_USAGE if the reader is unknown or the file exists. */
+enum lxg_status cli_new(const struct cli_request *request, struct lxg_error *error);
+
+/* The report as aligned text. */
+void cli_aligned(struct lxg_buffer *out, struct lxg_node *report);
+
+/* Line on a terminal about what is being done; NULL where none is wanted, which stop takes too. */
+struct cli_progress;
+struct cli_progress *cli_progress_start(const struct cli_request *request);
+void cli_progress_stage(void *progress, const char *doing);
+void cli_progress_stop(struct cli_progress *progress);
+
+/* Files made from the tables: manual pages, completions, and what a report holds. */
+void cli_print_manual(struct lxg_buffer *out);
+void cli_print_case_manual(struct lxg_buffer *out);
+void cli_print_bash(struct lxg_buffer *out);
+void cli_print_zsh(struct lxg_buffer *out);
+void cli_print_fish(struct lxg_buffer *out);
+void cli_print_report(struct lxg_buffer *out);
+void cli_print_report_markdown(struct lxg_buffer *out);
+bool cli_print_report_key(struct lxg_buffer *out, const char *topic); /* false if no key of a report fits */
 
 /* Writes what a command gave to the places that were asked for. */
 enum lxg_status cli_write(const struct cli_request *request, const struct lxg_case *input,

@@ -17,6 +17,8 @@ static const struct cli_command commands[] = {
     {"family", "trace all winds that share one held quantity, from the thin to the thick end",
      "star, composition and one held quantity", CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS),
      lxg_run_family, "luxgale family -o family.ecsv examples/quickstart.yaml"},
+    {"new", "write a commented case to begin with", NULL, CLI_NEW, NULL,
+     "luxgale new --for theorist -o my-case.yaml"},
     {"star", "radius, Eddington luminosity, escape speed, tiring rate, ignition mass", "star and composition",
      CLI_COMMON, lxg_run_star, "luxgale star examples/quickstart.yaml"},
 };
@@ -24,8 +26,9 @@ static const struct cli_command commands[] = {
 static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_OUTPUT] = {"output", 'o', "FILE",
                     "Write the report there instead of standard output; FILE.ecsv takes the table."},
-    [CLI_FORMAT] = {"format", 0, "yaml|json",
-                    "Form of the report; else by the suffix of --output, else yaml."},
+    [CLI_FORMAT] = {"format", 0, "yaml|json|text",
+                    "Form of the report; else by the suffix of --output, else text on a terminal and yaml "
+                    "anywhere else."},
     [CLI_SET] = {"set", 0, "PATH=VALUE",
                  "Replace or add a key of the case, e.g. star.mass='1.1 Msun'; repeatable."},
     [CLI_EPOCHS] = {"epochs", 0, "FILE",
@@ -42,6 +45,7 @@ static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_THREADS] = {"threads", 0, "N",
                      "Threads for independent work; results do not depend on it. Default 1."},
     [CLI_SEED] = {"seed", 0, "N", "Seed of the random numbers in place of the case's errors.seed."},
+    [CLI_FOR] = {"for", 0, "spectroscopist|theorist|observer", "For whom the new case is."},
     [CLI_QUIET] = {"quiet", 'q', NULL, "No warnings on standard error; errors are still told."},
     [CLI_VERBOSE] = {"verbose", 'v', NULL, "Tell which files were read and written."},
     [CLI_HELP] = {"help", 'h', NULL, "Explain, and do nothing else."},

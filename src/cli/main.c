@@ -42,7 +42,11 @@ static int run(struct cli_request *request, struct lxg_error *error) {
   request->run.epochs = wants_table(request);
   request->run.structure = request->structure != NULL;
   request->run.pictures = request->plots != NULL || request->html != NULL;
+  struct cli_progress *const progress = cli_progress_start(request);
+  request->run.stage = progress != NULL ? cli_progress_stage : NULL;
+  request->run.context = progress;
   status = request->command->run(&input, &request->run, &results, error);
+  cli_progress_stop(progress);
   if (status == LXG_OK) {
     status = cli_write(request, &input, &results, error);
   }
@@ -54,15 +58,17 @@ static int run(struct cli_request *request, struct lxg_error *error) {
 
 static int dispatch(int argc, char **argv, struct lxg_error *error) {
   if (argc > 1 && strcmp(argv[1], "help") == 0) {
-    return lxg_status_exit(cli_help(argc > 2 ? argv[2] : NULL, error));
+    return lxg_status_exit(cli_help(argc > 2 ? argv[2] : NULL, argc > 3 ? argv[3] : NULL, error));
   }
   struct cli_request request;
   enum lxg_status status = cli_request_read(&request, argc, argv, error);
   int answer = lxg_status_exit(status);
   if (status == LXG_OK && request.help) {
-    answer = lxg_status_exit(cli_help(request.command != NULL ? request.command->name : NULL, error));
+    answer = lxg_status_exit(cli_help(request.command != NULL ? request.command->name : NULL, NULL, error));
   } else if (status == LXG_OK && request.version) {
     answer = lxg_status_exit(cli_version(error));
+  } else if (status == LXG_OK && request.command->needs == NULL) {
+    answer = lxg_status_exit(cli_new(&request, error));
   } else if (status == LXG_OK) {
     answer = run(&request, error);
   }

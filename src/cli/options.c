@@ -58,10 +58,12 @@ static enum lxg_status read_integer(size_t option, const char *text, long long l
 
 static enum lxg_status set_format(struct cli_request *request, const char *value, struct lxg_error *error) {
   const bool json = strcmp(value, "json") == 0;
-  if (!json && strcmp(value, "yaml") != 0) {
+  const bool text = strcmp(value, "text") == 0;
+  if (!json && !text && strcmp(value, "yaml") != 0) {
     return bad_value(CLI_FORMAT, value, error);
   }
   request->format = json ? LXG_DOCUMENT_JSON : LXG_DOCUMENT_YAML;
+  request->aligned = text;
   return LXG_OK;
 }
 
@@ -108,6 +110,9 @@ static enum lxg_status apply(struct cli_request *request, size_t option, const c
   case CLI_SEED:
     status = read_integer(option, value, 0, INT64_MAX, &request->run.seed, error);
     request->run.seeded = true;
+    break;
+  case CLI_FOR:
+    request->reader = value;
     break;
   case CLI_QUIET:
     request->quiet = true;
@@ -164,8 +169,11 @@ static enum lxg_status take_operands(struct cli_request *request, int count, cha
   if (request->command == NULL) {
     return unknown_command(operand[0], error);
   }
+  if (request->command->needs == NULL && count > 1) {
+    return lxg_error_set(error, LXG_USAGE, "operand-extra", "%s: `%s` takes no case", operand[1], operand[0]);
+  }
   if (count == 1) {
-    return request->help || request->version
+    return request->help || request->version || request->command->needs == NULL
                ? LXG_OK
                : lxg_error_set(error, LXG_USAGE, "case-missing",
                                "%s: the case file is missing (`-` for standard input)", operand[0]);

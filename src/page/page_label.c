@@ -5,6 +5,7 @@
 #include "luxgale/page.h"
 
 #include <math.h>
+#include <stdbool.h>
 #include <stdio.h>
 #include <string.h>
 
@@ -60,7 +61,8 @@ const char *lxg_page_label(const char *key, char *words, size_t size) {
   for (size_t i = 0; i < sizeof units / sizeof units[0]; i++) {
     const size_t tail = strlen(units[i].tail);
     if (length > tail && strcmp(key + length - tail, units[i].tail) == 0) {
-      snprintf(words, size, "%.*s", (int)(length - tail), key);
+      const bool when = strcmp(units[i].unit, "d") == 0 && strncmp(key, "peak_", 5) == 0;
+      snprintf(words, size, "%s%.*s", when ? "time_of_" : "", (int)(length - tail), key);
       spell(words, size);
       return units[i].unit;
     }

@@ -1,0 +1,344 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later
+ *
+ * files.c - manual pages, completions and documents, made from the same tables as the help: `luxgale help NAME` prints
+ * luxgale.1, luxgale-case.5, completion.bash, completion.zsh, completion.fish, inputs.md (help.c) and report.md.
+ */
+#include "cli.h"
+
+#include "luxgale/keys.h"
+#include "luxgale/report.h"
+#include "luxgale/text.h"
+#include "luxgale/units.h"
+
+#include <string.h>
+
+static const struct {
+  const char *path, *sentence;
+} report_keys[] = {
+#define LXG_REPORT_KEY(path, sentence) {path, sentence},
+#include "luxgale/report_keys.def"
+#undef LXG_REPORT_KEY
+};
+enum {
+  REPORT_KEYS = sizeof report_keys / sizeof report_keys[0],
+  LINE = 60
+}; /* LINE: where a line of a manual page may end */
+
+static const char *const topics[] = {"case", "report", "units", "settings", "reasons", "reason"};
+enum { TOPICS = sizeof topics / sizeof topics[0] };
+
+/* ---- manual pages -------------------------------------------------------------------------------------------------- */
+
+/* Text for mdoc in short lines: sentences start lines, backslashes, hyphens and grave accents are escaped, and a line that would
+ * start with a dot or quote is guarded. */
+static void roff(struct lxg_buffer *out, const char *text) {
+  size_t column = 0;
+  for (const char *c = text; *c != '\0'; c++) {
+    const bool sentence = c > text && c[-1] == '.' && c[0] == ' ' && c[1] >= 'A' && c[1] <= 'Z';
+    if (*c == ' ' && (column > LINE || sentence)) {
+      lxg_buffer_byte(out, '\n');
+      column = 0;
+      continue;
+    }
+    if (column == 0 && (*c == '.' || *c == '\'')) {
+      lxg_buffer_text(out, "\\&");
+    }
+    column++;
+    if (*c == '\\') {
+      lxg_buffer_text(out, "\\e");
+    } else if (*c == '`') {
+      lxg_buffer_text(out, "\\(ga");
+    } else if (*c == '-') {
+      lxg_buffer_text(out, "\\-");
+    } else {
+      lxg_buffer_byte(out, *c);
+    }
+  }
+  lxg_buffer_byte(out, '\n');
+}
+
+static void man_option(struct lxg_buffer *out, const struct cli_option *option) {
+  lxg_buffer_text(out, ".It ");
+  if (option->letter != 0) {
+    lxg_buffer_format(out, "Fl %c , ", option->letter);
+  }
+  lxg_buffer_format(out, "Fl \\-%s", option->name);
+  if (option->argument != NULL) {
+    lxg_buffer_format(out, " Ar %s", option->argument);
+  }
+  lxg_buffer_byte(out, '\n');
+  roff(out, option->sentence);
+}
+
+void cli_print_manual(struct lxg_buffer *out) {
+  lxg_buffer_text(out,
+                  ".\\\" SPDX-License-Identifier: GPL-3.0-or-later\n.\\\" Made by `luxgale help luxgale.1`.\n"
+                  ".Dd December 1, 2026\n.Dt LUXGALE 1\n.Os\n.Sh NAME\n.Nm luxgale\n"
+                  ".Nd radiation-driven winds and ejecta of stellar eruptions\n.Sh SYNOPSIS\n"
+                  ".Nm\n.Ar command\n.Op Ar options\n.Ar case\n.Nm\n.Cm help\n.Op Ar topic\n"
+                  ".Sh DESCRIPTION\n.Nm\nsolves the steady, optically thick, radiation-driven wind\nover any "
+                  "star, composition and opacity,\n"
+                  "follows it through a luminosity history,\nand gives ejected mass, energy, momentum and "
+                  "speeds,\nor says why there is no wind.\n"
+                  ".Pp\nThe\n.Ar case\nis YAML or JSON, see\n.Xr luxgale\\-case 5 ;\n.Sq \\-\nis standard "
+                  "input.\n.Pp\nCommands:\n.Bl -tag -width Ds\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    const struct cli_command *const command = cli_command_row(i);
+    lxg_buffer_format(out, ".It Cm %s\n", command->name);
+    roff(out, command->sentence);
+    if (command->needs != NULL) {
+      lxg_buffer_text(out, ".br\nThe case needs ");
+      roff(out, command->needs);
+    }
+  }
+  lxg_buffer_text(out, ".El\n.Pp\nOptions:\n.Bl -tag -width Ds\n");
+  for (size_t i = 0; i < CLI_OPTIONS; i++) {
+    man_option(out, cli_option_row(i));
+  }
+  lxg_buffer_text(out, ".El\n.Pp\nA command refuses options that it does not use;\n.Nm\n.Cm help\n.Ar "
+                       "command\nlists those of one command.\n"
+                       ".Sh ENVIRONMENT\n.Bl -tag -width Ds\n.It Ev NO_COLOR\nIf set and not empty, messages "
+                       "have no colours.\n"
+                       ".It Ev TMPDIR\nWhere pictures for\n.Fl \\-html\nare drawn when\n.Fl \\-plots\nis not "
+                       "given; else\n.Pa /tmp .\n.El\n"
+                       ".Sh EXIT STATUS\n.Bl -tag -width Ds\n.It 0\nDone.\n.It 1\nThe physics gave no "
+                       "answer, or only part; the report says why.\n"
+                       ".It 2\nBad command line or input.\n.It 3\nReading or writing failed.\n.It 4\nMemory "
+                       "or a limit.\n.It 70\nA bug.\n.El\n"
+                       ".Pp\nResults are written whole or not at all.\n.Sh EXAMPLES\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    lxg_buffer_text(out, ".Dl ");
+    roff(out, cli_command_row(i)->example);
+  }
+  lxg_buffer_text(out, ".Sh SEE ALSO\n.Xr gnuplot 1 ,\n.Xr luxgale\\-case 5\n");
+}
+
+void cli_print_case_manual(struct lxg_buffer *out) {
+  lxg_buffer_text(
+      out, ".\\\" SPDX-License-Identifier: GPL-3.0-or-later\n.\\\" Made by `luxgale help luxgale-case.5`.\n"
+           ".Dd December 1, 2026\n.Dt LUXGALE-CASE 5\n.Os\n.Sh NAME\n.Nm luxgale-case\n.Nd input of luxgale\n"
+           ".Sh DESCRIPTION\nA case is a mapping in YAML or JSON.\nA quantity is a number and a unit; a bare "
+           "number is in the unit named here.\n");
+  const char *section = NULL;
+  for (size_t i = 0; i < lxg_keys_count(); i++) {
+    const struct lxg_key *const key = lxg_keys_row(i);
+    if (section == NULL || strcmp(section, key->section) != 0) {
+      lxg_buffer_text(out, section != NULL ? ".El\n" : "");
+      section = key->section;
+      const size_t length = strlen(section);
+      const bool items = length > 2 && section[length - 1] == ']'; /* "luminosity.terms[]" */
+      lxg_buffer_format(out, ".Ss %s%.*s\n.Bl -tag -width Ds\n",
+                        length == 0 ? "Top of the case" : (items ? "Items of " : ""),
+                        (int)(items ? length - 2 : length), section);
+    }
+    lxg_buffer_format(out, ".It Li %s\n", key->name);
+    roff(out, key->sentence);
+    lxg_buffer_format(out, ".br\nKind: %s", lxg_keys_kind(key->kind));
+    if (key->kind == LXG_KEY_QUANTITY) {
+      lxg_buffer_format(out, " (%s, bare number in %s)", lxg_units_dimension(key->dimension),
+                        lxg_units_default(key->dimension));
+    }
+    if (key->allowed[0] != '\0') {
+      lxg_buffer_format(out, ".\n.br\nAllowed:\n");
+      roff(out, key->allowed);
+    }
+    lxg_buffer_text(out, key->allowed[0] != '\0' ? ".br\nDefault: " : ".\n.br\nDefault: ");
+    roff(out, key->fallback);
+  }
+  lxg_buffer_text(out, ".El\n.Sh SEE ALSO\n.Xr luxgale 1\n");
+}
+
+/* ---- completions --------------------------------------------------------------------------------------------------- */
+
+/* Words of an option's argument that is a choice ("a|b"): separated by blanks; nothing for other arguments. */
+static void choices(struct lxg_buffer *out, const struct cli_option *option) {
+  const char *const text =
+      option->argument != NULL && strchr(option->argument, '|') != NULL ? option->argument : "";
+  for (const char *c = text; *c != '\0'; c++) {
+    lxg_buffer_byte(out, *c == '|' ? ' ' : *c);
+  }
+}
+
+static void command_names(struct lxg_buffer *out) {
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    lxg_buffer_format(out, "%s ", cli_command_row(i)->name);
+  }
+  lxg_buffer_text(out, "help");
+}
+
+static void topic_names(struct lxg_buffer *out) {
+  command_names(out);
+  for (size_t i = 0; i < TOPICS; i++) {
+    lxg_buffer_format(out, " %s", topics[i]);
+  }
+}
+
+void cli_print_bash(struct lxg_buffer *out) {
+  lxg_buffer_text(out,
+                  "# bash completion for luxgale, made by `luxgale help completion.bash`.\n_luxgale() {\n"
+                  "  local word=${COMP_WORDS[COMP_CWORD]} before=${COMP_WORDS[COMP_CWORD-1]} "
+                  "command=${COMP_WORDS[1]} words=\n"
+                  "  COMPREPLY=()\n  case $before in\n");
+  for (size_t i = 0; i < CLI_OPTIONS; i++) {
+    const struct cli_option *const option = cli_option_row(i);
+    if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
+      lxg_buffer_format(out, "    --%s) words='", option->name);
+      choices(out, option);
+      lxg_buffer_text(out, "' ;;\n");
+    } else if (option->argument != NULL) {
+      lxg_buffer_format(out, "    --%s) COMPREPLY=($(compgen -f -- \"$word\")); return ;;\n", option->name);
+    }
+  }
+  lxg_buffer_text(out, "    help) words='");
+  topic_names(out);
+  lxg_buffer_text(out,
+                  "' ;;\n  esac\n  if [ -z \"$words\" ] && [ \"$COMP_CWORD\" -eq 1 ]; then\n    words='");
+  command_names(out);
+  lxg_buffer_text(
+      out, " --help --version'\n  elif [ -z \"$words\" ] && [[ $word == -* ]]; then\n    case $command in\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    lxg_buffer_format(out, "      %s) words='", cli_command_row(i)->name);
+    for (size_t o = 0; o < CLI_OPTIONS; o++) {
+      if (cli_command_row(i)->options & CLI_BIT(o)) {
+        lxg_buffer_format(out, "--%s ", cli_option_row(o)->name);
+      }
+    }
+    lxg_buffer_text(out, "' ;;\n");
+  }
+  lxg_buffer_text(
+      out,
+      "    esac\n  fi\n  if [ -n \"$words\" ]; then\n    COMPREPLY=($(compgen -W \"$words\" -- \"$word\"))\n "
+      " else\n"
+      "    COMPREPLY=($(compgen -f -- \"$word\"))\n  fi\n}\ncomplete -o filenames -F _luxgale luxgale\n");
+}
+
+/* Text inside single quotes of a shell, without the characters that zsh's _arguments reads. */
+static void shell(struct lxg_buffer *out, const char *text) {
+  for (const char *c = text; *c != '\0'; c++) {
+    if (*c == '\'') {
+      lxg_buffer_text(out, "\xe2\x80\x99");
+    } else {
+      lxg_buffer_byte(out, *c == '[' || *c == ']' || *c == ':' || *c == '`' ? ' ' : *c);
+    }
+  }
+}
+
+void cli_print_zsh(struct lxg_buffer *out) {
+  lxg_buffer_text(
+      out,
+      "#compdef luxgale\n# zsh completion for luxgale, made by `luxgale help completion.zsh`.\n_luxgale() {\n"
+      "  local -a commands\n  commands=(\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    lxg_buffer_format(out, "    '%s:", cli_command_row(i)->name);
+    shell(out, cli_command_row(i)->sentence);
+    lxg_buffer_text(out, "'\n");
+  }
+  lxg_buffer_text(out, "    'help:explain commands, keys, units and codes'\n  )\n  if (( CURRENT == 2 )); "
+                       "then\n    _describe command commands\n    return\n  fi\n"
+                       "  case ${words[2]} in\n    help) _values topic ");
+  topic_names(out);
+  lxg_buffer_text(out, " ;;\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    lxg_buffer_format(out, "    %s) shift words; (( CURRENT-- )); _arguments", cli_command_row(i)->name);
+    for (size_t o = 0; o < CLI_OPTIONS; o++) {
+      const struct cli_option *const option = cli_option_row(o);
+      if (cli_command_row(i)->options & CLI_BIT(o)) {
+        lxg_buffer_format(out, " \\\n      '--%s[", option->name);
+        shell(out, option->sentence);
+        lxg_buffer_byte(out, ']');
+        if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
+          lxg_buffer_format(out, ":%s:(", option->name);
+          choices(out, option);
+          lxg_buffer_byte(out, ')');
+        } else if (option->argument != NULL) {
+          lxg_buffer_format(out, ":%s:_files", option->name);
+        }
+        lxg_buffer_byte(out, '\'');
+      }
+    }
+    lxg_buffer_text(out, cli_command_row(i)->needs != NULL ? " \\\n      '*:case:_files' ;;\n" : " ;;\n");
+  }
+  lxg_buffer_text(out, "  esac\n}\n_luxgale \"$@\"\n");
+}
+
+void cli_print_fish(struct lxg_buffer *out) {
+  lxg_buffer_text(out, "# fish completion for luxgale, made by `luxgale help completion.fish`.\n");
+  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
+    const struct cli_command *const command = cli_command_row(i);
+    lxg_buffer_format(out, "complete -c luxgale -n __fish_use_subcommand -f -a %s -d '", command->name);
+    shell(out, command->sentence);
+    lxg_buffer_text(out, "'\n");
+    for (size_t o = 0; o < CLI_OPTIONS; o++) {
+      const struct cli_option *const option = cli_option_row(o);
+      if (command->options & CLI_BIT(o)) {
+        lxg_buffer_format(out, "complete -c luxgale -n '__fish_seen_subcommand_from %s' -l %s", command->name,
+                          option->name);
+        if (option->letter != 0) {
+          lxg_buffer_format(out, " -s %c", option->letter);
+        }
+        if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
+          lxg_buffer_text(out, " -x -a '");
+          choices(out, option);
+          lxg_buffer_byte(out, '\'');
+        } else if (option->argument != NULL) {
+          lxg_buffer_text(out, " -r");
+        }
+        lxg_buffer_text(out, " -d '");
+        shell(out, option->sentence);
+        lxg_buffer_text(out, "'\n");
+      }
+    }
+  }
+  lxg_buffer_text(
+      out,
+      "complete -c luxgale -n __fish_use_subcommand -f -a help -d 'explain commands, keys, units and codes'\n"
+      "complete -c luxgale -n '__fish_seen_subcommand_from help' -f -a '");
+  topic_names(out);
+  lxg_buffer_text(out, "'\n");
+}
+
+/* ---- the report ---------------------------------------------------------------------------------------------------- */
+
+void cli_print_report_markdown(struct lxg_buffer *out) {
+  lxg_buffer_text(out,
+                  "# Keys of a report\n\nMade by `make docs` from the table behind `luxgale help report`. A "
+                  "report is one tree, written as YAML or\n"
+                  "JSON; `[]` is any item of a list, `*` any name. Every number has its unit in its name "
+                  "(`_msun_yr`: solar masses per\n"
+                  "year) and the fewest digits that read back to the same double. A number that the physics "
+                  "does not give is `null`,\n"
+                  "with the reason beside it. Columns of tables are described in the head of each table.\n\n"
+                  "| key | meaning |\n|---|---|\n");
+  for (size_t i = 0; i < REPORT_KEYS; i++) {
+    lxg_buffer_format(out, "| `%s` | %s |\n", report_keys[i].path, report_keys[i].sentence);
+  }
+  lxg_buffer_text(out, "\n## Codes\n\n| code | meaning |\n|---|---|\n");
+  for (size_t i = 0; cli_reason_code(i) != NULL; i++) {
+    lxg_buffer_format(out, "| `%s` | %s |\n", cli_reason_code(i), cli_reason_meaning(i));
+  }
+}
+
+void cli_print_report(struct lxg_buffer *out) {
+  lxg_buffer_text(
+      out,
+      "Keys of a report; the unit of a number stands in its name. [] is any item of a list, * any name.\n\n");
+  for (size_t i = 0; i < REPORT_KEYS; i++) {
+    lxg_buffer_format(out, "  %s\n      %s\n", report_keys[i].path, report_keys[i].sentence);
+  }
+}
+
+bool cli_print_report_key(struct lxg_buffer *out, const char *topic) {
+  bool found = false;
+  const size_t length = strlen(topic);
+  for (size_t i = 0; i < REPORT_KEYS; i++) {
+    const char *const path = report_keys[i].path;
+    const char *const dot = strrchr(path, '.');
+    const bool below = strncmp(path, topic, length) == 0 &&
+                       (path[length] == '\0' || path[length] == '.' || path[length] == '[');
+    if (below || (dot != NULL && strcmp(dot + 1, topic) == 0)) {
+      lxg_buffer_format(out, "%s (of a report)\n  %s\n", path, report_keys[i].sentence);
+      found = true;
+    }
+  }
+  return found;
+}
