@@ -162,9 +162,6 @@ enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc);
 /* Every number of the kept wind (wind_result.c). */
 enum lxg_status lxg_wind_result(const struct lxg_wind_solver *solver, struct lxg_wind *wind);
 
-/* A result without a wind: all numbers NaN. */
-void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason);
-
 /* dlnv/dlnr at the critical point (accelerating root); NaN if there is none. */
 double lxg_wind_critical_slope(const struct wind_local *local);
 
