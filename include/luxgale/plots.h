@@ -65,7 +65,8 @@ enum lxg_status lxg_plots_draw_inside(const struct lxg_plots_input *input, struc
 /* NULL is allowed. */
 void lxg_plots_free(struct lxg_plots *plots);
 
-/* Appends `text` in gnuplot's single quotes: quotes doubled, control characters as blanks. Inside them gnuplot neither runs
+/* Appends `text` in gnuplot's single quotes: a single quote becomes the typographic one (U+2019), control
+ * characters become blanks. Inside them gnuplot neither runs
  * commands nor replaces anything. */
 void lxg_plots_quote(struct lxg_buffer *script, const char *text);
 

@@ -22,7 +22,8 @@ void lxg_plots_quote(struct lxg_buffer *script, const char *text) {
     if (byte < 0x20 || byte == 0x7f) {
       lxg_buffer_byte(script, ' ');
     } else if (*c == '\'') {
-      lxg_buffer_text(script, "''");
+      lxg_buffer_text(script,
+                      "\xe2\x80\x99"); /* a doubled quote at the start of a text ends it in gnuplot 5.4 */
     } else {
       lxg_buffer_byte(script, *c);
     }
