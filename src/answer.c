@@ -27,6 +27,7 @@ static const struct {
 } commands[] = {{"outburst", lxg_run_outburst},
                 {"wind", lxg_run_wind},
                 {"family", lxg_run_family},
+                {"decline", lxg_run_decline},
                 {"star", lxg_run_star}};
 enum { COMMANDS = sizeof commands / sizeof commands[0] };
 

@@ -50,7 +50,8 @@ enum lxg_family_scale {
   X(LUMINOSITY_INFINITY, luminosity_infinity, luminosity_infinity, LXG_SCALE_SIGNED)                         \
   X(GAMMA_MAX, gamma_max, gamma_max, LXG_SCALE_LOG)                                                          \
   X(FLOW_TIME, flow_time, flow_time, LXG_SCALE_LOG)                                                          \
-  X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)
+  X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)                                           \
+  X(NUCLEAR_LUMINOSITY, nuclear_luminosity, nuclear_luminosity, LXG_SCALE_SIGNED)
 
 /* The first LXG_HELD_COUNT members stand in the order of enum lxg_held. */
 enum lxg_family_quantity {

@@ -12,6 +12,7 @@
 #define LUXGALE_REPORT_H
 
 #include "luxgale/composition.h"
+#include "luxgale/decline.h"
 #include "luxgale/document.h"
 #include "luxgale/ejecta.h"
 #include "luxgale/family.h"
@@ -57,6 +58,17 @@ void lxg_report_ejecta(struct lxg_node *root, const struct lxg_ejecta *ejecta);
 /* Warnings about the ejecta and the history: thin-wind, not-steady, several-branches, luminosity-gap, super-eddington-open. */
 void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejecta *ejecta,
                                 const struct lxg_history *history, const struct lxg_history_excess *excess);
+
+/* `decline:` the numbers of a whole eruption; or verdict none with the reason that the error holds. */
+void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline);
+void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error);
+
+/* Warnings about it: start-clipped, thin-wind, decline-lost. */
+void lxg_report_decline_warnings(struct lxg_node *warnings, const struct lxg_decline *decline);
+
+/* One row a state; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */
+enum lxg_status lxg_report_decline_table(const struct lxg_decline *decline, double l_edd,
+                                         struct lxg_table **table, struct lxg_error *error);
 
 /* `warnings: []`, to be added last. */
 struct lxg_node *lxg_report_warnings(struct lxg_node *root);

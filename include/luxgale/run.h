@@ -10,7 +10,9 @@
 #ifndef LUXGALE_RUN_H
 #define LUXGALE_RUN_H
 
+#include "luxgale/burning.h"
 #include "luxgale/composition.h"
+#include "luxgale/decline.h"
 #include "luxgale/document.h"
 #include "luxgale/family.h"
 #include "luxgale/files.h"
@@ -38,9 +40,12 @@ struct lxg_case {
   struct lxg_opacity_choice opacity_choice;
   struct lxg_opacity *opacity;
   struct lxg_porosity porosity;
-  struct lxg_wind_hold hold[2]; /* in the order of the case */
+  struct lxg_burning burning;
+  struct lxg_wind_hold hold[2]; /* in the order of the case; with burning the dark base comes first */
   size_t holds;
   struct lxg_history *history;
+  bool history_from_decline; /* the history is the wind phase of the eruption, computed when it is needed */
+  struct lxg_decline_options decline;
   struct lxg_settings settings;
 };
 
@@ -95,6 +100,10 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
 /* `family`: all winds that share one held quantity; epochs is their table. */
 enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_run_options *options,
                                struct lxg_results *results, struct lxg_error *error);
+
+/* `decline`: a whole eruption over a burning base; epochs is the table of its states. */
+enum lxg_status lxg_run_decline(const struct lxg_case *input, const struct lxg_run_options *options,
+                                struct lxg_results *results, struct lxg_error *error);
 
 /* `outburst`: a luminosity history through a family of winds to the ejecta. */
 enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_run_options *options,

@@ -32,6 +32,7 @@ void lxg_plots_luminosity(struct plots_sheet *sheet);
 void lxg_plots_rate(struct plots_sheet *sheet);
 void lxg_plots_speed(struct plots_sheet *sheet);
 void lxg_plots_photosphere(struct plots_sheet *sheet);
+void lxg_plots_light(struct plots_sheet *sheet);
 void lxg_plots_mass(struct plots_sheet *sheet);
 
 /* plots_wind.c */

@@ -188,6 +188,31 @@ void lxg_plots_photosphere(struct plots_sheet *sheet) {
   lxg_buffer_text(out, "\n  unset multiplot\n  set key on\n");
 }
 
+/* Magnitudes, brighter upwards: the brightest light, and the single ones where the table has them. */
+void lxg_plots_light(struct plots_sheet *sheet) {
+  static const struct {
+    const char *column, *title;
+    int style;
+  } curves[] = {
+      {"v_black_body_mag", "photosphere", 2}, {"v_free_free_mag", "wind", 3}, {"v_shell_mag", "shell", 4}};
+  static const double margin = 1.0, depth = 12.0; /* [mag] above the peak and below it */
+  double least = 0.0, most = 0.0;
+  time_axis(sheet);
+  lxg_plots_range(sheet->data->table, "v_mag", &least, &most);
+  lxg_plots_line(sheet, "  set yrange [", fmin(most + margin, least + depth), ":\\");
+  lxg_plots_line(sheet, "    ", least - margin, "]");
+  lxg_buffer_text(sheet->script, "  set ylabel 'M_V (mag)'\n  plot ");
+  bool first = true;
+  for (size_t i = 0; i < sizeof curves / sizeof curves[0]; i++) {
+    if (lxg_plots_has(sheet, curves[i].column)) {
+      lxg_plots_curve(sheet, first, "time_d", curves[i].column, curves[i].style, curves[i].title);
+      first = false;
+    }
+  }
+  lxg_plots_curve(sheet, first, "time_d", "v_mag", 1, "brightest of them");
+  lxg_buffer_text(sheet->script, "\n");
+}
+
 /* Linear from zero in a power of ten, so that the axis reads without exponents at every tic. */
 void lxg_plots_mass(struct plots_sheet *sheet) {
   struct lxg_buffer *out = sheet->script;

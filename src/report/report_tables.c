@@ -99,6 +99,9 @@ static const struct {
      "light that reaches infinity"},
     {LXG_FAMILY_GAMMA_MAX, {"eddington_ratio_max", "", 1.0}, "largest kappa L/(4 pi G M c)"},
     {LXG_FAMILY_FLOW_TIME, {"flow_time_s", "s", 1.0}, "from critical point to photosphere"},
+    {LXG_FAMILY_NUCLEAR_LUMINOSITY,
+     {"nuclear_luminosity_erg_s", "erg/s", 1.0},
+     "heat of burning below the critical point"},
     {LXG_FAMILY_DIFFUSION_TIME, {"diffusion_time_s", "s", 1.0}, "radiation energy there over luminosity"},
 };
 enum { MORE = sizeof more / sizeof more[0], FAMILY_COLUMNS = LXG_HELD_COUNT + MORE };

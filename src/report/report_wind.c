@@ -74,6 +74,7 @@ static void add_energy(struct lxg_node *section, const struct lxg_wind *wind) {
   lxg_node_add_number(energy, "light_erg_s", wind->luminosity_infinity);
   lxg_node_add_number(energy, "lifting_erg_s", wind->lifting_rate);
   lxg_node_add_number(energy, "kinetic_erg_s", wind->kinetic_rate);
+  lxg_node_add_number(energy, "nuclear_erg_s", wind->nuclear_luminosity);
   lxg_node_add_number(energy, "light_share", wind->luminosity_infinity / total);
   lxg_node_add_number(energy, "lifting_share", wind->lifting_rate / total);
   lxg_node_add_number(energy, "kinetic_share", wind->kinetic_rate / total);

@@ -6,6 +6,8 @@
 #include "luxgale/report.h"
 #include "luxgale/run.h"
 
+#include <math.h>
+
 static void echo_opacity(const struct lxg_case *input, struct lxg_node *section) {
   struct lxg_node *opacity = lxg_node_add_mapping(section, "opacity");
   lxg_node_add_text(opacity, "formula", lxg_opacity_formula_name(input->opacity_choice.formula));
@@ -37,8 +39,32 @@ static void echo_porosity(const struct lxg_case *input, struct lxg_node *section
   }
 }
 
+static void echo_decline(const struct lxg_case *input, struct lxg_node *section) {
+  static const char *const starts[] = {"ignition", "mass", "temperature"};
+  if (input->burning.law == LXG_BURNING_NONE) {
+    return;
+  }
+  const struct lxg_decline_options *o = &input->decline;
+  struct lxg_node *decline = lxg_node_add_mapping(section, "decline");
+  lxg_node_add_text(decline, "start", starts[o->start]);
+  lxg_node_add_number(decline, "start_mass_msun",
+                      o->start == LXG_DECLINE_START_MASS ? o->start_value / LXG_SOLAR_MASS : (double)NAN);
+  lxg_node_add_number(decline, "start_temperature_k",
+                      o->start == LXG_DECLINE_START_TEMPERATURE ? o->start_value : (double)NAN);
+  lxg_node_add_number(decline, "accretion_rate_msun_yr", o->accretion_rate * LXG_YEAR / LXG_SOLAR_MASS);
+  lxg_node_add_text(decline, "stop", o->wind_only ? "wind-end" : "turn-off");
+  lxg_node_add_number(decline, "stop_time_d", o->time_most / LXG_DAY);
+  lxg_node_add_number(decline, "stop_mass_msun",
+                      o->mass_least > 0.0 ? o->mass_least / LXG_SOLAR_MASS : (double)NAN);
+  lxg_node_add_number(decline, "gas_temperature_k", o->gas_temperature);
+  lxg_node_add_number(decline, "rise_time_d", o->rise / LXG_DAY);
+}
+
 static void echo_history(const struct lxg_case *input, struct lxg_node *section) {
   const struct lxg_history *history = input->history;
+  if (input->history_from_decline) {
+    lxg_node_add_text(lxg_node_add_mapping(section, "luminosity"), "kind", "decline");
+  }
   if (history == NULL) {
     return;
   }
@@ -90,6 +116,9 @@ void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
   lxg_node_add_number(composition, "metals", input->composition.metals);
   echo_opacity(input, section);
   echo_porosity(input, section);
+  lxg_node_add_text(lxg_node_add_mapping(section, "burning"), "law",
+                    input->burning.law == LXG_BURNING_CNO ? "cno" : "none");
+  echo_decline(input, section);
   struct lxg_node *hold = lxg_node_add_mapping(section, "hold");
   for (size_t i = 0; i < input->holds; i++) {
     lxg_report_held(hold, input->hold[i].quantity, input->hold[i].value);

@@ -21,6 +21,11 @@ enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *
 /* Tells the caller, if it wants to know, what begins now ("tracing the family of winds"). */
 void lxg_run_stage(const struct lxg_run_options *options, const char *doing);
 
+/* The wind phase of the case's eruption as a history of photospheric luminosity (to be destroyed), and limits of the family of
+ * winds that just hold it. Errors of lxg_decline_compute; LXG_NO_SOLUTION "decline-no-wind". */
+enum lxg_status lxg_run_decline_history(const struct lxg_case *input, struct lxg_history **history,
+                                        struct lxg_family_options *limits, struct lxg_error *error);
+
 /* The model behind every wind of the case. */
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input);
 

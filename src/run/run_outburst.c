@@ -11,6 +11,8 @@
 
 /* What the stages fill, one after the other. */
 struct outburst {
+  struct lxg_history *own;           /* computed from the eruption of the case, or NULL */
+  const struct lxg_history *history; /* this or the case's */
   struct lxg_wind_solver *solver;
   struct lxg_family family;
   struct lxg_history_excess excess; /* above L_Edd */
@@ -21,16 +23,18 @@ static void outburst_free(struct outburst *outburst) {
   lxg_ejecta_free(&outburst->ejecta);
   lxg_family_free(&outburst->family);
   lxg_wind_solver_destroy(outburst->solver);
+  lxg_history_destroy(outburst->own);
 }
 
 static enum lxg_status require(const struct lxg_case *input, struct lxg_error *error) {
-  if (input->history == NULL) {
+  if (input->history == NULL && !input->history_from_decline) {
     return lxg_error_set(error, LXG_INPUT, "key-missing",
                          "%s: error: luminosity: `outburst` needs a luminosity history",
                          lxg_document_name(input->document));
   }
-  const enum lxg_held driven =
-      input->history->kind == LXG_HISTORY_BASE ? LXG_HELD_BASE_LUMINOSITY : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
+  const enum lxg_held driven = input->history != NULL && input->history->kind == LXG_HISTORY_BASE
+                                   ? LXG_HELD_BASE_LUMINOSITY
+                                   : LXG_HELD_PHOTOSPHERE_LUMINOSITY;
   const enum lxg_status status = lxg_run_require_holds(input, "outburst", 1, error);
   if (status == LXG_OK && input->hold[0].quantity == driven) {
     return lxg_error_set(
@@ -47,18 +51,27 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
   const struct lxg_wind_model model = lxg_run_model(input);
   struct lxg_ejecta_options ejecting = lxg_ejecta_options_default();
   ejecting.branch = options->branch;
-  enum lxg_status status =
-      lxg_history_excess(input->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
+  struct lxg_family_options limits = lxg_family_options_default();
+  outburst->history = input->history;
+  enum lxg_status status = LXG_OK;
+  if (input->history_from_decline) {
+    status = lxg_run_decline_history(input, &outburst->own, &limits, error);
+    outburst->history = outburst->own;
+  }
+  if (status != LXG_OK) {
+    return status;
+  }
+  status = lxg_history_excess(outburst->history, LXG_HISTORY_VALUE, input->l_edd, &outburst->excess, error);
   if (status == LXG_OK) {
     status = lxg_wind_solver_create(&model, NULL, &outburst->solver, error);
   }
   if (status == LXG_OK) {
     lxg_run_stage(options, "tracing the family of winds");
-    status = lxg_family_trace(outburst->solver, &input->hold[0], NULL, &outburst->family, error);
+    status = lxg_family_trace(outburst->solver, &input->hold[0], &limits, &outburst->family, error);
   }
   if (status == LXG_OK) {
     lxg_run_stage(options, "following the history");
-    status = lxg_ejecta_compute(&outburst->family, input->history, input->star.gm / input->star.radius,
+    status = lxg_ejecta_compute(&outburst->family, outburst->history, input->star.gm / input->star.radius,
                                 &ejecting, &outburst->ejecta, error);
   }
   return status;
@@ -107,7 +120,8 @@ enum lxg_status lxg_run_outburst(const struct lxg_case *input, const struct lxg_
     lxg_report_super_eddington(root, &outburst.excess);
     lxg_report_ejecta(root, &outburst.ejecta);
     lxg_report_family(root, &outburst.family);
-    lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst.ejecta, input->history, &outburst.excess);
+    lxg_report_ejecta_warnings(lxg_report_warnings(root), &outburst.ejecta, outburst.history,
+                               &outburst.excess);
     if (options->epochs || options->pictures) {
       status = lxg_report_epoch_table(&outburst.ejecta, input->l_edd, &results->epochs, error);
     }
