@@ -303,7 +303,7 @@ void cli_print_report_markdown(struct lxg_buffer *out) {
   lxg_buffer_text(out,
                   "# Keys of a report\n\nMade by `make docs` from the table behind `luxgale help report`. A "
                   "report is one tree, written as YAML or\n"
-                  "JSON; `[]` is any item of a list, `*` any name. Every number has its unit in its name "
+                  "JSON; `[]` is any item of a list, `*` any name there or below. Every number has its unit in its name "
                   "(`_msun_yr`: solar masses per\n"
                   "year) and the fewest digits that read back to the same double. A number that the physics "
                   "does not give is `null`,\n"

@@ -55,6 +55,15 @@ static const struct {
      "Add earlier or later points."},
     {"table-share", "part of the wind took its opacity from the formula, outside the tables",
      "Use tables that reach further, or accept the join; `checks` has the share."},
+    {"trapped-light", "gas crosses from the critical point to the photosphere faster than light diffuses",
+     "The radiation is carried along: the wind is still a solution, but its light answers slowly to changes "
+     "at the base."},
+    {"start-clipped",
+     "the steady states end below the wanted start mass: the eruption starts from the largest one",
+     "The mass above it left in some other way, or the mixture is not that of the eruption; see "
+     "docs/decline.md."},
+    {"decline-lost", "the sequence of states was lost before the turn-off",
+     "The report holds the eruption up to there."},
     {"pictures-missing", "a picture could not be drawn",
      "Install gnuplot, or run `gnuplot NAME.gp` by hand in the folder of --plots."},
     {"key-unknown", "the case has a key that luxgale does not know",

@@ -54,7 +54,7 @@ static const struct plots_picture pictures[] = {
      lxg_plots_light},
     {"distribution",
      "Ejected mass per unit of speed.",
-     {"speed_km_s", "mass_per_speed_msun_s_km"},
+     {"speed_low_km_s", "speed_high_km_s", "dmdv_at_departure"},
      430,
      NULL,
      lxg_plots_distribution},

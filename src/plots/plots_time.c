@@ -11,6 +11,9 @@
 /* A range this wide is drawn on a logarithmic axis. */
 static const double log_span = 8.0;
 
+/* A logarithmic axis reaches no deeper below the largest value. */
+static const double log_depth = 1e5;
+
 /* Upper margin of a linear axis, for the key. */
 static const double headroom = 1.18;
 
@@ -32,8 +35,15 @@ static void time_axis(struct plots_sheet *sheet) {
 static void value_axis(struct plots_sheet *sheet, const char *column, const char *label) {
   struct lxg_buffer *out = sheet->script;
   double least = 0.0, most = 0.0;
-  if (lxg_plots_range(sheet->data->table, column, &least, &most) && least > 0.0 && most > log_span * least) {
-    lxg_buffer_text(out, "  set logscale y\n  set format y '10^{%L}'\n  set mytics 10\n  set yrange [*:*]\n");
+  lxg_plots_range(sheet->data->table, column, &least, &most);
+  const struct lxg_column *const values = lxg_table_find(sheet->data->table, column);
+  least = most; /* zeros have no place on a logarithmic axis */
+  for (size_t i = 0; i < sheet->data->table->rows; i++) {
+    least = values->number[i] > 0.0 ? fmin(least, values->number[i]) : least;
+  }
+  if (least > 0.0 && most > log_span * least) {
+    lxg_plots_line(sheet, "  set logscale y\n  set format y '10^{%L}'\n  set mytics 10\n  set yrange [",
+                   fmax(0.5 * least, most / log_depth), ":*]");
   } else {
     lxg_buffer_text(out, "  unset logscale y\n  set format y '%g'\n  set mytics default\n  set yrange [0:");
     lxg_buffer_number(out, most > 0.0 ? headroom * most : 1.0);
@@ -45,6 +55,10 @@ static void value_axis(struct plots_sheet *sheet, const char *column, const char
 /* What the luminosity of the history is, in words. */
 static const char *history_title(const struct plots_sheet *sheet) {
   const char *const kind = lxg_plots_text(sheet, "case.luminosity.kind");
+  const char *const command = lxg_plots_text(sheet, "program.command");
+  if (command == NULL || strcmp(command, "outburst") != 0) {
+    return "at the photosphere";
+  }
   if (kind != NULL && strcmp(kind, "base") == 0) {
     return "given, at the base";
   }
@@ -105,8 +119,6 @@ void lxg_plots_luminosity(struct plots_sheet *sheet) {
       "'#eab98c' notitle, \\\n    1 with lines ls 6 title 'Eddington'",
       file);
   lxg_plots_curve(sheet, false, "time_d", "luminosity_ledd", 1, history_title(sheet));
-  lxg_buffer_format(out, ", \\\n    '%s.ecsv' using 'time_d':'luminosity_ledd' with points ls 1 notitle",
-                    file);
   if (lxg_plots_has(sheet, "photosphere_luminosity_erg_s") && isfinite(l_edd)) {
     const bool base = strcmp(history_title(sheet), "given, at the base") == 0;
     const char *const column = base ? "photosphere_luminosity_erg_s" : "base_luminosity_erg_s";
@@ -129,46 +141,48 @@ void lxg_plots_rate(struct plots_sheet *sheet) {
   lxg_buffer_text(sheet->script, "\n");
 }
 
-/* Observed lines: any other table with times and speeds. */
+/* Tables beside the epochs: observed lines, and the most massive shell. */
 static const struct lxg_plots_table *observed(const struct plots_sheet *sheet) {
-  static const char *const needs[] = {"time_d", "velocity_km_s", NULL};
+  static const char *const needs[] = {"time_d", "observed_km_s", NULL};
   return lxg_plots_find(sheet->input, needs);
 }
 
+static const struct lxg_plots_table *shell(const struct plots_sheet *sheet) {
+  static const char *const needs[] = {"time_d", "speed_km_s", "wind_speed_km_s", NULL};
+  return lxg_plots_find(sheet->input, needs);
+}
+
+static double largest(const struct lxg_plots_table *table, const char *column, double top) {
+  double least = 0.0, most = 0.0;
+  const bool any = table != NULL && lxg_plots_range(table->table, column, &least, &most);
+  return any ? fmax(top, fmax(most, -least)) : top;
+}
+
 void lxg_plots_speed(struct plots_sheet *sheet) {
-  static const struct {
-    const char *column, *title;
-    int style;
-  } curves[] = {{"terminal_speed_km_s", "far away", 1},
-                {"photosphere_speed_km_s", "at the photosphere", 2},
-                {"shell_speed_km_s", "swept-up shell", 3}};
   struct lxg_buffer *out = sheet->script;
-  const struct lxg_plots_table *const lines = observed(sheet);
-  double top = 0.0, least = 0.0, most = 0.0;
+  const struct lxg_plots_table *const lines = observed(sheet), *const swept = shell(sheet);
+  const bool photosphere = lxg_plots_has(sheet, "photosphere_speed_km_s");
+  double top = largest(sheet->data, "terminal_speed_km_s", 1.0);
+  top = largest(sheet->data, "photosphere_speed_km_s", top);
+  top = largest(lines, "observed_km_s", largest(swept, "speed_km_s", top));
   time_axis(sheet);
-  for (size_t i = 0; i < sizeof curves / sizeof curves[0]; i++) {
-    if (lxg_plots_range(sheet->data->table, curves[i].column, &least, &most)) {
-      top = fmax(top, most);
-    }
-  }
-  if (lines != NULL && lxg_plots_range(lines->table, "velocity_km_s", &least, &most)) {
-    top = fmax(top, fmax(most, -least));
-  }
-  lxg_plots_line(sheet, "  set yrange [0:", headroom * fmax(top, 1.0), "]");
+  lxg_plots_line(sheet, "  set yrange [0:", headroom * top, "]");
   lxg_buffer_text(out, "  set ylabel 'speed (km s^{-1})'\n  plot ");
-  bool first = true;
-  for (size_t i = 0; i < sizeof curves / sizeof curves[0]; i++) {
-    if (lxg_plots_has(sheet, curves[i].column)) {
-      lxg_plots_curve(sheet, first, "time_d", curves[i].column, curves[i].style, curves[i].title);
-      first = false;
-    }
+  lxg_plots_curve(sheet, true, "time_d", "terminal_speed_km_s", 1, "far away");
+  if (photosphere) {
+    lxg_plots_curve(sheet, false, "time_d", "photosphere_speed_km_s", 2, "at the photosphere");
+  }
+  if (swept != NULL) {
+    lxg_buffer_format(
+        out, ", \\\n    '%s.ecsv' using 'time_d':'speed_km_s' with lines ls 3 title 'swept-up shell'",
+        swept->name);
   }
   if (lines != NULL) {
-    const bool errors = lxg_table_find(lines->table, "velocity_error_km_s") != NULL;
+    const bool errors = lxg_table_find(lines->table, "error_km_s") != NULL;
     lxg_buffer_format(
-        out, "%s'%s.ecsv' using 'time_d':(abs(column('velocity_km_s')))%s ls 5 title 'observed lines'",
-        first ? "" : ", \\\n    ", lines->name,
-        errors ? ":'velocity_error_km_s' with yerrorbars" : " with points");
+        out,
+        ", \\\n    '%s.ecsv' using 'time_d':(abs(column('observed_km_s')))%s ls 5 title 'observed lines'",
+        lines->name, errors ? ":'error_km_s' with yerrorbars" : " with points");
   }
   lxg_buffer_text(out, "\n");
 }

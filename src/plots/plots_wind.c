@@ -189,19 +189,22 @@ void lxg_plots_family(struct plots_sheet *sheet) {
   lxg_buffer_text(out, "\n  unset multiplot\n");
 }
 
+/* Histograms: the mass as it left, and with the gas of shells at their speeds. */
 void lxg_plots_distribution(struct plots_sheet *sheet) {
-  lxg_buffer_text(sheet->script, "  set xlabel 'speed (km s^{-1})'\n"
-                                 "  set ylabel 'dM/dv (M_☉ km^{-1} s)'\n  set format y '%.1te%T'\n  set "
-                                 "yrange [0:*]\n  plot ");
-  lxg_buffer_format(
-      sheet->script,
-      "'%s.ecsv' using 'speed_km_s':'mass_per_speed_msun_s_km' with histeps ls 1 title 'as it left'",
-      sheet->data->name);
-  if (lxg_plots_has(sheet, "mass_per_speed_swept_msun_s_km")) {
-    lxg_buffer_format(sheet->script,
-                      ", \\\n    '%s.ecsv' using 'speed_km_s':'mass_per_speed_swept_msun_s_km' with histeps "
-                      "ls 2 title 'shells swept up'",
-                      sheet->data->name);
+  static const struct {
+    const char *column, *title;
+    int style;
+  } steps[] = {{"dmdv_at_departure", "as it left", 1}, {"dmdv_with_shell", "with shells swept up", 2}};
+  lxg_buffer_text(sheet->script, "  set xlabel 'speed (km s^{-1})'\n  set ylabel 'dM/dv (M_☉ km^{-1} s)'\n"
+                                 "  set format y '%.1te%T'\n  set yrange [0:*]\n  plot ");
+  for (size_t i = 0; i < sizeof steps / sizeof steps[0]; i++) {
+    if (lxg_plots_has(sheet, steps[i].column)) {
+      lxg_buffer_format(
+          sheet->script,
+          "%s'%s.ecsv' using ((column('speed_low_km_s')+column('speed_high_km_s'))/2):'%s' with histeps "
+          "ls %d title '%s'",
+          i > 0 ? ", \\\n    " : "", sheet->data->name, steps[i].column, steps[i].style, steps[i].title);
+    }
   }
   lxg_buffer_text(sheet->script, "\n");
 }
