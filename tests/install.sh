@@ -58,6 +58,8 @@ completes() { # WORDS EXPECTED
 }
 check "completion of a command" completes "luxgale outb" outburst
 check "completion of an option" completes "luxgale wind --struc" --structure
+check "completion of a second word" completes "luxgale opacity tab" tabulate
+check "completion of an option of two words" completes "luxgale opacity import --da" --date
 check "completion of a word" completes "luxgale wind --branch thi" thin
 zsh_reads() { ! command -v zsh > /dev/null || zsh -n "$tree/share/zsh/site-functions/_luxgale"; }
 fish_reads() { ! command -v fish > /dev/null || fish -n "$tree/share/fish/vendor_completions.d/luxgale.fish"; }

@@ -93,6 +93,10 @@ struct lxg_family_options {
 };
 struct lxg_family_options lxg_family_options_default(void);
 
+/* An energy_most under which a family can reach a held luminosity or energy rate, however much of it lifts the gas: the default, or a
+ * hundred times that value over L_Edd (porous winds of 50 L_Edd carry up to 80 times their light). */
+double lxg_family_energy_most(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *target);
+
 /* Traces the family of `hold`.
  * LXG_NO_SOLUTION when not even one wind is found; the error carries the reason. */
 enum lxg_status lxg_family_trace(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,

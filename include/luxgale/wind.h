@@ -160,6 +160,9 @@ const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver 
  * then NaN. Off at first. */
 void lxg_wind_solver_outer_only(struct lxg_wind_solver *solver, bool outer_only);
 
+/* True if the launch radius is held and nothing inside it: then the winds need no inside. */
+bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count);
+
 /* LXG_INPUT when two held quantities are out of range or are the same one ("hold-value", "hold-dependent", ...). */
 enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                      struct lxg_error *error);

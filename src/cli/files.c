@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later
  *
- * files.c - manual pages, completions and documents, made from the same tables as the help: `luxgale help NAME` prints
- * luxgale.1, luxgale-case.5, completion.bash, completion.zsh, completion.fish, inputs.md (help.c) and report.md.
+ * files.c - manual pages and the list of report keys, made from the same tables as the help: `luxgale help NAME` prints luxgale.1,
+ * luxgale-case.5, report and report.md.
  */
 #include "cli.h"
 
@@ -23,9 +23,6 @@ enum {
   REPORT_KEYS = sizeof report_keys / sizeof report_keys[0],
   LINE = 60
 }; /* LINE: where a line of a manual page may end */
-
-static const char *const topics[] = {"case", "report", "units", "settings", "reasons", "reason"};
-enum { TOPICS = sizeof topics / sizeof topics[0] };
 
 /* ---- manual pages -------------------------------------------------------------------------------------------------- */
 
@@ -148,167 +145,19 @@ void cli_print_case_manual(struct lxg_buffer *out) {
   lxg_buffer_text(out, ".El\n.Sh SEE ALSO\n.Xr luxgale 1\n");
 }
 
-/* ---- completions --------------------------------------------------------------------------------------------------- */
-
-/* Words of an option's argument that is a choice ("a|b"): separated by blanks; nothing for other arguments. */
-static void choices(struct lxg_buffer *out, const struct cli_option *option) {
-  const char *const text =
-      option->argument != NULL && strchr(option->argument, '|') != NULL ? option->argument : "";
-  for (const char *c = text; *c != '\0'; c++) {
-    lxg_buffer_byte(out, *c == '|' ? ' ' : *c);
-  }
-}
-
-static void command_names(struct lxg_buffer *out) {
-  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
-    lxg_buffer_format(out, "%s ", cli_command_row(i)->name);
-  }
-  lxg_buffer_text(out, "help");
-}
-
-static void topic_names(struct lxg_buffer *out) {
-  command_names(out);
-  for (size_t i = 0; i < TOPICS; i++) {
-    lxg_buffer_format(out, " %s", topics[i]);
-  }
-}
-
-void cli_print_bash(struct lxg_buffer *out) {
-  lxg_buffer_text(out,
-                  "# bash completion for luxgale, made by `luxgale help completion.bash`.\n_luxgale() {\n"
-                  "  local word=${COMP_WORDS[COMP_CWORD]} before=${COMP_WORDS[COMP_CWORD-1]} "
-                  "command=${COMP_WORDS[1]} words=\n"
-                  "  COMPREPLY=()\n  case $before in\n");
-  for (size_t i = 0; i < CLI_OPTIONS; i++) {
-    const struct cli_option *const option = cli_option_row(i);
-    if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
-      lxg_buffer_format(out, "    --%s) words='", option->name);
-      choices(out, option);
-      lxg_buffer_text(out, "' ;;\n");
-    } else if (option->argument != NULL) {
-      lxg_buffer_format(out, "    --%s) COMPREPLY=($(compgen -f -- \"$word\")); return ;;\n", option->name);
-    }
-  }
-  lxg_buffer_text(out, "    help) words='");
-  topic_names(out);
-  lxg_buffer_text(out,
-                  "' ;;\n  esac\n  if [ -z \"$words\" ] && [ \"$COMP_CWORD\" -eq 1 ]; then\n    words='");
-  command_names(out);
-  lxg_buffer_text(
-      out, " --help --version'\n  elif [ -z \"$words\" ] && [[ $word == -* ]]; then\n    case $command in\n");
-  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
-    lxg_buffer_format(out, "      %s) words='", cli_command_row(i)->name);
-    for (size_t o = 0; o < CLI_OPTIONS; o++) {
-      if (cli_command_row(i)->options & CLI_BIT(o)) {
-        lxg_buffer_format(out, "--%s ", cli_option_row(o)->name);
-      }
-    }
-    lxg_buffer_text(out, "' ;;\n");
-  }
-  lxg_buffer_text(
-      out,
-      "    esac\n  fi\n  if [ -n \"$words\" ]; then\n    COMPREPLY=($(compgen -W \"$words\" -- \"$word\"))\n "
-      " else\n"
-      "    COMPREPLY=($(compgen -f -- \"$word\"))\n  fi\n}\ncomplete -o filenames -F _luxgale luxgale\n");
-}
-
-/* Text inside single quotes of a shell, without the characters that zsh's _arguments reads. */
-static void shell(struct lxg_buffer *out, const char *text) {
-  for (const char *c = text; *c != '\0'; c++) {
-    if (*c == '\'') {
-      lxg_buffer_text(out, "\xe2\x80\x99");
-    } else {
-      lxg_buffer_byte(out, *c == '[' || *c == ']' || *c == ':' || *c == '`' ? ' ' : *c);
-    }
-  }
-}
-
-void cli_print_zsh(struct lxg_buffer *out) {
-  lxg_buffer_text(
-      out,
-      "#compdef luxgale\n# zsh completion for luxgale, made by `luxgale help completion.zsh`.\n_luxgale() {\n"
-      "  local -a commands\n  commands=(\n");
-  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
-    lxg_buffer_format(out, "    '%s:", cli_command_row(i)->name);
-    shell(out, cli_command_row(i)->sentence);
-    lxg_buffer_text(out, "'\n");
-  }
-  lxg_buffer_text(out, "    'help:explain commands, keys, units and codes'\n  )\n  if (( CURRENT == 2 )); "
-                       "then\n    _describe command commands\n    return\n  fi\n"
-                       "  case ${words[2]} in\n    help) _values topic ");
-  topic_names(out);
-  lxg_buffer_text(out, " ;;\n");
-  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
-    lxg_buffer_format(out, "    %s) shift words; (( CURRENT-- )); _arguments", cli_command_row(i)->name);
-    for (size_t o = 0; o < CLI_OPTIONS; o++) {
-      const struct cli_option *const option = cli_option_row(o);
-      if (cli_command_row(i)->options & CLI_BIT(o)) {
-        lxg_buffer_format(out, " \\\n      '--%s[", option->name);
-        shell(out, option->sentence);
-        lxg_buffer_byte(out, ']');
-        if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
-          lxg_buffer_format(out, ":%s:(", option->name);
-          choices(out, option);
-          lxg_buffer_byte(out, ')');
-        } else if (option->argument != NULL) {
-          lxg_buffer_format(out, ":%s:_files", option->name);
-        }
-        lxg_buffer_byte(out, '\'');
-      }
-    }
-    lxg_buffer_text(out, cli_command_row(i)->needs != NULL ? " \\\n      '*:case:_files' ;;\n" : " ;;\n");
-  }
-  lxg_buffer_text(out, "  esac\n}\n_luxgale \"$@\"\n");
-}
-
-void cli_print_fish(struct lxg_buffer *out) {
-  lxg_buffer_text(out, "# fish completion for luxgale, made by `luxgale help completion.fish`.\n");
-  for (size_t i = 0; cli_command_row(i) != NULL; i++) {
-    const struct cli_command *const command = cli_command_row(i);
-    lxg_buffer_format(out, "complete -c luxgale -n __fish_use_subcommand -f -a %s -d '", command->name);
-    shell(out, command->sentence);
-    lxg_buffer_text(out, "'\n");
-    for (size_t o = 0; o < CLI_OPTIONS; o++) {
-      const struct cli_option *const option = cli_option_row(o);
-      if (command->options & CLI_BIT(o)) {
-        lxg_buffer_format(out, "complete -c luxgale -n '__fish_seen_subcommand_from %s' -l %s", command->name,
-                          option->name);
-        if (option->letter != 0) {
-          lxg_buffer_format(out, " -s %c", option->letter);
-        }
-        if (option->argument != NULL && strchr(option->argument, '|') != NULL) {
-          lxg_buffer_text(out, " -x -a '");
-          choices(out, option);
-          lxg_buffer_byte(out, '\'');
-        } else if (option->argument != NULL) {
-          lxg_buffer_text(out, " -r");
-        }
-        lxg_buffer_text(out, " -d '");
-        shell(out, option->sentence);
-        lxg_buffer_text(out, "'\n");
-      }
-    }
-  }
-  lxg_buffer_text(
-      out,
-      "complete -c luxgale -n __fish_use_subcommand -f -a help -d 'explain commands, keys, units and codes'\n"
-      "complete -c luxgale -n '__fish_seen_subcommand_from help' -f -a '");
-  topic_names(out);
-  lxg_buffer_text(out, "'\n");
-}
-
 /* ---- the report ---------------------------------------------------------------------------------------------------- */
 
 void cli_print_report_markdown(struct lxg_buffer *out) {
-  lxg_buffer_text(out,
-                  "# Keys of a report\n\nMade by `make docs` from the table behind `luxgale help report`. A "
-                  "report is one tree, written as YAML or\n"
-                  "JSON; `[]` is any item of a list, `*` any name there or below. Every number has its unit in its name "
-                  "(`_msun_yr`: solar masses per\n"
-                  "year) and the fewest digits that read back to the same double. A number that the physics "
-                  "does not give is `null`,\n"
-                  "with the reason beside it. Columns of tables are described in the head of each table.\n\n"
-                  "| key | meaning |\n|---|---|\n");
+  lxg_buffer_text(
+      out,
+      "# Keys of a report\n\nMade by `make docs` from the table behind `luxgale help report`. A "
+      "report is one tree, written as YAML or\n"
+      "JSON; `[]` is any item of a list, `*` any name there or below. Every number has its unit in its name "
+      "(`_msun_yr`: solar masses per\n"
+      "year) and the fewest digits that read back to the same double. A number that the physics "
+      "does not give is `null`,\n"
+      "with the reason beside it. Columns of tables are described in the head of each table.\n\n"
+      "| key | meaning |\n|---|---|\n");
   for (size_t i = 0; i < REPORT_KEYS; i++) {
     lxg_buffer_format(out, "| `%s` | %s |\n", report_keys[i].path, report_keys[i].sentence);
   }

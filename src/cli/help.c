@@ -27,7 +27,12 @@ static void print_option(struct lxg_buffer *out, const struct cli_option *option
   lxg_buffer_format(out, option->letter != 0 ? "  -%c, " : "      ", option->letter);
   lxg_buffer_format(out, "--%s%s%s", option->name, option->argument != NULL ? " " : "",
                     option->argument != NULL ? option->argument : "");
-  pad(out, from, OPTION_WIDTH);
+  if (out->size - from > OPTION_WIDTH) { /* too long: the sentence stands below */
+    lxg_buffer_byte(out, '\n');
+    pad(out, out->size, OPTION_WIDTH);
+  } else {
+    pad(out, from, OPTION_WIDTH);
+  }
   lxg_buffer_format(out, "  %s\n", option->sentence);
 }
 
@@ -43,7 +48,7 @@ static void print_general(struct lxg_buffer *out) {
   for (size_t i = 0; cli_command_row(i) != NULL; i++) {
     const size_t from = out->size;
     lxg_buffer_format(out, "  %s", cli_command_row(i)->name);
-    pad(out, from, 12);
+    pad(out, from, 20);
     lxg_buffer_format(out, "%s\n", cli_command_row(i)->sentence);
   }
   lxg_buffer_text(out, "\nOptions of every command:\n");
@@ -59,10 +64,12 @@ static void print_general(struct lxg_buffer *out) {
 }
 
 static void print_command(struct lxg_buffer *out, const struct cli_command *command) {
+  const bool file = (command->options & CLI_TAKES_FILE) != 0;
   lxg_buffer_format(out, "Usage: luxgale %s [OPTIONS]%s\n\n%s: %s.\n", command->name,
-                    command->needs != NULL ? " CASE" : "", command->name, command->sentence);
+                    command->needs == NULL ? "" : (file ? " FILE" : " CASE"), command->name,
+                    command->sentence);
   if (command->needs != NULL) {
-    lxg_buffer_format(out, "The case needs %s.\n", command->needs);
+    lxg_buffer_format(out, "The %s %s.\n", file ? "file holds" : "case needs", command->needs);
   }
   lxg_buffer_text(out, "\nOptions:\n");
   for (size_t i = 0; i < CLI_OPTIONS; i++) {
@@ -268,10 +275,35 @@ static bool print_keys_named(struct lxg_buffer *out, const char *topic) {
   return found;
 }
 
-static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, const char *code,
+/* The command of that name, of one word or two, or all of a group. */
+static bool print_commands(struct lxg_buffer *out, const char *topic, const char *second) {
+  int words = 0;
+  const struct cli_command *command = cli_command_match(topic, second, &words);
+  if (command != NULL) {
+    print_command(out, command);
+    return true;
+  }
+  bool found = false;
+  const size_t length = strlen(topic);
+  for (size_t i = 0; cli_command_row(i) != NULL && second == NULL; i++) {
+    const char *name = cli_command_row(i)->name;
+    if (strncmp(name, topic, length) == 0 && name[length] == ' ') {
+      lxg_buffer_text(out, found ? "\n" : "");
+      print_command(out, cli_command_row(i));
+      found = true;
+    }
+  }
+  if (found) {
+    lxg_buffer_text(out, "\nKeys of the case:\n\n");
+    print_keys_at(out, topic);
+  }
+  return found;
+}
+
+static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, const char *second,
                                    struct lxg_error *error) {
-  if (strcmp(topic, "reason") == 0 && code != NULL) {
-    return cli_reason_explain(out, code, error);
+  if (strcmp(topic, "reason") == 0 && second != NULL) {
+    return cli_reason_explain(out, second, error);
   }
   static const struct {
     const char *name;
@@ -295,8 +327,7 @@ static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, co
       return LXG_OK;
     }
   }
-  if (cli_command_find(topic) != NULL) {
-    print_command(out, cli_command_find(topic));
+  if (print_commands(out, topic, second)) {
     return LXG_OK;
   }
   const bool key = print_keys_at(out, topic) || print_setting_at(out, topic) || print_keys_named(out, topic);
@@ -318,13 +349,13 @@ static enum lxg_status show(struct lxg_buffer *out, enum lxg_status status, stru
   return status;
 }
 
-enum lxg_status cli_help(const char *topic, const char *code, struct lxg_error *error) {
+enum lxg_status cli_help(const char *topic, const char *second, struct lxg_error *error) {
   struct lxg_buffer out = {0};
   enum lxg_status status = LXG_OK;
   if (topic == NULL) {
     print_general(&out);
   } else {
-    status = print_topic(&out, topic, code, error);
+    status = print_topic(&out, topic, second, error);
   }
   return show(&out, status, error);
 }

@@ -32,9 +32,12 @@ static void tell_files(const struct cli_request *request, const struct lxg_case 
 
 /* 0, or 1 when the physics gave no full answer; else the exit status of the failure. */
 static int run(struct cli_request *request, struct lxg_error *error) {
-  struct lxg_case input;
+  struct lxg_case input = {0};
   struct lxg_results results = {0};
-  enum lxg_status status = lxg_case_read(&input, request->case_path, request->set, request->set_count, error);
+  enum lxg_status status = LXG_OK;
+  if (!(request->command->options & CLI_TAKES_FILE)) {
+    status = lxg_case_read(&input, request->case_path, request->set, request->set_count, error);
+  }
   if (status != LXG_OK) {
     return lxg_status_exit(status);
   }

@@ -105,6 +105,12 @@ void lxg_report_wind_warnings(struct lxg_node *warnings, const struct lxg_wind *
     lxg_node_add_number(warning, "optical_depth", wind->critical.optical_depth);
     lxg_node_add_number(warning, "limit", LXG_REPORT_THIN_DEPTH);
   }
+  if (wind->table_share > 0.0 && wind->table_share < 1.0) {
+    struct lxg_node *warning =
+        lxg_report_warn(warnings, "table-share",
+                        "part of the wind lies outside the opacity table, where other opacities hold");
+    lxg_node_add_number(warning, "opacity_table_share", wind->table_share);
+  }
   if (wind->diffusion_time > wind->flow_time) {
     struct lxg_node *warning =
         lxg_report_warn(warnings, "trapped-light",

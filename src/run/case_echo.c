@@ -37,6 +37,10 @@ static void echo_porosity(const struct lxg_case *input, struct lxg_node *section
   if (law == LXG_POROSITY_POWER) {
     lxg_node_add_number(porosity, "power", input->porosity.alpha);
   }
+  if (law != LXG_POROSITY_NONE) {
+    lxg_node_add_text(porosity, "when",
+                      input->porosity.when == LXG_POROSITY_ALWAYS ? "always" : "super-eddington");
+  }
 }
 
 static void echo_decline(const struct lxg_case *input, struct lxg_node *section) {
@@ -74,6 +78,17 @@ static void echo_history(const struct lxg_case *input, struct lxg_node *section)
   lxg_node_add_integer(luminosity, "rows", (long long)history->count);
   lxg_node_add_number(luminosity, "first_d", history->time[0] / LXG_DAY);
   lxg_node_add_number(luminosity, "last_d", history->time[history->count - 1] / LXG_DAY);
+}
+
+static void echo_driving(const struct lxg_case *input, struct lxg_node *section) {
+  if (input->claimed) {
+    const struct lxg_driving_claim *claim = &input->claim;
+    struct lxg_node *driving = lxg_node_add_mapping(section, "driving");
+    lxg_node_add_number(driving, "mass_msun", claim->mass / LXG_SOLAR_MASS);
+    lxg_node_add_number(driving, "mass_error_msun", (claim->mass_high - claim->mass) / LXG_SOLAR_MASS);
+    lxg_node_add_number(driving, "speed_km_s", claim->speed / LXG_KM);
+    lxg_node_add_number(driving, "speed_error_km_s", (claim->speed_high - claim->speed) / LXG_KM);
+  }
 }
 
 static void echo_settings(const struct lxg_case *input, struct lxg_node *section) {
@@ -124,6 +139,7 @@ void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
     lxg_report_held(hold, input->hold[i].quantity, input->hold[i].value);
   }
   echo_history(input, section);
+  echo_driving(input, section);
   echo_settings(input, section);
   echo_files(input, section);
 }

@@ -138,6 +138,9 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
   if (status == LXG_OK) {
     status = read_luminosity(input, lxg_node_find(root, "luminosity"), error);
   }
+  if (status == LXG_OK) {
+    status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
+  }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
 }
 
@@ -145,6 +148,8 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
                               size_t count, struct lxg_error *error) {
   memset(input, 0, sizeof *input);
   lxg_settings_init(&input->settings);
+  input->limits = lxg_family_options_default();
+
   enum lxg_status status = lxg_files_init(&input->files, path, error);
   if (status == LXG_OK) {
     status = lxg_document_read(path, LXG_DOCUMENT_AUTO, &input->document, error);

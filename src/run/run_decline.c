@@ -95,8 +95,7 @@ enum lxg_status lxg_run_decline_history(const struct lxg_case *input, struct lxg
   }
   if (status == LXG_OK) {
     limits->thin_depth = input->decline.thin_depth;
-    limits->envelope_most =
-        mass_margin * decline.state[0].envelope_mass * LXG_GRAVITATION / input->star.gm;
+    limits->envelope_most = mass_margin * decline.state[0].envelope_mass * LXG_GRAVITATION / input->star.gm;
     status = wind_phase(&decline, &time, &luminosity, error);
   }
   if (status == LXG_OK) {

@@ -20,7 +20,7 @@ enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_ru
   }
   if (status == LXG_OK) {
     lxg_run_stage(options, "tracing the family of winds");
-    status = lxg_family_trace(solver, &input->hold[0], NULL, &family, error);
+    status = lxg_run_trace(input, solver, 0.0, &family, error);
   }
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_OK) {

@@ -160,6 +160,16 @@ struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const stru
   return row;
 }
 
+bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count) {
+  bool radius = false, inner = false;
+  for (size_t i = 0; i < count; i++) {
+    radius = radius || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS;
+    inner = inner || hold[i].quantity == LXG_HELD_BASE_TEMPERATURE ||
+            hold[i].quantity == LXG_HELD_BASE_LUMINOSITY || hold[i].quantity == LXG_HELD_ENVELOPE_MASS;
+  }
+  return radius && !inner;
+}
+
 static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                   struct lxg_error *error) {
   const char *name = lxg_held_name(hold->quantity);
