@@ -58,6 +58,12 @@ static const struct {
     {"trapped-light", "gas crosses from the critical point to the photosphere faster than light diffuses",
      "The radiation is carried along: the wind is still a solution, but its light answers slowly to changes "
      "at the base."},
+    {"handover-gap", "at the homogeneous limit only one side, plain or porous, has a wind",
+     "Epochs near the limit have no wind or a doubtful one; another launch radius or porosity may close the "
+     "gap."},
+    {"handover-jump", "the mass-loss rate jumps where plain winds hand over to porous ones",
+     "The size of the jump is part of the error near the limit; `settings.handover_jump` says what is "
+     "tolerated."},
     {"start-clipped",
      "the steady states end below the wanted start mass: the eruption starts from the largest one",
      "The mass above it left in some other way, or the mixture is not that of the eruption; see "
