@@ -42,7 +42,7 @@ static const char style[] =
     "@media "
     "print{:root{--ink:#000;--soft:#444;--paper:#fff;--card:#fff;--line:#bbb;--mark:#000;--warn:#000}main{"
     "max-width:none;padding:0}body{font-size:10.5pt}"
-    "pre{white-space:pre-wrap}h2{break-after:avoid}}\n";
+    "figure svg{width:74%;border:0}pre{white-space:pre-wrap}h2{break-after:avoid}}\n";
 
 static void escape(struct lxg_buffer *out, const char *text) {
   for (const char *c = text; *c != '\0'; c++) {

@@ -111,8 +111,9 @@ static char *read_whole(const char *path, const struct form *form, size_t *size)
     const bool read = fread(bytes, 1, *size, file) == *size;
     bytes[*size] = '\0';
     bool ends = false;
-    for (size_t i = *size - TAIL; i < *size; i++) {
-      ends = ends || memcmp(bytes + i, form->tail, strlen(form->tail)) == 0;
+    const size_t tail = strlen(form->tail);
+    for (size_t i = *size - TAIL; i + tail <= *size; i++) {
+      ends = ends || memcmp(bytes + i, form->tail, tail) == 0;
     }
     if (!read || !ends || memcmp(bytes, form->head, strlen(form->head)) != 0) {
       lxg_free(bytes);
