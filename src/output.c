@@ -212,8 +212,15 @@ enum lxg_status lxg_output_write(const char *path, const void *bytes, size_t siz
   struct place place = {.handle = -1};
   enum lxg_status status = place_open(path, &place, error);
   if (status == LXG_OK) {
+    sigset_t stop, before; /* a signal to stop waits until the temporary file is gone */
+    sigemptyset(&stop);
+    sigaddset(&stop, SIGINT);
+    sigaddset(&stop, SIGTERM);
+    sigaddset(&stop, SIGHUP);
+    pthread_sigmask(SIG_BLOCK, &stop, &before);
     remove_stale(&place);
     status = replace(&place, exists && S_ISREG(target.st_mode) ? &target : NULL, path, bytes, size, error);
+    pthread_sigmask(SIG_SETMASK, &before, NULL);
   }
   place_close(&place);
   return status;

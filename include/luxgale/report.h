@@ -182,6 +182,10 @@ enum lxg_status lxg_report_structure_table(const struct lxg_wind_row *rows, size
                                            const struct lxg_opacity *opacity, struct lxg_table **table,
                                            struct lxg_error *error);
 
+/* Opacity on a regular grid of log T and log R that holds the wind of these rows; empty where it is not defined. */
+enum lxg_status lxg_report_opacity_map(const struct lxg_opacity *opacity, const struct lxg_wind_row *rows,
+                                       size_t count, struct lxg_table **table, struct lxg_error *error);
+
 /* All members of a family, thin end first. */
 enum lxg_status lxg_report_family_table(const struct lxg_family *family, struct lxg_table **table,
                                         struct lxg_error *error);

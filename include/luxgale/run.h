@@ -99,10 +99,14 @@ struct lxg_run_options {
   bool profiles;                  /* fill results.profiles */
   bool shell;                     /* fill results.shell */
   bool velocities;                /* fill results.velocities */
+  bool pictures;                  /* fill every table that a picture needs */
   size_t threads;                 /* threads for independent work; 0 means 1. Results do not depend on it */
   bool seeded;                    /* take `seed` in place of the case's errors.seed */
   long long seed;                 /* of the random numbers, >= 0 */
   struct lxg_run_opacity opacity; /* used by the commands `opacity ...` alone */
+  /* Told what is being done as each stage begins; NULL: nobody is told. */
+  void (*stage)(void *context, const char *doing);
+  void *context;
 };
 
 /* What a command gives. */
@@ -113,6 +117,8 @@ struct lxg_results {
   struct lxg_table *profiles;   /* NULL if not asked for */
   struct lxg_table *shell;      /* the same */
   struct lxg_table *velocities; /* the same */
+  struct lxg_table *family;     /* of `outburst` for pictures; NULL if not asked for */
+  struct lxg_table *map;        /* opacity around a wind's track, for pictures; NULL if not asked for */
   bool answered;                /* false: the physics gave no answer, or only part; the report says why */
   struct lxg_error why;         /* the reason then */
 };

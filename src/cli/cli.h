@@ -8,6 +8,7 @@
 #include "luxgale/document.h"
 #include "luxgale/run.h"
 #include "luxgale/status.h"
+#include "luxgale/text.h"
 
 #include <stdbool.h>
 #include <stddef.h>
@@ -22,9 +23,12 @@ enum cli_option_id {
   CLI_PROFILES,
   CLI_SHELL,
   CLI_VELOCITIES,
+  CLI_PLOTS,
+  CLI_HTML,
   CLI_BRANCH,
   CLI_THREADS,
   CLI_SEED,
+  CLI_FOR,
   CLI_POINTS,
   CLI_LOG_T,
   CLI_LOG_R,
@@ -52,6 +56,14 @@ enum cli_option_id {
   (CLI_BIT(CLI_OUTPUT) | CLI_BIT(CLI_FORMAT) | CLI_BIT(CLI_SET) | CLI_BIT(CLI_THREADS) | CLI_BIT(CLI_SEED) | \
    CLI_BIT(CLI_QUIET) | CLI_BIT(CLI_VERBOSE) | CLI_BIT(CLI_HELP) | CLI_BIT(CLI_VERSION))
 
+/* Options of `new`, which takes no case. */
+#define CLI_NEW                                                                                              \
+  (CLI_BIT(CLI_OUTPUT) | CLI_BIT(CLI_FOR) | CLI_BIT(CLI_QUIET) | CLI_BIT(CLI_VERBOSE) | CLI_BIT(CLI_HELP) |  \
+   CLI_BIT(CLI_VERSION))
+
+/* Options of commands with pictures. */
+#define CLI_PICTURES (CLI_BIT(CLI_PLOTS) | CLI_BIT(CLI_HTML))
+
 struct cli_option {
   const char *name;     /* after -- */
   char letter;          /* after -, 0 if none */
@@ -62,7 +74,7 @@ struct cli_option {
 struct cli_command {
   const char *name; /* one word, or two: a group and what it does */
   const char *sentence;
-  const char *needs;          /* what the case must hold */
+  const char *needs;          /* what the case must hold; NULL: the command takes no case */
   unsigned long long options; /* bits, common ones included */
   enum lxg_status (*run)(const struct lxg_case *input, const struct lxg_run_options *options,
                          struct lxg_results *results, struct lxg_error *error);
@@ -83,10 +95,13 @@ struct cli_request {
   const char *case_path;
   const char *output; /* "-" by default */
   enum lxg_document_format format;
+  bool aligned;     /* text for people instead */
   const char **set; /* overrides, to be freed by lxg_free */
   size_t set_count;
   const char *epochs, *structure; /* files, NULL if not asked for */
   const char *profiles, *shell, *velocities;
+  const char *plots, *html; /* folder of pictures and file of the page, NULL if not asked for */
+  const char *reader;       /* of `new`: for whom the case is */
   bool quiet, verbose;
   bool help, version;
   struct lxg_run_options run;
@@ -95,16 +110,47 @@ struct cli_request {
 /* Understands argv[1...]. LXG_USAGE with a sentence. */
 enum lxg_status cli_request_read(struct cli_request *request, int argc, char **argv, struct lxg_error *error);
 
-/* Prints the general help, or that of a topic: a command, case, units, settings, reasons, or the path of a key;
- * `second` is the second word of a command, or NULL. LXG_USAGE for an unknown one. */
+/* Prints the general help, or that of a topic: a command, case, report, units, settings, reasons, reason CODE, or a key; `second` is
+ * the second word of a command or the code, or NULL. LXG_USAGE for an unknown one. */
 enum lxg_status cli_help(const char *topic, const char *second, struct lxg_error *error);
 enum lxg_status cli_version(struct lxg_error *error);
 
 /* Prints "luxgale: FILE:LINE:COL: error: text [code]" and its contexts. */
 void cli_complain(const struct lxg_error *error);
 
+/* Codes that `help reason` explains (NULL beyond the end), and the explanation. LXG_USAGE for an unknown one. */
+const char *cli_reason_code(size_t index);
+const char *cli_reason_meaning(size_t index);
+enum lxg_status cli_reason_explain(struct lxg_buffer *out, const char *code, struct lxg_error *error);
+
+/* `new`: writes a starter case. LXG_USAGE if the reader is unknown or the file exists. */
+enum lxg_status cli_new(const struct cli_request *request, struct lxg_error *error);
+
+/* The report as aligned text. */
+void cli_aligned(struct lxg_buffer *out, struct lxg_node *report);
+
+/* Line on a terminal about what is being done; NULL where none is wanted, which stop takes too. */
+struct cli_progress;
+struct cli_progress *cli_progress_start(const struct cli_request *request);
+void cli_progress_stage(void *progress, const char *doing);
+void cli_progress_stop(struct cli_progress *progress);
+
+/* Files made from the tables: manual pages, completions, and what a report holds. */
+void cli_print_manual(struct lxg_buffer *out);
+void cli_print_case_manual(struct lxg_buffer *out);
+void cli_print_bash(struct lxg_buffer *out);
+void cli_print_zsh(struct lxg_buffer *out);
+void cli_print_fish(struct lxg_buffer *out);
+void cli_print_report(struct lxg_buffer *out);
+void cli_print_report_markdown(struct lxg_buffer *out);
+bool cli_print_report_key(struct lxg_buffer *out, const char *topic); /* false if no key of a report fits */
+
 /* Writes what a command gave to the places that were asked for. */
-enum lxg_status cli_write(const struct cli_request *request, struct lxg_results *results,
-                          struct lxg_error *error);
+enum lxg_status cli_write(const struct cli_request *request, const struct lxg_case *input,
+                          struct lxg_results *results, struct lxg_error *error);
+
+/* Draws the pictures and writes the page that were asked for; what could not be drawn becomes a warning of the report. */
+enum lxg_status cli_pictures(const struct cli_request *request, const struct lxg_case *input,
+                             struct lxg_results *results, struct lxg_error *error);
 
 #endif

@@ -15,25 +15,29 @@
 static const struct cli_command commands[] = {
     {"outburst", "turn a luminosity history into winds and an ejecta report",
      "star, composition, one held quantity and `luminosity`",
-     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_SHELL) | CLI_BIT(CLI_VELOCITIES),
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_SHELL) |
+         CLI_BIT(CLI_VELOCITIES),
      lxg_run_outburst, "luxgale outburst --epochs epochs.ecsv -o report.yaml examples/quickstart.yaml"},
     {"wind", "solve one steady wind", "star, composition and two held quantities",
-     CLI_COMMON | CLI_BIT(CLI_STRUCTURE) | CLI_BIT(CLI_BRANCH), lxg_run_wind,
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_STRUCTURE) | CLI_BIT(CLI_BRANCH), lxg_run_wind,
      "luxgale wind --set hold.launch_radius='2e10 cm' examples/wind.yaml"},
     {"family", "trace all winds that share one held quantity, from the thin to the thick end",
-     "star, composition and one held quantity", CLI_COMMON | CLI_BIT(CLI_EPOCHS), lxg_run_family,
-     "luxgale family -o family.ecsv examples/quickstart.yaml"},
+     "star, composition and one held quantity", CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS),
+     lxg_run_family, "luxgale family -o family.ecsv examples/quickstart.yaml"},
     {"lines", "compare line speeds with winds and swept shells; line profiles; fit of the stellar mass",
      "`lines`, star, composition, and one held quantity with `luminosity` or two without",
-     CLI_COMMON | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_PROFILES) | CLI_BIT(CLI_SHELL) |
-         CLI_BIT(CLI_VELOCITIES),
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS) | CLI_BIT(CLI_BRANCH) | CLI_BIT(CLI_PROFILES) |
+         CLI_BIT(CLI_SHELL) | CLI_BIT(CLI_VELOCITIES),
      lxg_run_lines, "luxgale lines --epochs rows.ecsv examples/spectroscopist.yaml"},
     {"mass", "ejected mass from an expansion speed by every method that the data allow",
      "`mass`, star and composition", CLI_COMMON | CLI_BIT(CLI_BRANCH), lxg_run_mass,
      "luxgale mass examples/spectroscopist.yaml"},
     {"decline", "a whole eruption over a burning base: wind, its end, turn-off, light curve",
-     "star, composition and `burning: {law: cno}`; nothing is held", CLI_COMMON | CLI_BIT(CLI_EPOCHS),
-     lxg_run_decline, "luxgale decline --epochs decline.ecsv -o decline.yaml examples/decline.yaml"},
+     "star, composition and `burning: {law: cno}`; nothing is held",
+     CLI_COMMON | CLI_PICTURES | CLI_BIT(CLI_EPOCHS), lxg_run_decline,
+     "luxgale decline --epochs decline.ecsv -o decline.yaml examples/decline.yaml"},
+    {"new", "write a commented case to begin with", NULL, CLI_NEW, NULL,
+     "luxgale new --for theorist -o my-case.yaml"},
     {"star", "radius, Eddington luminosity, escape speed, tiring rate, ignition mass", "star and composition",
      CLI_COMMON, lxg_run_star, "luxgale star examples/quickstart.yaml"},
     {"opacity at", "opacity and its slopes at one point (--log-t, --log-r) or at the points of a table",
@@ -57,8 +61,9 @@ static const struct cli_command commands[] = {
 static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_OUTPUT] = {"output", 'o', "FILE",
                     "Write the report there instead of standard output; FILE.ecsv takes the table."},
-    [CLI_FORMAT] = {"format", 0, "yaml|json",
-                    "Form of the report; else by the suffix of --output, else yaml."},
+    [CLI_FORMAT] = {"format", 0, "yaml|json|text",
+                    "Form of the report; else by the suffix of --output, else text on a terminal and yaml "
+                    "anywhere else."},
     [CLI_SET] = {"set", 0, "PATH=VALUE",
                  "Replace or add a key of the case, e.g. star.mass='1.1 Msun'; repeatable."},
     [CLI_EPOCHS] =
@@ -68,6 +73,10 @@ static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_PROFILES] = {"profiles", 0, "FILE", "Write the computed line profiles (ECSV)."},
     [CLI_SHELL] = {"shell", 0, "FILE", "Write the swept shell against time (ECSV)."},
     [CLI_VELOCITIES] = {"velocities", 0, "FILE", "Write the ejected mass by speed, dM/dv (ECSV)."},
+    [CLI_PLOTS] = {"plots", 0, "FOLDER",
+                   "Draw pictures there (SVG, PDF, PNG), their gnuplot scripts and data beside them."},
+    [CLI_HTML] = {"html", 0, "FILE",
+                  "Write one page with results, pictures, warnings and input, to send or print."},
     [CLI_BRANCH] =
         {"branch", 0, "thin|thick",
          "Where several winds have the held values: the one with the smallest (thin, the default) or largest "
@@ -75,6 +84,7 @@ static const struct cli_option options[CLI_OPTIONS] = {
     [CLI_THREADS] = {"threads", 0, "N",
                      "Threads for independent work; results do not depend on it. Default 1."},
     [CLI_SEED] = {"seed", 0, "N", "Seed of the random numbers in place of the case's errors.seed."},
+    [CLI_FOR] = {"for", 0, "spectroscopist|theorist|observer", "For whom the new case is."},
     [CLI_POINTS] = {"points", 0, "FILE", "Table (ECSV or CSV) of points with the columns log_t and log_r."},
     [CLI_LOG_T] = {"log-t", 0, "NUMBER", "log10 of T in K; for a grid FIRST:LAST:STEP."},
     [CLI_LOG_R] = {"log-r", 0, "NUMBER", "log10 of R = rho/(T/1e6 K)^3; for a grid FIRST:LAST:STEP."},

@@ -14,7 +14,7 @@
 
 #include <string.h>
 
-enum { OPTION_WIDTH = 26, KEY_WIDTH = 26 };
+enum { OPTION_WIDTH = 26, KEY_WIDTH = 26, MOST_NAMES = 512 };
 
 static void pad(struct lxg_buffer *out, size_t from, size_t width) {
   const size_t used = out->size - from;
@@ -28,7 +28,12 @@ static void print_option(struct lxg_buffer *out, const struct cli_option *option
   lxg_buffer_format(out, option->letter != 0 ? "  -%c, " : "      ", option->letter);
   lxg_buffer_format(out, "--%s%s%s", option->name, option->argument != NULL ? " " : "",
                     option->argument != NULL ? option->argument : "");
-  pad(out, from, OPTION_WIDTH);
+  if (out->size - from > OPTION_WIDTH) { /* too long: the sentence stands below */
+    lxg_buffer_byte(out, '\n');
+    pad(out, out->size, OPTION_WIDTH);
+  } else {
+    pad(out, from, OPTION_WIDTH);
+  }
   lxg_buffer_format(out, "  %s\n", option->sentence);
 }
 
@@ -36,7 +41,9 @@ static void print_general(struct lxg_buffer *out) {
   lxg_buffer_text(
       out,
       "Usage: luxgale COMMAND [OPTIONS] CASE\n"
-      "       luxgale help [COMMAND | case | KEY | units | settings | reasons]\n\n"
+      "       luxgale help [COMMAND | case | report | KEY | units | settings | reasons | reason CODE]\n"
+      "       luxgale help luxgale.1 | luxgale-case.5 | completion.bash | completion.zsh | completion.fish | "
+      "inputs.md | report.md\n\n"
       "Radiation-driven winds and ejecta of stellar eruptions. CASE is YAML or JSON; - is standard input.\n\n"
       "Commands:\n");
   for (size_t i = 0; cli_command_row(i) != NULL; i++) {
@@ -59,9 +66,13 @@ static void print_general(struct lxg_buffer *out) {
 
 static void print_command(struct lxg_buffer *out, const struct cli_command *command) {
   const bool file = (command->options & CLI_TAKES_FILE) != 0;
-  lxg_buffer_format(out, "Usage: luxgale %s [OPTIONS] %s\n\n%s: %s.\nThe %s %s.\n\nOptions:\n", command->name,
-                    file ? "FILE" : "CASE", command->name, command->sentence,
-                    file ? "file holds" : "case needs", command->needs);
+  lxg_buffer_format(out, "Usage: luxgale %s [OPTIONS]%s\n\n%s: %s.\n", command->name,
+                    command->needs == NULL ? "" : (file ? " FILE" : " CASE"), command->name,
+                    command->sentence);
+  if (command->needs != NULL) {
+    lxg_buffer_format(out, "The %s %s.\n", file ? "file holds" : "case needs", command->needs);
+  }
+  lxg_buffer_text(out, "\nOptions:\n");
   for (size_t i = 0; i < CLI_OPTIONS; i++) {
     if (command->options & CLI_BIT(i)) {
       print_option(out, cli_option_row(i));
@@ -184,12 +195,13 @@ static void print_settings(struct lxg_buffer *out) {
 }
 
 static void print_reasons(struct lxg_buffer *out) {
-  lxg_buffer_text(out, "Why there may be no wind: the reason_code of a report.\n\n");
-  for (int reason = 0; reason < LXG_WIND_REASON_COUNT; reason++) {
+  lxg_buffer_text(out, "Codes of reports and messages: why there is no wind, warnings, refused input.\n"
+                       "`luxgale help reason CODE` says what to try.\n\n");
+  for (size_t i = 0; cli_reason_code(i) != NULL; i++) {
     const size_t from = out->size;
-    lxg_buffer_format(out, "  %s", lxg_wind_reason_code((enum lxg_wind_reason)reason));
+    lxg_buffer_format(out, "  %s", cli_reason_code(i));
     pad(out, from, KEY_WIDTH);
-    lxg_buffer_format(out, "  %s\n", lxg_wind_reason_text((enum lxg_wind_reason)reason));
+    lxg_buffer_format(out, "  %s\n", cli_reason_meaning(i));
   }
   lxg_buffer_text(out, "\nWhere a whole eruption ends (`decline`):\n\n");
   for (int end = 0; end < LXG_DECLINE_END_COUNT; end++) {
@@ -230,6 +242,47 @@ static bool print_setting_at(struct lxg_buffer *out, const char *topic) {
   return false;
 }
 
+/* Names the nearest of commands, topics, paths of keys and last parts of paths. */
+static enum lxg_status unknown_topic(const char *topic, struct lxg_error *error) {
+  const char *names[MOST_NAMES];
+  struct lxg_buffer paths = {0};
+  size_t count = 0;
+  for (size_t i = 0; cli_command_row(i) != NULL && count < MOST_NAMES; i++) {
+    names[count++] = cli_command_row(i)->name;
+  }
+  for (size_t i = 0; i < lxg_keys_count(); i++) { /* all paths first: the buffer moves while it grows */
+    key_path(lxg_keys_row(i), &paths);
+    lxg_buffer_byte(&paths, '\0');
+  }
+  for (const char *path = paths.data;
+       path != NULL && path < paths.data + paths.size && count + 1 < MOST_NAMES; path += strlen(path) + 1) {
+    names[count++] = path;
+    const char *const dot = strrchr(path, '.');
+    if (dot != NULL) {
+      names[count++] = dot + 1;
+    }
+  }
+  const char *const near = paths.failed ? NULL : lxg_text_nearest(topic, names, count);
+  const enum lxg_status status = lxg_error_set(
+      error, LXG_USAGE, "help-unknown",
+      "help %s: no such topic%s%s%s There are the commands, case, units, settings, reasons, and every key",
+      topic, near != NULL ? "; did you mean " : "", near != NULL ? near : "", near != NULL ? "?" : ".");
+  lxg_buffer_free(&paths);
+  return status;
+}
+
+/* Keys whose last part is the topic, e.g. "base_temperature". */
+static bool print_keys_named(struct lxg_buffer *out, const char *topic) {
+  bool found = false;
+  for (size_t i = 0; i < lxg_keys_count(); i++) {
+    if (strcmp(lxg_keys_row(i)->name, topic) == 0) {
+      print_key(out, lxg_keys_row(i));
+      found = true;
+    }
+  }
+  return found;
+}
+
 /* The command of that name, of one word or two, or all of a group. */
 static bool print_commands(struct lxg_buffer *out, const char *topic, const char *second) {
   int words = 0;
@@ -257,6 +310,9 @@ static bool print_commands(struct lxg_buffer *out, const char *topic, const char
 
 static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, const char *second,
                                    struct lxg_error *error) {
+  if (strcmp(topic, "reason") == 0 && second != NULL) {
+    return cli_reason_explain(out, second, error);
+  }
   static const struct {
     const char *name;
     void (*print)(struct lxg_buffer *out);
@@ -264,7 +320,15 @@ static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, co
                 {"units", print_units},
                 {"settings", print_settings},
                 {"reasons", print_reasons},
-                {"case.md", print_markdown}};
+                {"reason", print_reasons},
+                {"report", cli_print_report},
+                {"inputs.md", print_markdown},
+                {"report.md", cli_print_report_markdown},
+                {"luxgale.1", cli_print_manual},
+                {"luxgale-case.5", cli_print_case_manual},
+                {"completion.bash", cli_print_bash},
+                {"completion.zsh", cli_print_zsh},
+                {"completion.fish", cli_print_fish}};
   for (size_t i = 0; i < sizeof topics / sizeof topics[0]; i++) {
     if (strcmp(topics[i].name, topic) == 0) {
       topics[i].print(out);
@@ -274,12 +338,12 @@ static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, co
   if (print_commands(out, topic, second)) {
     return LXG_OK;
   }
-  if (print_keys_at(out, topic) || print_setting_at(out, topic)) {
+  const bool key = print_keys_at(out, topic) || print_setting_at(out, topic) || print_keys_named(out, topic);
+  const bool answer = cli_print_report_key(out, topic); /* a name may be both, e.g. wind and star */
+  if (key || answer) {
     return LXG_OK;
   }
-  return lxg_error_set(
-      error, LXG_USAGE, "help-unknown",
-      "help %s: no such topic; there are the commands, case, units, settings, reasons, and every key", topic);
+  return unknown_topic(topic, error);
 }
 
 static enum lxg_status show(struct lxg_buffer *out, enum lxg_status status, struct lxg_error *error) {

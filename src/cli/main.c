@@ -47,9 +47,14 @@ static int run(struct cli_request *request, struct lxg_error *error) {
   request->run.profiles = request->profiles != NULL;
   request->run.shell = request->shell != NULL;
   request->run.velocities = request->velocities != NULL;
+  request->run.pictures = request->plots != NULL || request->html != NULL;
+  struct cli_progress *const progress = cli_progress_start(request);
+  request->run.stage = progress != NULL ? cli_progress_stage : NULL;
+  request->run.context = progress;
   status = request->command->run(&input, &request->run, &results, error);
+  cli_progress_stop(progress);
   if (status == LXG_OK) {
-    status = cli_write(request, &results, error);
+    status = cli_write(request, &input, &results, error);
   }
   const int answer = results.answered ? 0 : 1;
   lxg_results_free(&results);
@@ -68,6 +73,8 @@ static int dispatch(int argc, char **argv, struct lxg_error *error) {
     answer = lxg_status_exit(cli_help(request.command != NULL ? request.command->name : NULL, NULL, error));
   } else if (status == LXG_OK && request.version) {
     answer = lxg_status_exit(cli_version(error));
+  } else if (status == LXG_OK && request.command->needs == NULL) {
+    answer = lxg_status_exit(cli_new(&request, error));
   } else if (status == LXG_OK) {
     answer = run(&request, error);
   }

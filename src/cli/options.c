@@ -90,10 +90,12 @@ static enum lxg_status read_axis(size_t option, const char *text, double axis[3]
 
 static enum lxg_status set_format(struct cli_request *request, const char *value, struct lxg_error *error) {
   const bool json = strcmp(value, "json") == 0;
-  if (!json && strcmp(value, "yaml") != 0) {
+  const bool text = strcmp(value, "text") == 0;
+  if (!json && !text && strcmp(value, "yaml") != 0) {
     return bad_value(CLI_FORMAT, value, error);
   }
   request->format = json ? LXG_DOCUMENT_JSON : LXG_DOCUMENT_YAML;
+  request->aligned = text;
   return LXG_OK;
 }
 
@@ -134,6 +136,12 @@ static enum lxg_status apply(struct cli_request *request, size_t option, const c
   case CLI_VELOCITIES:
     request->velocities = value;
     break;
+  case CLI_PLOTS:
+    request->plots = value;
+    break;
+  case CLI_HTML:
+    request->html = value;
+    break;
   case CLI_BRANCH:
     return set_branch(request, value, error);
   case CLI_THREADS:
@@ -143,6 +151,9 @@ static enum lxg_status apply(struct cli_request *request, size_t option, const c
   case CLI_SEED:
     status = read_integer(option, value, 0, INT64_MAX, &request->run.seed, error);
     request->run.seeded = true;
+    break;
+  case CLI_FOR:
+    request->reader = value;
     break;
   case CLI_POINTS:
     request->run.opacity.points = value;
@@ -248,9 +259,13 @@ static enum lxg_status take_operands(struct cli_request *request, int count, cha
   if (request->command == NULL) {
     return unknown_command(operand[0], count > 1 ? operand[1] : NULL, error);
   }
+  if (request->command->needs == NULL && count > words) {
+    return lxg_error_set(error, LXG_USAGE, "operand-extra", "%s: `%s` takes no case", operand[words],
+                         request->command->name);
+  }
   const bool file = (request->command->options & CLI_TAKES_FILE) != 0;
   if (count == words) {
-    return request->help || request->version
+    return request->help || request->version || request->command->needs == NULL
                ? LXG_OK
                : lxg_error_set(error, LXG_USAGE, file ? "file-missing" : "case-missing",
                                file ? "%s: the file is missing"
@@ -279,8 +294,8 @@ static enum lxg_status check(const struct cli_request *request, unsigned long lo
                            cli_option_row(i)->name, request->command->name);
     }
   }
-  const char *const places[] = {request->output,   request->epochs, request->structure,
-                                request->profiles, request->shell,  request->velocities};
+  const char *const places[] = {request->output, request->epochs,     request->structure, request->profiles,
+                                request->shell,  request->velocities, request->html};
   const size_t count = sizeof places / sizeof places[0];
   for (size_t i = 0; i < count; i++) {
     for (size_t j = i + 1; j < count; j++) {

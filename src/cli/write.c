@@ -9,18 +9,30 @@
 #include "luxgale/text.h"
 
 #include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
+#include <unistd.h>
 
 static bool has_suffix(const char *path, const char *suffix) {
   const size_t length = strlen(path), tail = strlen(suffix);
   return length >= tail && strcmp(path + length - tail, suffix) == 0;
 }
 
+/* Opens and closes a colour on standard error: only on a terminal, and not with NO_COLOR. */
+static const char *colour(const char *sequence) {
+  const char *const off = getenv("NO_COLOR");
+  const char *const terminal = getenv("TERM");
+  const bool wanted = isatty(STDERR_FILENO) && (off == NULL || off[0] == '\0') && terminal != NULL &&
+                      strcmp(terminal, "dumb") != 0;
+  return wanted ? sequence : "";
+}
+
 void cli_complain(const struct lxg_error *error) {
   const char *text = error->count > 0 ? error->line[0] : lxg_strerror(error->status);
   const bool placed = strstr(text, ": error: ") != NULL; /* FILE:LINE:COL: error: ... */
-  fprintf(stderr, "luxgale: %s%s%s%s%s\n", placed ? "" : "error: ", text, error->code[0] != '\0' ? " [" : "",
-          error->code, error->code[0] != '\0' ? "]" : "");
+  fprintf(stderr, "luxgale: %s%s%s%s%s%s%s\n", colour("\033[1;31m"),
+          placed ? "" : "error: ", colour("\033[0m"), text, error->code[0] != '\0' ? " [" : "", error->code,
+          error->code[0] != '\0' ? "]" : "");
   for (size_t i = 1; i < error->count; i++) {
     fprintf(stderr, "luxgale:   while %s\n", error->line[i]);
   }
@@ -55,6 +67,12 @@ static enum lxg_status write_report(const struct cli_request *request, const str
   const char *place = folder ? "-" : request->output;
   const bool json = request->format == LXG_DOCUMENT_JSON ||
                     (request->format == LXG_DOCUMENT_AUTO && has_suffix(place, ".json"));
+  const bool people = request->aligned || (request->format == LXG_DOCUMENT_AUTO && strcmp(place, "-") == 0 &&
+                                           isatty(STDOUT_FILENO));
+  if (people) {
+    cli_aligned(&bytes, root);
+    return put(request, place, &bytes, LXG_OK, error);
+  }
   const enum lxg_status status = json ? lxg_document_write_json(root, &bytes, error)
                                       : lxg_document_write_yaml(root, false, &bytes, error);
   return put(request, place, &bytes, status, error);
@@ -63,14 +81,14 @@ static enum lxg_status write_report(const struct cli_request *request, const str
 static void tell_warnings(struct lxg_document *report) {
   struct lxg_node *list = report != NULL ? lxg_node_find(lxg_document_root(report), "warnings") : NULL;
   for (struct lxg_node *warning = lxg_node_first(list); warning != NULL; warning = lxg_node_next(warning)) {
-    fprintf(stderr, "luxgale: warning: %s [%s]\n", lxg_node_text(lxg_node_find(warning, "message")),
-            lxg_node_text(lxg_node_find(warning, "code")));
+    fprintf(stderr, "luxgale: %swarning:%s %s [%s]\n", colour("\033[1;33m"), colour("\033[0m"),
+            lxg_node_text(lxg_node_find(warning, "message")), lxg_node_text(lxg_node_find(warning, "code")));
   }
 }
 
-enum lxg_status cli_write(const struct cli_request *request, struct lxg_results *results,
-                          struct lxg_error *error) {
-  enum lxg_status status = LXG_OK;
+enum lxg_status cli_write(const struct cli_request *request, const struct lxg_case *input,
+                          struct lxg_results *results, struct lxg_error *error) {
+  enum lxg_status status = cli_pictures(request, input, results, error);
   const struct {
     const char *path;
     const struct lxg_table *table;

@@ -17,6 +17,8 @@ void lxg_results_free(struct lxg_results *results) {
     lxg_table_destroy(results->profiles);
     lxg_table_destroy(results->shell);
     lxg_table_destroy(results->velocities);
+    lxg_table_destroy(results->family);
+    lxg_table_destroy(results->map);
     *results = (struct lxg_results){0};
   }
 }
@@ -75,6 +77,12 @@ enum lxg_status lxg_run_require_history(const struct lxg_case *input, const char
         lxg_document_name(input->document), lxg_held_name(driven));
   }
   return status;
+}
+
+void lxg_run_stage(const struct lxg_run_options *options, const char *doing) {
+  if (options->stage != NULL) {
+    options->stage(options->context, doing);
+  }
 }
 
 struct lxg_wind_model lxg_run_model(const struct lxg_case *input) {

@@ -40,6 +40,7 @@ enum lxg_status lxg_run_decline(const struct lxg_case *input, const struct lxg_r
   struct lxg_decline decline = {0};
   enum lxg_status status = lxg_run_begin(input, "decline", results, error);
   if (status == LXG_OK) {
+    lxg_run_stage(options, "following the eruption");
     status = compute(input, &decline, error);
   }
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
@@ -57,7 +58,7 @@ enum lxg_status lxg_run_decline(const struct lxg_case *input, const struct lxg_r
                     lxg_decline_end_text(decline.end));
       lxg_run_unanswered(results, &why);
     }
-    if (options->epochs) {
+    if (options->epochs || options->pictures) {
       status = lxg_report_decline_table(&decline, input->l_edd, &results->epochs, error);
     }
   }

@@ -19,12 +19,13 @@ enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_ru
     status = lxg_wind_solver_create(&model, NULL, &solver, error);
   }
   if (status == LXG_OK) {
+    lxg_run_stage(options, "tracing the family of winds");
     status = lxg_run_trace(input, solver, 0.0, &family, error);
   }
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_OK) {
     lxg_report_family(root, &family);
-    if (options->epochs) {
+    if (options->epochs || options->pictures) {
       status = lxg_report_family_table(&family, &results->epochs, error);
     }
   } else if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {

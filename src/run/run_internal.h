@@ -21,6 +21,9 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error);
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error);
 
+/* Tells the caller, if it wants to know, what begins now ("tracing the family of winds"). */
+void lxg_run_stage(const struct lxg_run_options *options, const char *doing);
+
 /* The wind phase of the case's eruption as a history of photospheric luminosity (to be destroyed), and limits of the family of
  * winds that just hold it. Errors of lxg_decline_compute; LXG_NO_SOLUTION "decline-no-wind". */
 enum lxg_status lxg_run_decline_history(const struct lxg_case *input, struct lxg_history **history,

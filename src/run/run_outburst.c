@@ -105,6 +105,7 @@ static enum lxg_status compute(struct lxg_case *input, const struct lxg_run_opti
   if (input->history == NULL) {
     return compute_observed(input, &ejecting, outburst, error);
   }
+  lxg_run_stage(options, "tracing the family of winds");
   const enum lxg_status status = lxg_run_winds(input, options->branch, &outburst->winds, error);
   if (status != LXG_OK) {
     return status;
@@ -113,6 +114,7 @@ static enum lxg_status compute(struct lxg_case *input, const struct lxg_run_opti
   ejecting.blend = outburst->winds.blend;
   ejecting.parameter = input->reduction;
   ejecting.above = outburst->winds.two ? &outburst->winds.above : NULL;
+  lxg_run_stage(options, "following the history");
   return lxg_ejecta_compute(&outburst->winds.family, input->history, input->star.gm / input->star.radius,
                             &ejecting, &outburst->ejecta, error);
 }
@@ -134,7 +136,7 @@ static struct lxg_report_handover handover_of(const struct lxg_case *input, cons
 static enum lxg_status tabulate(const struct lxg_case *input, const struct lxg_run_options *options,
                                 const struct outburst *outburst, struct lxg_results *results,
                                 struct lxg_error *error) {
-  if (!options->epochs) {
+  if (!options->epochs && !options->pictures) {
     return LXG_OK;
   }
   const struct lxg_wind_model model = lxg_run_model(input);
@@ -145,6 +147,9 @@ static enum lxg_status tabulate(const struct lxg_case *input, const struct lxg_r
   }
   if (status == LXG_OK && input->observed != NULL) {
     status = lxg_report_observed_columns(input->observed, course, results->epochs, error);
+  }
+  if (status == LXG_OK && options->pictures && outburst->winds.family.count > 0) {
+    status = lxg_report_family_table(&outburst->winds.family, &results->family, error);
   }
   return status;
 }

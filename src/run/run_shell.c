@@ -32,10 +32,10 @@ enum lxg_status lxg_run_shell(const struct lxg_case *input, const struct lxg_run
   }
   const double start = history->time[0], end = history->time[history->count - 1];
   enum lxg_status status = lxg_report_shell(lxg_document_root(results->report), speeds, start, end, error);
-  if (status == LXG_OK && options->shell) {
+  if (status == LXG_OK && (options->shell || options->pictures)) {
     status = lxg_report_shell_table(speeds, start, end, &results->shell, error);
   }
-  if (status == LXG_OK && options->velocities) {
+  if (status == LXG_OK && (options->velocities || options->pictures)) {
     status = lxg_report_velocity_table(speeds, end, &results->velocities, error);
   }
   return status;

@@ -65,13 +65,17 @@ static void report_branches(struct lxg_node *section, const struct branches *bra
   }
 }
 
-static enum lxg_status add_structure(const struct lxg_case *input, struct lxg_wind_solver *solver,
-                                     struct lxg_results *results, struct lxg_error *error) {
+static enum lxg_status add_structure(const struct lxg_case *input, const struct lxg_run_options *options,
+                                     struct lxg_wind_solver *solver, struct lxg_results *results,
+                                     struct lxg_error *error) {
   struct lxg_wind_row *rows = NULL;
   size_t count = 0, critical = 0, photosphere = 0;
   enum lxg_status status = lxg_wind_structure(solver, &rows, &count, &critical, &photosphere, error);
   if (status == LXG_OK) {
     status = lxg_report_structure_table(rows, count, input->opacity, &results->structure, error);
+  }
+  if (status == LXG_OK && options->pictures) {
+    status = lxg_report_opacity_map(input->opacity, rows, photosphere + 1, &results->map, error);
   }
   lxg_free(rows);
   return status;
@@ -90,6 +94,7 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
     status = lxg_wind_solver_create(&model, NULL, &solver, error);
   }
   if (status == LXG_OK) {
+    lxg_run_stage(options, "searching the winds with these values");
     status = search(input, options, solver, &branches, error);
   }
   if (status == LXG_NO_SOLUTION || status == LXG_NOT_CONVERGED) {
@@ -110,8 +115,8 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
     }
     status = status == LXG_OK ? lxg_document_status(results->report, error) : status;
   }
-  if (status == LXG_OK && results->answered && options->structure) {
-    status = add_structure(input, solver, results, error);
+  if (status == LXG_OK && results->answered && (options->structure || options->pictures)) {
+    status = add_structure(input, options, solver, results, error);
   }
   lxg_wind_solver_destroy(solver);
   return status;
