@@ -115,4 +115,6 @@ docs: $(BUILD)/luxgale
 clean:
 	rm -rf $(BUILD) build-clang build-sanitize demo-output
 
+include tests/reliability/reliability.mk
+
 -include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d) $(PROGRAMS:=.d)
