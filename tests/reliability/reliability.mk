@@ -34,3 +34,19 @@ $(BUILD)/fuzz-$(1): $(call fuzz_source,$(1)) $(REL)/fuzz/fuzz.h $(LIB)
 	  -I$(REL)/fuzz $(fuzz_define_$(1)) $$(PKG_CFLAGS) -o $$@ $$< $(LIB) $$(PKG_LIBS) -lm -pthread
 endef
 $(foreach t,$(FUZZ_TARGETS),$(eval $(call FUZZ_RULE,$(t))))
+
+# The program with faults: the command line's main under another name.
+$(BUILD)/$(REL)/luxgale_main.o: src/cli/main.c
+	@mkdir -p $(@D)
+	$(CC) $(CFLAGS_) $(CFLAGS) $(PKG_CFLAGS) -Wno-missing-prototypes -Dmain=luxgale_main -MMD -MP -c -o $@ $<
+CLI_PARTS = $(BUILD)/$(REL)/luxgale_main.o $(filter-out %/main.o,$(CLI_OBJ)) $(LIB)
+FAULT_WARN := -Wno-missing-prototypes
+
+$(BUILD)/faults: $(REL)/faults.c $(CLI_PARTS)
+	$(CC) $(CFLAGS_) $(FAULT_WARN) $(CFLAGS) $(PKG_CFLAGS) -o $@ $^ $(PKG_LIBS) -lm
+WRAPPED := malloc calloc realloc free
+$(BUILD)/faults-wrap: $(REL)/faults.c $(CLI_PARTS)
+	$(CC) $(CFLAGS_) $(FAULT_WARN) $(CFLAGS) -DLXG_WRAP $(WRAPPED:%=-Wl,--wrap=%) $(PKG_CFLAGS) -o $@ $^ $(PKG_LIBS) -lm
+
+$(BUILD)/luxgale-trap: $(REL)/luxgale_trap.c $(CLI_PARTS)
+	$(CC) $(CFLAGS_) $(CFLAGS) -o $@ $^ $(PKG_LIBS) -lm
