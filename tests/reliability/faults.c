@@ -35,8 +35,19 @@ int luxgale_main(int argc, char **argv);
 
 enum { MOST_OUTPUTS = 4, MOST_BYTES = 1 << 21, CHILD_SECONDS = 60, LEAKED = 99, NOT_HIT = 98 };
 enum job { MEMORY, IO, KILL };
-enum fault { FAIL_ONCE, FAIL_ON, FAIL_EIO, FAIL_ENOSPC, FAIL_EINTR, FAIL_SHORT, KILL_BEFORE, KILL_AFTER, FAULTS };
-static const char *const fault_name[] = {"once", "from then on", "EIO", "ENOSPC", "EINTR", "short", "before", "after"};
+enum fault {
+  FAIL_ONCE,
+  FAIL_ON,
+  FAIL_EIO,
+  FAIL_ENOSPC,
+  FAIL_EINTR,
+  FAIL_SHORT,
+  KILL_BEFORE,
+  KILL_AFTER,
+  FAULTS
+};
+static const char *const fault_name[] = {"once",  "from then on", "EIO",    "ENOSPC",
+                                         "EINTR", "short",        "before", "after"};
 static const char old_text[] = "the old output\n";
 
 /* One output file. */
@@ -52,17 +63,17 @@ static struct {
   char **argv;
   size_t outputs;
   struct output output[MOST_OUTPUTS];
-  int clean_status;     /* exit status without fault */
-  long clean_live;      /* blocks alive at the end without fault */
-  bool armed;           /* calls are counted and fork */
-  bool child;           /* this process has a fault of its own */
-  bool writing;         /* the first output is being written */
-  enum fault fault;     /* of the child */
-  long countdown;       /* calls until the child's fault; 0: never again */
-  bool hit;             /* it came */
-  long live;            /* blocks alive */
-  int messages;         /* where children complain */
-  const char *call;     /* name of the current call */
+  int clean_status; /* exit status without fault */
+  long clean_live;  /* blocks alive at the end without fault */
+  bool armed;       /* calls are counted and fork */
+  bool child;       /* this process has a fault of its own */
+  bool writing;     /* the first output is being written */
+  enum fault fault; /* of the child */
+  long countdown;   /* calls until the child's fault; 0: never again */
+  bool hit;         /* it came */
+  long live;        /* blocks alive */
+  int messages;     /* where children complain */
+  const char *call; /* name of the current call */
   long points, children, handled, refused, violations;
 } all;
 
@@ -80,7 +91,8 @@ static void violation(const char *what, int value) {
 
 static void put_old(void) {
   for (size_t i = 0; i < all.outputs; i++) {
-    const int file = (int)syscall(SYS_openat, AT_FDCWD, all.output[i].path, O_WRONLY | O_CREAT | O_TRUNC, 0644);
+    const int file =
+        (int)syscall(SYS_openat, AT_FDCWD, all.output[i].path, O_WRONLY | O_CREAT | O_TRUNC, 0644);
     if (file < 0 || syscall(SYS_write, file, old_text, sizeof old_text - 1) != (long)sizeof old_text - 1) {
       _exit(97);
     }
@@ -98,7 +110,7 @@ static int damaged(int *news) {
     const long got = file < 0 ? -1 : syscall(SYS_read, file, bytes, sizeof bytes);
     syscall(SYS_close, file);
     const bool old = got == (long)sizeof old_text - 1 && memcmp(bytes, old_text, (size_t)got) == 0;
-    const bool new = got == (long)all.output[i].size && memcmp(bytes, all.output[i].bytes, (size_t)got) == 0;
+    const bool new = got == (long)all.output[i].size &&memcmp(bytes, all.output[i].bytes, (size_t)got) == 0;
     *news += new;
     bad += !old && !new;
   }
@@ -224,7 +236,8 @@ static bool suits(enum fault fault, bool is_write) {
   case MEMORY:
     return fault == FAIL_ONCE || fault == FAIL_ON;
   case IO:
-    return fault == FAIL_EIO || fault == FAIL_ENOSPC || fault == FAIL_EINTR || (fault == FAIL_SHORT && is_write);
+    return fault == FAIL_EIO || fault == FAIL_ENOSPC || fault == FAIL_EINTR ||
+           (fault == FAIL_SHORT && is_write);
   case KILL:
     return fault == KILL_BEFORE || fault == KILL_AFTER;
   }
@@ -451,7 +464,8 @@ static int command(void) {
 static bool keep_new(struct output *output) {
   const int file = (int)syscall(SYS_openat, AT_FDCWD, output->path, O_RDONLY, 0);
   output->bytes = REAL(malloc)(MOST_BYTES);
-  const long got = file < 0 || output->bytes == NULL ? -1 : syscall(SYS_read, file, output->bytes, MOST_BYTES);
+  const long got =
+      file < 0 || output->bytes == NULL ? -1 : syscall(SYS_read, file, output->bytes, MOST_BYTES);
   syscall(SYS_close, file);
   output->size = got > 0 ? (size_t)got : 0;
   return got > 0 && got < MOST_BYTES;
@@ -472,7 +486,8 @@ int main(int argc, char **argv) {
   if (strcmp(argv[1], "plain") == 0) {
     return command();
   }
-  for (char *path = strtok(outputs, ","); path != NULL && all.outputs < MOST_OUTPUTS; path = strtok(NULL, ",")) {
+  for (char *path = strtok(outputs, ","); path != NULL && all.outputs < MOST_OUTPUTS;
+       path = strtok(NULL, ",")) {
     all.output[all.outputs++].path = path;
   }
   all.messages = memfd_create("messages", 0);

@@ -50,3 +50,6 @@ $(BUILD)/faults-wrap: $(REL)/faults.c $(CLI_PARTS)
 
 $(BUILD)/luxgale-trap: $(REL)/luxgale_trap.c $(CLI_PARTS)
 	$(CC) $(CFLAGS_) $(CFLAGS) -o $@ $^ $(PKG_LIBS) -lm
+
+$(BUILD)/stress: $(REL)/stress.c $(LIB)
+	$(CC) $(CFLAGS_) $(CFLAGS) $(PKG_CFLAGS) -o $@ $^ $(PKG_LIBS) -lm

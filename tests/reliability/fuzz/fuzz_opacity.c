@@ -7,7 +7,8 @@
 
 int LLVMFuzzerTestOneInput(const uint8_t *data, size_t size) {
   const struct lxg_composition composition = {0.7, 0.28, 0.0, 0.02};
-  const struct lxg_opacity_import_options given = {.composition = &composition, .source = "s", .date = "2001"};
+  const struct lxg_opacity_import_options given = {
+      .composition = &composition, .source = "s", .date = "2001"};
   for (int i = 0; i < 2; i++) {
     struct lxg_opacity_set set = {0};
     struct lxg_error error = {0};

@@ -12,8 +12,9 @@ static size_t take(const struct lxg_table *table) {
     double *values = NULL;
     const struct lxg_column *column = &table->column[i];
     lxg_error_clear(&error);
-    const enum lxg_status status = lxg_table_cgs(
-        table, column->name, (enum lxg_dimension)(i % LXG_DIMENSION_COUNT), NULL, NULL, i % 2, &values, &error);
+    const enum lxg_status status =
+        lxg_table_cgs(table, column->name, (enum lxg_dimension)(i % LXG_DIMENSION_COUNT), NULL, NULL, i % 2,
+                      &values, &error);
     fuzz_explained(status, &error);
     free(values);
     for (size_t row = 0; row < table->rows && row < 3 && column->type == LXG_COLUMN_TEXT; row++) {
