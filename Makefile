@@ -5,7 +5,7 @@ VERSION   := 0.1.0
 BUILD     ?= build
 CC        ?= gcc
 OPT       ?= -O2
-PKGS      := gsl yaml-0.1 libcjson
+PKGS      := gsl yaml-0.1
 TEST_PKGS := check
 WARN      := -Wall -Wextra -Wshadow -Wconversion -Wstrict-prototypes -Wmissing-prototypes -Werror
 CFLAGS_   := -std=c11 -D_POSIX_C_SOURCE=200809L $(OPT) -g -fPIC -fvisibility=hidden -ffp-contract=off $(WARN) \
@@ -82,7 +82,8 @@ check-cli: $(BUILD)/luxgale
 	@tests/cli/run $(BUILD)/luxgale
 
 check-python: $(BUILD)/luxgale
-	@for t in $(sort $(wildcard tests/python/check_*.py)); do echo "$$t"; $(PYTHON) $$t $(BUILD)/luxgale || exit 1; done
+	@$(PYTHON) tests/python/check_outputs.py $(BUILD)/luxgale
+	@$(PYTHON) tests/python/readme.py $(BUILD)/luxgale
 
 check-clang:
 	@$(MAKE) --no-print-directory -s -j$(JOBS) CC=clang OPT=-O0 BUILD=build-clang all tests
@@ -90,7 +91,7 @@ check-clang:
 check-sanitizers:
 	@$(MAKE) --no-print-directory -s -j$(JOBS) OPT='-O1 -fsanitize=address,undefined -fno-sanitize-recover=undefined' \
 	  BUILD=build-sanitize all tests
-	CK_FORK=no build-sanitize/run-tests $(QUICK)
+	@for suite in $(QUICK); do CK_FORK=no build-sanitize/run-tests $$suite || exit 1; done
 	@tests/cli/run build-sanitize/luxgale wrong-input options
 
 check-units: tests

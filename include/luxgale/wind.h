@@ -129,6 +129,9 @@ struct lxg_wind {
   int newton_steps;             /* Newton steps of the whole search */
 };
 
+/* A result without a wind: all numbers NaN, the reason as given. */
+void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason);
+
 /* Tunable numbers of the solver. */
 struct lxg_wind_options {
   size_t stages;             /* collocation points an interval, 3..8 */

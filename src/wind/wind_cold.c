@@ -19,7 +19,16 @@ static const double usual_t = 5.6;           /* log10 of the critical temperatur
 static const double scan_accuracy = 1e-3;    /* of ln Mdot while scanning */
 static const double settle_accuracy = 1e-13; /* before the global solver takes over */
 static const double close_enough = 0.1; /* of the held quantity (logarithm, or L/L_Edd) before settling */
-enum { SCAN_POINTS = 128, EDGE_BISECTIONS = 5, NARROWINGS = 12, GUESS_INTERVALS = 32, QUICK_STEPS = 12 };
+static const double turning_most = 0.6; /* an extreme of the excess farther from zero is not looked into */
+static const double touching = 0.02;    /* an extreme this close to zero is tried */
+enum {
+  SCAN_POINTS = 128,
+  EDGE_BISECTIONS = 5,
+  NARROWINGS = 12,
+  GUESS_INTERVALS = 32,
+  QUICK_STEPS = 12,
+  TURNING_STEPS = 9
+};
 
 /* Approximate wind at one critical temperature. */
 struct candidate {
@@ -103,6 +112,50 @@ static void guess(const void *context, double x, double y[], double k[]) {
   k[1] *= length;
 }
 
+/* Change of the structure between two neighbouring points of a track, plus an even share of its length. */
+static double change(const struct wind_track *track, size_t i) {
+  const double length = fabs(track->ln_r[track->count - 1] - track->ln_r[0]);
+  return fabs(track->y[i + 1][0] - track->y[i][0]) + fabs(track->y[i + 1][1] - track->y[i][1]) +
+         fabs(track->ln_r[i + 1] - track->ln_r[i]) * 2.0 / length;
+}
+
+/* Nodes that cut a track into parts of equal change: shares of its length, 0 at the critical point. */
+static void even_nodes(const struct wind_track *track, double node[GUESS_INTERVALS + 1]) {
+  double total = 0.0, below = 0.0;
+  for (size_t i = 0; i + 1 < track->count; i++) {
+    total += change(track, i);
+  }
+  const double first = track->ln_r[0], length = track->ln_r[track->count - 1] - first;
+  size_t i = 0;
+  node[0] = 0.0;
+  for (size_t j = 1; j < GUESS_INTERVALS; j++) {
+    const double wanted = total * (double)j / GUESS_INTERVALS;
+    while (i + 2 < track->count && below + change(track, i) < wanted) {
+      below += change(track, i++);
+    }
+    const double share = fmin((wanted - below) / change(track, i), 1.0);
+    node[j] = (track->ln_r[i] + share * (track->ln_r[i + 1] - track->ln_r[i]) - first) / length;
+  }
+  node[GUESS_INTERVALS] = 1.0;
+}
+
+/* The mesh of a first guess; returns the number of intervals. */
+static size_t guess_nodes(const struct lxg_wind_solver *solver, double nodes[2 * GUESS_INTERVALS + 1]) {
+  double inner[GUESS_INTERVALS + 1], outer[GUESS_INTERVALS + 1];
+  size_t count = 0;
+  if (!solver->outer_only) {
+    even_nodes(&solver->inner, inner);
+    for (size_t j = 0; j < GUESS_INTERVALS; j++) {
+      nodes[count++] = 1.0 - inner[GUESS_INTERVALS - j];
+    }
+  }
+  even_nodes(&solver->outer, outer);
+  for (size_t j = 0; j <= GUESS_INTERVALS; j++) {
+    nodes[count++] = 1.0 + outer[j];
+  }
+  return count - 1;
+}
+
 /* Exact wind at (r_c, T_c), kept. */
 static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double ln_mdot) {
   double lambda;
@@ -111,10 +164,7 @@ static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, doub
   }
   const struct guess_map map = {solver, ln_rc, solver->outer.ln_r[solver->outer.count - 1]};
   double nodes[2 * GUESS_INTERVALS + 1];
-  const size_t intervals = (solver->outer_only ? 1 : 2) * GUESS_INTERVALS;
-  for (size_t i = 0; i <= intervals; i++) {
-    nodes[i] = (solver->outer_only ? 1.0 : 0.0) + (double)i / GUESS_INTERVALS;
-  }
+  const size_t intervals = guess_nodes(solver, nodes);
   const double p[WIND_P_COUNT] = {ln_rc, ln_mdot, lambda, map.ln_rph, 0.0};
   const enum lxg_status status = lxg_bvp_guess(solver->now, nodes, intervals, 2, guess, &map, p);
   if (status != LXG_OK) {
@@ -134,6 +184,9 @@ static struct candidate probe(struct lxg_wind_solver *solver, double ln_rc, doub
     found.excess = approximate(solver, row->kind, found.ln_mdot, lambda) - row->target;
   }
   found.valid = isfinite(found.excess);
+  solver->probed_below = solver->probed_below || found.excess < 0.0;
+  solver->probed_above = solver->probed_above || found.excess > 0.0;
+
   return found;
 }
 
@@ -180,12 +233,26 @@ static double between(const struct candidate *a, const struct candidate *b) {
   return a->ln_tc + fmin(fmax(share, 0.1), 0.9) * (b->ln_tc - a->ln_tc);
 }
 
-/* Narrows a sign change of the excess, then solves; the held row is reached by continuation. */
+/* Narrows a sign change of the excess, then solves; the held row is reached by continuation. A place where the global solver
+ * fails (next to a fold, say) is narrowed further before it is tried again. */
 static enum lxg_status solve_between(struct lxg_wind_solver *solver, double ln_rc, struct candidate a,
                                      struct candidate b, const struct wind_row *row) {
-  struct candidate best = fabs(a.excess) < fabs(b.excess) ? a : b;
-  for (int i = 0; i < NARROWINGS && fabs(best.excess) > close_enough; i++) {
-    const struct candidate middle = probe(solver, ln_rc, between(&a, &b), best.ln_mdot, row);
+  const struct wind_row pair[2] = {{.kind = LXG_HELD_LAUNCH_RADIUS, .target = ln_rc}, *row};
+  double wanted = close_enough;
+  enum lxg_status status = LXG_NOT_CONVERGED;
+  for (int i = 0; i < NARROWINGS; i++) {
+    const struct candidate *best = fabs(a.excess) < fabs(b.excess) ? &a : &b;
+    if (fabs(best->excess) <= wanted) {
+      status = settle(solver, ln_rc, best->ln_tc, best->ln_mdot);
+      if (status == LXG_OK) {
+        status = lxg_wind_walk(solver, pair);
+      }
+      if (status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY) {
+        return status;
+      }
+      wanted *= 0.25;
+    }
+    const struct candidate middle = probe(solver, ln_rc, between(&a, &b), best->ln_mdot, row);
     if (!middle.valid) {
       break;
     }
@@ -194,39 +261,39 @@ static enum lxg_status solve_between(struct lxg_wind_solver *solver, double ln_r
     } else {
       b = middle;
     }
-    best = fabs(a.excess) < fabs(b.excess) ? a : b;
-  }
-  enum lxg_status status = settle(solver, ln_rc, best.ln_tc, best.ln_mdot);
-  if (status == LXG_OK) {
-    const struct wind_row pair[2] = {{.kind = LXG_HELD_LAUNCH_RADIUS, .target = ln_rc}, *row};
-    status = lxg_wind_walk(solver, pair);
   }
   return status;
 }
 
-enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc) {
-  const struct wind_row row = {.kind = WIND_ROW_CRITICAL_TEMPERATURE, .target = usual_t * LXG_LN10};
-  struct candidate candidate[SCAN_POINTS];
-  const size_t count = scan(solver, ln_rc, &row, candidate);
-  enum lxg_status status = LXG_NO_SOLUTION;
-  for (size_t tries = 0; tries < count && status != LXG_OK; tries++) {
-    size_t best = SCAN_POINTS;
-    for (size_t i = 0; i < count; i++) {
-      if (candidate[i].valid &&
-          (best == SCAN_POINTS || fabs(candidate[i].excess) < fabs(candidate[best].excess))) {
-        best = i;
-      }
+/* Does the excess, of one sign at three neighbours and least in size at the middle one, change sign between them? Golden-section
+ * search for its extreme. On success two brackets a-peak and peak-b exist; `peak` is set. */
+static bool turning_point(struct lxg_wind_solver *solver, double ln_rc, const struct candidate *a,
+                          const struct candidate *middle, const struct candidate *b,
+                          const struct wind_row *row, struct candidate *peak) {
+  const double golden = 0.381966;
+  const double sign = middle->excess > 0.0 ? 1.0 : -1.0;
+  struct candidate left = *a, best = *middle, right = *b;
+  for (int i = 0; i < TURNING_STEPS; i++) {
+    const bool longer_left = best.ln_tc - left.ln_tc > right.ln_tc - best.ln_tc;
+    const double t = longer_left ? best.ln_tc - golden * (best.ln_tc - left.ln_tc)
+                                 : best.ln_tc + golden * (right.ln_tc - best.ln_tc);
+    const struct candidate now = probe(solver, ln_rc, t, best.ln_mdot, row);
+    if (!now.valid) {
+      return false;
     }
-    if (best == SCAN_POINTS) {
-      break;
+    if (now.excess * sign <= 0.0) {
+      *peak = now;
+      return true;
     }
-    candidate[best].valid = false;
-    status = settle(solver, ln_rc, candidate[best].ln_tc, candidate[best].ln_mdot);
-    if (status == LXG_BUG || status == LXG_MEMORY) {
-      break;
+    if (now.excess * sign < best.excess * sign) {
+      *(longer_left ? &right : &left) = best;
+      best = now;
+    } else {
+      *(longer_left ? &left : &right) = now;
     }
   }
-  return status;
+  *peak = best;
+  return fabs(best.excess) < touching; /* as good as reached, within the accuracy of a march */
 }
 
 /* The short way: from the usual temperature towards smaller excess until it changes sign. Says nothing when it fails. */
@@ -255,15 +322,17 @@ static enum lxg_status quick(struct lxg_wind_solver *solver, double ln_rc, const
   return LXG_NO_SOLUTION;
 }
 
-enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
-  if (quick(solver, ln_rc, row) == LXG_OK) {
-    return LXG_OK;
-  }
-  struct candidate candidate[SCAN_POINTS];
-  const size_t count = scan(solver, ln_rc, row, candidate);
+static bool settled(enum lxg_status status) {
+  return status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY;
+}
+
+/* Tries the brackets of a scan in the order of their rates. */
+static enum lxg_status solve_brackets(struct lxg_wind_solver *solver, double ln_rc,
+                                      const struct candidate candidate[], size_t count,
+                                      const struct wind_row *row) {
   bool tried[SCAN_POINTS] = {false};
   enum lxg_status status = LXG_NO_SOLUTION;
-  for (;;) { /* brackets in the order of their rates */
+  while (!settled(status)) {
     size_t best = SCAN_POINTS;
     for (size_t i = 0; i + 1 < count; i++) {
       if (!tried[i] && brackets(&candidate[i], &candidate[i + 1]) &&
@@ -272,12 +341,61 @@ enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, cons
       }
     }
     if (best == SCAN_POINTS) {
-      return status;
+      break;
     }
     tried[best] = true;
     status = solve_between(solver, ln_rc, candidate[best], candidate[best + 1], row);
-    if (status == LXG_OK || status == LXG_BUG || status == LXG_MEMORY) {
-      return status;
+  }
+  return status;
+}
+
+enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row) {
+  if (quick(solver, ln_rc, row) == LXG_OK) {
+    return LXG_OK;
+  }
+  struct candidate candidate[SCAN_POINTS];
+  const size_t count = scan(solver, ln_rc, row, candidate);
+  enum lxg_status status = solve_brackets(solver, ln_rc, candidate, count, row);
+  for (size_t i = 0; i + 2 < count && !settled(status); i++) {
+    const struct candidate *a = &candidate[i], *middle = a + 1, *b = a + 2;
+    struct candidate peak;
+    const bool least = a->valid && middle->valid && b->valid && fabs(middle->excess) < turning_most &&
+                       (a->excess > 0.0) == (middle->excess > 0.0) &&
+                       (b->excess > 0.0) == (middle->excess > 0.0) &&
+                       fabs(middle->excess) <= fabs(a->excess) && fabs(middle->excess) <= fabs(b->excess);
+    if (!least || !turning_point(solver, ln_rc, a, middle, b, row, &peak)) {
+      continue;
+    }
+    status = brackets(a, &peak) ? solve_between(solver, ln_rc, *a, peak, row) : LXG_NOT_CONVERGED;
+    if (!settled(status)) {
+      status = brackets(&peak, b) ? solve_between(solver, ln_rc, peak, *b, row)
+                                  : solve_between(solver, ln_rc, peak, peak, row);
     }
   }
+  return status;
+}
+
+enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc) {
+  const struct wind_row row = {.kind = WIND_ROW_CRITICAL_TEMPERATURE, .target = usual_t * LXG_LN10};
+  struct candidate candidate[SCAN_POINTS];
+  const size_t count = scan(solver, ln_rc, &row, candidate);
+  enum lxg_status status = LXG_NO_SOLUTION;
+  for (size_t tries = 0; tries < count && status != LXG_OK; tries++) {
+    size_t best = SCAN_POINTS;
+    for (size_t i = 0; i < count; i++) {
+      if (candidate[i].valid &&
+          (best == SCAN_POINTS || fabs(candidate[i].excess) < fabs(candidate[best].excess))) {
+        best = i;
+      }
+    }
+    if (best == SCAN_POINTS) {
+      break;
+    }
+    candidate[best].valid = false;
+    status = settle(solver, ln_rc, candidate[best].ln_tc, candidate[best].ln_mdot);
+    if (status == LXG_BUG || status == LXG_MEMORY) {
+      break;
+    }
+  }
+  return status;
 }

@@ -133,7 +133,8 @@ struct lxg_wind_solver {
   struct lxg_ivp *ivp;
   struct wind_track outer, inner, scratch;
   bool have;        /* `kept` holds a wind */
-  bool outer_only;  /* new winds are solved outside the critical point only */
+  bool outer_only; /* new winds are solved outside the critical point only */
+  bool probed_below, probed_above; /* scans since the search began met winds below and above the held value */
   int newton_steps; /* since the search began */
   double residual;  /* of the kept wind */
 };
@@ -161,9 +162,6 @@ enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc);
 
 /* Every number of the kept wind (wind_result.c). */
 enum lxg_status lxg_wind_result(const struct lxg_wind_solver *solver, struct lxg_wind *wind);
-
-/* A result without a wind: all numbers NaN. */
-void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason);
 
 /* dlnv/dlnr at the critical point (accelerating root); NaN if there is none. */
 double lxg_wind_critical_slope(const struct wind_local *local);

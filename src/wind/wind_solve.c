@@ -195,6 +195,21 @@ enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const
   return LXG_OK;
 }
 
+/* What a failed search has shown. A scan that met winds on one side of the held value only has shown that no wind reaches it; one
+ * that met none at all, that nowhere at the critical radii tried radiation and pressure balance gravity. */
+static enum lxg_wind_reason why_none(const struct lxg_wind_solver *solver, enum lxg_status status) {
+  if (status != LXG_NO_SOLUTION) {
+    return LXG_WIND_NOT_FOUND;
+  }
+  if (solver->have) {
+    return LXG_WIND_STAGNATES; /* the structure was solved; only the gas beyond it fell back */
+  }
+  if (!solver->probed_below && !solver->probed_above) {
+    return LXG_WIND_NO_CRITICAL_POINT;
+  }
+  return solver->probed_below && solver->probed_above ? LXG_WIND_NOT_FOUND : LXG_WIND_ABOVE_FOLD;
+}
+
 static enum lxg_status finish(struct lxg_wind_solver *solver, enum lxg_status status, struct lxg_wind *wind,
                               struct lxg_error *error) {
   if (status == LXG_OK) {
@@ -206,8 +221,8 @@ static enum lxg_status finish(struct lxg_wind_solver *solver, enum lxg_status st
   if (status == LXG_BUG || status == LXG_MEMORY) {
     return lxg_error_set(error, status, "wind-internal", "wind: %s", lxg_strerror(status));
   }
-  if (wind->reason == LXG_WIND_SOLVED) {
-    lxg_wind_none(wind, status == LXG_NO_SOLUTION ? LXG_WIND_STAGNATES : LXG_WIND_NOT_FOUND);
+  if (wind->reason == LXG_WIND_SOLVED || wind->reason == LXG_WIND_NOT_FOUND) {
+    lxg_wind_none(wind, why_none(solver, status));
   }
   return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(wind->reason), "%s",
                        lxg_wind_reason_text(wind->reason));
@@ -258,6 +273,7 @@ enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_
     return status;
   }
   solver->have = false;
+  solver->probed_below = solver->probed_above = false;
   solver->newton_steps = 0;
   const struct wind_row row = lxg_wind_row_of(solver, hold);
   return finish(solver, first_wind(solver, &row), wind, error);
@@ -271,6 +287,7 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
     return status;
   }
   solver->have = false;
+  solver->probed_below = solver->probed_above = false;
   solver->newton_steps = 0;
   const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
   const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS ? 0 : 1;

@@ -14,16 +14,18 @@
 #include "luxgale/constants.h"
 
 #include <math.h>
+#include <string.h>
 
 static const double start_offset = 1e-3;     /* first step off the critical point, in ln r */
 static const double start_reach = 14.0;      /* farthest march outward, in ln r */
 static const double start_first_step = 1e-2; /* in ln r */
 static const double start_coarse = 1e-3;     /* of ln Mdot, before the ends of the marches are compared */
+static const double start_close = 1e-3;      /* of ln T: two marches that still are one */
 static const double start_agreement = 0.15;  /* of the ends, in ln r */
 static const double start_rate_low = -34.0;  /* ln of the lowest rate tried, in units of L_Edd r_c/(G M) */
 static const double start_rate_high = 9.0;   /* ln of the highest */
 static const double start_rate_step = 0.7;   /* of the scan */
-enum { START_STEPS = 1500, START_BISECTIONS = 44 };
+enum { START_STEPS = 1500, START_BISECTIONS = 44, START_SEGMENTS = 12, INNER_STEPS = 2000 };
 
 /* Why an outward march ended. */
 enum march_end { MARCH_ON, MARCH_PLUNGED, MARCH_TRANSPARENT, MARCH_STALLED, MARCH_FAILED };
@@ -49,7 +51,16 @@ static enum lxg_status slope(const void *context, double ln_r, const double y[],
 }
 
 static void record(struct wind_track *track, double ln_r, const double y[], const double dydr[]) {
-  if (track != NULL && track->count < WIND_TRACK_POINTS) {
+  if (track != NULL &&
+      track->count == WIND_TRACK_POINTS) { /* full: every second point goes, the first and last stay */
+    for (size_t i = 1; i < WIND_TRACK_POINTS / 2; i++) {
+      track->ln_r[i] = track->ln_r[2 * i];
+      memcpy(track->y[i], track->y[2 * i], sizeof track->y[i]);
+      memcpy(track->dydr[i], track->dydr[2 * i], sizeof track->dydr[i]);
+    }
+    track->count = WIND_TRACK_POINTS / 2;
+  }
+  if (track != NULL) {
     track->ln_r[track->count] = ln_r;
     for (int i = 0; i < 2; i++) {
       track->y[track->count][i] = y[i];
@@ -168,7 +179,7 @@ static enum march_end march_from(struct march *march, struct lxg_ivp *ivp, doubl
   int stopped = MARCH_ON;
   const enum lxg_status status =
       lxg_ivp_march(ivp, slope, march, direction > 0 ? watch_outward : watch_inward, march, &ln_r,
-                    march->ln_end, start_first_step, START_STEPS, y, &stopped);
+                    march->ln_end, start_first_step, direction > 0 ? START_STEPS : INNER_STEPS, y, &stopped);
   march->ended = ln_r;
   return status == LXG_OK ? (enum march_end)stopped : MARCH_FAILED;
 }
@@ -209,6 +220,82 @@ static bool bracket(struct march *march, struct lxg_ivp *ivp, double ln_rc, doub
   return false;
 }
 
+/* One march onward from point `from` of a track with its temperature raised by `shift` in the logarithm; recorded behind that
+ * point if `track` of the march is set. */
+static enum march_end march_on(struct march *march, struct lxg_ivp *ivp, const struct wind_track *base,
+                               size_t from, double shift) {
+  double ln_r = base->ln_r[from];
+  double y[2] = {base->y[from][0], base->y[from][1] + shift};
+  if (march->track != NULL) {
+    march->track->count = 0;
+  }
+  int stopped = MARCH_ON;
+  const enum lxg_status status = lxg_ivp_march(ivp, slope, march, watch_outward, march, &ln_r, march->ln_end,
+                                               start_first_step, START_STEPS, y, &stopped);
+  march->ended = ln_r;
+  return status == LXG_OK ? (enum march_end)stopped : MARCH_FAILED;
+}
+
+/* Where a track that brackets the separatrix still agrees closely with the other one. */
+static size_t last_agreement(const struct wind_track *track, const struct wind_track *other) {
+  size_t last = 0;
+  for (size_t i = 1; i < track->count && other->count > 1; i++) {
+    double y[2], dydr[2];
+    lxg_wind_track_at(other, track->ln_r[i], y, dydr);
+    if (track->ln_r[i] > other->ln_r[other->count - 1] || fabs(y[1] - track->y[i][1]) > start_close) {
+      break;
+    }
+    last = i;
+  }
+  return last;
+}
+
+/* The rate is known to the last bit and the marches still part before the photosphere: from the last point where they agree the
+ * temperature is bisected in the same way, and the track goes on. One further segment; false if that leads nowhere. */
+static bool extend(struct march *march, struct lxg_ivp *ivp, struct wind_track *track,
+                   struct wind_track *scratch) {
+  const size_t from = last_agreement(track, scratch);
+  march->track = NULL;
+  double low = 0.0, high = 0.0; /* shifts that plunge and that hang on */
+  for (double reach = 1e-7; reach < 0.2 && !(low < 0.0 && high > 0.0); reach *= 10.0) {
+    low = march_on(march, ivp, track, from, -reach) == MARCH_PLUNGED ? -reach : 0.0;
+    high = march_on(march, ivp, track, from, reach) != MARCH_PLUNGED ? reach : 0.0;
+  }
+  if (!(low < 0.0 && high > 0.0)) {
+    return false;
+  }
+  for (int i = 0; i < START_BISECTIONS; i++) {
+    const double middle = 0.5 * (low + high);
+    if (march_on(march, ivp, track, from, middle) == MARCH_PLUNGED) {
+      low = middle;
+    } else {
+      high = middle;
+    }
+  }
+  struct wind_track *piece = scratch;
+  march->track = piece;
+  march_on(march, ivp, track, from, low);
+  const double end_low = march->ended;
+  track->count = from; /* the piece starts with the point itself */
+  for (size_t i = 0; i < piece->count && track->count < WIND_TRACK_POINTS; i++) {
+    record(track, piece->ln_r[i], piece->y[i], piece->dydr[i]);
+  }
+  march->track = NULL;
+  struct wind_track *ahead = scratch;
+  march->track = ahead;
+  const struct wind_track start = {
+      .count = 1, .ln_r = {track->ln_r[from]}, .y = {{track->y[from][0], track->y[from][1]}}};
+  march_on(march, ivp, &start, 0, high - low);
+  return fabs(march->ended - end_low) > start_agreement && track->count > from + 2;
+}
+
+static void extend_all(struct march *march, struct lxg_ivp *ivp, struct wind_track *track,
+                       struct wind_track *scratch) {
+  for (int i = 0; i < START_SEGMENTS && extend(march, ivp, track, scratch); i++) {
+  }
+  keep_common(track, scratch);
+}
+
 enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, struct lxg_ivp *ivp,
                                      double ln_rc, double ln_tc, double accuracy, struct wind_track *track,
                                      struct wind_track *scratch, double *ln_mdot, double *lambda) {
@@ -241,9 +328,13 @@ enum lxg_status lxg_wind_start_outer(const struct wind_constants *constants, str
   march.track = track;
   march.ln_mdot = high;
   march_from(&march, ivp, ln_rc, ln_tc, 1);
-  keep_common(track, scratch);
   *ln_mdot = march.ln_mdot;
   *lambda = march.lambda;
+  if (accuracy < start_coarse && fabs(end_high - end_low) >= start_agreement) {
+    extend_all(&march, ivp, track, scratch);
+  } else {
+    keep_common(track, scratch);
+  }
   return track->count >= 2 ? LXG_OK : LXG_NO_SOLUTION;
 }
 
