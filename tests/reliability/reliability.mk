@@ -53,3 +53,19 @@ $(BUILD)/luxgale-trap: $(REL)/luxgale_trap.c $(CLI_PARTS)
 
 $(BUILD)/stress: $(REL)/stress.c $(LIB)
 	$(CC) $(CFLAGS_) $(CFLAGS) $(PKG_CFLAGS) -o $@ $^ $(PKG_LIBS) -lm
+
+reliability-programs: all $(BUILD)/faults $(BUILD)/luxgale-trap $(BUILD)/stress
+
+# One row a test: figure, bar, PASS or FAIL. The quick rows are part of `make check`.
+scorecard-quick: reliability-programs
+	@$(PYTHON) $(REL)/scorecard.py --quick
+
+scorecard: reliability-programs
+	@.ci/need check
+	@$(PYTHON) $(REL)/scorecard.py
+
+coverage:
+	@$(PYTHON) $(REL)/coverage.py
+
+mutation:
+	@$(PYTHON) $(REL)/mutation.py
