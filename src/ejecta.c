@@ -21,6 +21,7 @@ enum { RATE_MASS, RATE_KINETIC, RATE_MOMENTUM, RATE_LIFTING, RATE_RADIATED, RATE
 struct engine {
   const struct lxg_family *family;
   const struct lxg_family_index *index;
+  const struct lxg_family_index *above; /* of the second family, or NULL */
   const struct lxg_history *history;
   const struct lxg_ejecta_options *options;
   enum lxg_family_quantity key;
@@ -34,6 +35,7 @@ struct engine {
 struct moment {
   double time, luminosity, time_scale;
   size_t members;
+  bool porous; /* beyond the limit of the first family */
   struct lxg_family_place place;
   double rate[RATES];
 };
@@ -49,7 +51,9 @@ static struct moment moment_at(const struct engine *engine, double time) {
   lxg_history_at(engine->history, LXG_HISTORY_VALUE, time, &value);
   m.luminosity = value.luminosity;
   m.time_scale = value.time_scale;
-  m.members = lxg_family_index_branch(engine->index, value.luminosity, engine->options->branch, &m.place);
+  m.porous = engine->above != NULL && value.luminosity > engine->options->limit;
+  m.members = lxg_family_index_branch(m.porous ? engine->above : engine->index, value.luminosity,
+                                      engine->options->branch, &m.place);
   m.rate[RATE_RADIATED] = value.luminosity;
   if (m.members > 0) {
     const double rate = m.place.value[LXG_FAMILY_MASS_LOSS_RATE],
@@ -106,44 +110,57 @@ static void integrate(struct engine *engine, const struct moment *a, const struc
   integrate(engine, m, &right, b, depth - 1);
 }
 
-static bool windy(const struct moment *m) {
-  return m->members > 0;
+/* What kind of wind there is: 0 none, 1 of the first family, 2 of the second, 3 none of the second. */
+static int regime(const struct moment *m) {
+  return m->members > 0 ? 1 + m->porous : 3 * m->porous;
 }
 
-/* Integrates from a to b, cutting at edges between wind and no wind. The middle is looked at, so that a wind between two
- * windless epochs is not missed unless it is shorter than half their distance. */
+/* Narrows an edge between two regimes in time; `high` is the first moment of the other side. */
+static void find_edge(const struct engine *engine, const struct moment *a, const struct moment *b,
+                      struct moment *low, struct moment *high) {
+  *low = *a;
+  *high = *b;
+  while (high->time - low->time > edge_share * (b->time - a->time)) {
+    const struct moment middle = moment_at(engine, 0.5 * (low->time + high->time));
+    if (middle.time <= low->time || middle.time >= high->time) {
+      break;
+    }
+    if (regime(&middle) == regime(a)) {
+      *low = middle;
+    } else {
+      *high = middle;
+    }
+  }
+}
+
+/* Integrates from a to b, cutting at edges between regimes. The middle is looked at, so that a wind between two windless epochs
+ * is not missed unless it is shorter than half their distance. */
 static void cover(struct engine *engine, const struct moment *a, const struct moment *b, int depth) {
   const struct moment m = moment_at(engine, 0.5 * (a->time + b->time));
-  if (windy(a) == windy(&m) && windy(&m) == windy(b)) {
+  if (regime(a) == regime(&m) && regime(&m) == regime(b)) {
     integrate(engine, a, &m, b, engine->options->depth);
     return;
   }
-  if (windy(a) == windy(b)) {
+  if (regime(a) == regime(b)) {
     if (depth > 0) {
       cover(engine, a, &m, depth - 1);
       cover(engine, &m, b, depth - 1);
     }
     return;
   }
-  struct moment low = *a, high = *b;
-  while (high.time - low.time > edge_share * (b->time - a->time)) {
-    const struct moment middle = moment_at(engine, 0.5 * (low.time + high.time));
-    if (middle.time <= low.time || middle.time >= high.time) {
-      break;
-    }
-    if (windy(&middle) == windy(a)) {
-      low = middle;
-    } else {
-      high = middle;
-    }
-  }
+  struct moment low, high;
+  find_edge(engine, a, b, &low, &high);
   const struct moment first = moment_at(engine, 0.5 * (a->time + low.time));
-  const struct moment second = moment_at(engine, 0.5 * (high.time + b->time));
   if (low.time > a->time) {
     integrate(engine, a, &first, &low, engine->options->depth);
   }
-  if (b->time > high.time) {
-    integrate(engine, &high, &second, b, engine->options->depth);
+  if (b->time > high.time && (depth > 0 || regime(&high) == regime(b))) {
+    if (regime(&high) == regime(b)) {
+      const struct moment second = moment_at(engine, 0.5 * (high.time + b->time));
+      integrate(engine, &high, &second, b, engine->options->depth);
+    } else {
+      cover(engine, &high, b, depth - 1); /* a third regime lies between */
+    }
   }
 }
 
@@ -153,10 +170,12 @@ static void epoch_fill(const struct engine *engine, const struct moment *m, stru
                                      .time_scale = m->time_scale,
                                      .reason = LXG_WIND_SOLVED,
                                      .members = m->members,
+                                     .porous = m->porous,
                                      .place = m->place,
                                      .mass = engine->total[RATE_MASS]};
   if (m->members == 0) {
-    epoch->reason = lxg_family_missing(engine->family, engine->key, m->luminosity);
+    epoch->reason =
+        lxg_family_missing(m->porous ? engine->options->above : engine->family, engine->key, m->luminosity);
     epoch->place.arc = NAN;
     for (size_t i = 0; i < LXG_FAMILY_COUNT; i++) {
       epoch->place.value[i] = NAN;
@@ -205,7 +224,7 @@ enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct
                                    double escape_energy, const struct lxg_ejecta_options *options,
                                    struct lxg_ejecta *ejecta, struct lxg_error *error) {
   const struct lxg_ejecta_options standard = lxg_ejecta_options_default();
-  struct lxg_family_index *index = NULL;
+  struct lxg_family_index *index = NULL, *above = NULL;
   struct engine engine = {.family = family,
                           .history = history,
                           .options = options != NULL ? options : &standard,
@@ -217,16 +236,22 @@ enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct
                           .largest_jump = 1.0};
   *ejecta =
       (struct lxg_ejecta){.peak_rate = NAN, .peak_rate_time = NAN, .peak_speed = NAN, .peak_speed_time = NAN};
-  const enum lxg_status status = lxg_family_index_create(family, engine.key, &index, error);
+  enum lxg_status status = lxg_family_index_create(family, engine.key, &index, error);
+  if (status == LXG_OK && engine.options->above != NULL) {
+    status = lxg_family_index_create(engine.options->above, engine.key, &above, error);
+  }
   if (status != LXG_OK) {
+    lxg_family_index_destroy(index);
     return status;
   }
   ejecta->epoch = lxg_alloc(history->count, sizeof *ejecta->epoch);
   if (ejecta->epoch == NULL) {
+    lxg_family_index_destroy(above);
     lxg_family_index_destroy(index);
     return lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory for %zu epochs", history->count);
   }
   engine.index = index;
+  engine.above = above;
   ejecta->count = history->count;
   struct moment before = {0};
   for (size_t i = 0; i < history->count; i++) {
@@ -239,6 +264,7 @@ enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct
     before = now;
   }
   conclude(&engine, ejecta);
+  lxg_family_index_destroy(above);
   lxg_family_index_destroy(index);
   return LXG_OK;
 }

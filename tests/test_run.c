@@ -177,6 +177,30 @@ START_TEST(commands_refuse) {
 }
 END_TEST
 
+/* The wind phase of an eruption, taken as a luminosity history, must throw out what the eruption itself says: the mass is summed
+ * along the luminosity there and along the envelope mass here. 1e-3: the spacing of the states. */
+START_TEST(eruption_as_history) {
+  struct lxg_case input;
+  read_text("case: 1\nstar: {mass: 1.19}\ncomposition: {hydrogen: 0.47, cno: 0.17, metals: 0.02}\n"
+            "burning: {law: cno}\ndecline: {start_temperature: 1.9e4 K}\nluminosity: {kind: decline}\n",
+            &input);
+  struct lxg_error error = {0};
+  const struct lxg_run_options options = {.branch = LXG_BRANCH_THIN};
+  struct lxg_results whole = {0}, outburst = {0};
+  assert_status(lxg_run_decline(&input, &options, &whole, &error), LXG_OK, &error);
+  assert_status(lxg_run_outburst(&input, &options, &outburst, &error), LXG_OK, &error);
+  ck_assert(whole.answered && outburst.answered);
+  assert_close(number(&outburst, "ejecta.mass_msun"), number(&whole, "decline.ejected_mass_msun"), 1e-3);
+  assert_close(number(&outburst, "ejecta.kinetic_energy_erg"), number(&whole, "decline.kinetic_energy_erg"),
+               1e-3);
+  assert_close(number(&outburst, "ejecta.wind_duration_d"), number(&whole, "decline.wind_duration_d"), 1e-3);
+  ck_assert_str_eq(text(&whole, "decline", "verdict"), "solved");
+  lxg_results_free(&whole);
+  lxg_results_free(&outburst);
+  lxg_case_free(&input);
+}
+END_TEST
+
 Suite *suite_run(void);
 Suite *suite_run(void) {
   Suite *suite = suite_create("run");
@@ -186,6 +210,7 @@ Suite *suite_run(void) {
   tcase_add_test(tests, constant_outburst);
   tcase_add_test(tests, faint_outburst);
   tcase_add_test(tests, commands_refuse);
+  tcase_add_test(tests, eruption_as_history);
   suite_add_tcase(suite, tests);
   return suite;
 }

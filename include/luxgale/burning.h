@@ -50,4 +50,10 @@ enum lxg_status lxg_burning_init(struct lxg_burning *burning, enum lxg_burning_l
 enum lxg_status lxg_burning_at(const struct lxg_burning *burning, double ln_rho, double ln_t,
                                struct lxg_burning_value *value);
 
+struct lxg_node;
+
+/* Reads the section `burning` of a case (NULL: none). LXG_INPUT with the place: unknown key or law, "burning-fuel". */
+enum lxg_status lxg_burning_read(struct lxg_node *section, const struct lxg_composition *composition,
+                                 struct lxg_burning *burning, struct lxg_error *error);
+
 #endif

@@ -152,4 +152,11 @@ enum lxg_status lxg_driving_judge(const struct lxg_star *star, const struct lxg_
                                   const struct lxg_driving_light *light, const struct lxg_driving_wind *wind,
                                   struct lxg_driving_verdict *verdict, struct lxg_error *error);
 
+struct lxg_node;
+
+/* Reads the section `driving` of a case: mass and speed of the claim, and their standard errors. Absent: `*given` is false. LXG_INPUT with
+ * the place ("driving-claim" for an error as large as its value). */
+enum lxg_status lxg_driving_read(struct lxg_node *section, bool *given, struct lxg_driving_claim *claim,
+                                 struct lxg_error *error);
+
 #endif

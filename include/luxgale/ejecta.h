@@ -25,6 +25,7 @@ struct lxg_ejecta_epoch {
   double time_scale;             /* L/|dL/dt| [s] */
   enum lxg_wind_reason reason;   /* LXG_WIND_SOLVED, or why there is no wind */
   size_t members;                /* how many members of the family have this luminosity */
+  bool porous;                   /* brighter than the limit of the first family: from the second */
   struct lxg_family_place place; /* the wind; NaN without one */
   double mass;                   /* ejected so far [g] */
   bool unsteady;                 /* flow or diffusion time exceeds the time scale of the luminosity */
@@ -52,8 +53,10 @@ struct lxg_ejecta {
 
 struct lxg_ejecta_options {
   enum lxg_branch branch;
-  double tolerance; /* relative error of the integrals over one interval between epochs */
-  int depth;        /* halvings of such an interval at most */
+  const struct lxg_family *above; /* winds of epochs brighter than `limit`; NULL: one family for all */
+  double limit;                   /* [erg s^-1] */
+  double tolerance;               /* relative error of the integrals over one interval between epochs */
+  int depth;                      /* halvings of such an interval at most */
 };
 struct lxg_ejecta_options lxg_ejecta_options_default(void);
 

@@ -50,7 +50,8 @@ enum lxg_family_scale {
   X(LUMINOSITY_INFINITY, luminosity_infinity, luminosity_infinity, LXG_SCALE_SIGNED)                         \
   X(GAMMA_MAX, gamma_max, gamma_max, LXG_SCALE_LOG)                                                          \
   X(FLOW_TIME, flow_time, flow_time, LXG_SCALE_LOG)                                                          \
-  X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)
+  X(DIFFUSION_TIME, diffusion_time, diffusion_time, LXG_SCALE_LOG)                                           \
+  X(NUCLEAR_LUMINOSITY, nuclear_luminosity, nuclear_luminosity, LXG_SCALE_SIGNED)
 
 /* The first LXG_HELD_COUNT members stand in the order of enum lxg_held. */
 enum lxg_family_quantity {
@@ -91,6 +92,10 @@ struct lxg_family_options {
   size_t count_most; /* winds at most */
 };
 struct lxg_family_options lxg_family_options_default(void);
+
+/* An energy_most under which a family can reach a held luminosity or energy rate, however much of it lifts the gas: the default, or a
+ * hundred times that value over L_Edd (porous winds of 50 L_Edd carry up to 80 times their light). */
+double lxg_family_energy_most(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *target);
 
 /* Traces the family of `hold`.
  * LXG_NO_SOLUTION when not even one wind is found; the error carries the reason. */

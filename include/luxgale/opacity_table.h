@@ -148,6 +148,12 @@ enum lxg_status lxg_opacity_tabulate(const struct lxg_opacity *opacity,
 enum lxg_status lxg_opacity_grid_read(const char *path, struct lxg_opacity_grid **grid,
                                       struct lxg_error *error);
 
+struct lxg_table;
+
+/* A grid as the table that an own file holds, to be destroyed by lxg_table_destroy. Errors of lxg_opacity_grid_validate, LXG_MEMORY. */
+enum lxg_status lxg_opacity_grid_table(const struct lxg_opacity_grid *grid, const char *name,
+                                       struct lxg_table **table, struct lxg_error *error);
+
 /* Writes an own file in one step (the old one stays if anything fails). Missing nodes are left empty. */
 enum lxg_status lxg_opacity_grid_write(const struct lxg_opacity_grid *grid, const char *path,
                                        struct lxg_error *error);

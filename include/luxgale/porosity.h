@@ -17,6 +17,12 @@
 #include "luxgale/opacity.h"
 #include "luxgale/status.h"
 
+/* Which epochs of a history are porous; a single wind always is. */
+enum lxg_porosity_when {
+  LXG_POROSITY_ALWAYS,
+  LXG_POROSITY_SUPER_EDDINGTON /* only those brighter than the homogeneous limit (run.h) */
+};
+
 enum lxg_porosity_law { LXG_POROSITY_NONE, LXG_POROSITY_REDUCTION, LXG_POROSITY_LENGTH, LXG_POROSITY_POWER };
 
 /* What the user chooses; zero-initialised means no porosity. Fields that the law does not use are ignored. */
@@ -26,6 +32,7 @@ struct lxg_porosity {
   double scale;  /* eta of `length` and `power`: porosity length in gas scale heights, > 0 */
   double
       alpha; /* index of `power`, > 0; smaller is more porous at small depth, slower to block at large depth */
+  enum lxg_porosity_when when; /* read by those who follow a history; the laws ignore it */
 };
 
 /* What fixes the gas scale height H. */

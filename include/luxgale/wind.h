@@ -5,7 +5,8 @@
  * Equations (docs/physics.md): mass (W1), energy (W2), radiative diffusion (W3), momentum (W4); ideal gas and
  * radiation; regular passage through the critical point v = c_T; photosphere where 4 pi R^2 sigma T^4 = L and
  * kappa rho R = 8/3; beyond it gas coasts in a diluted radiation field to the terminal speed. Two held quantities select
- * one wind. Method: global collocation with the critical radius, the rate and the energy rate as unknowns (bvp.h).
+ * one wind. With a burning base (W5) dLambda/dlnr = 4 pi r^3 rho eps below r_c, and Lambda means its value outside;
+ * L(R_0) = 0 is then one of the two held quantities. Method: global collocation with the critical radius, the rate and the energy rate as unknowns (bvp.h).
  *
  * Call order: lxg_wind_solver_create -> lxg_wind_solve (cold) or lxg_wind_follow (from the last solution) ->
  * lxg_wind_profile -> lxg_wind_solver_destroy. One solver a thread.
@@ -13,6 +14,7 @@
 #ifndef LUXGALE_WIND_H
 #define LUXGALE_WIND_H
 
+#include "luxgale/burning.h"
 #include "luxgale/composition.h"
 #include "luxgale/opacity.h"
 #include "luxgale/porosity.h"
@@ -29,6 +31,7 @@ struct lxg_wind_model {
   struct lxg_composition composition;
   const struct lxg_opacity *opacity;
   struct lxg_porosity porosity;
+  struct lxg_burning burning; /* zero-initialised: no burning */
 };
 
 /* quantity, name in a case, unit here */
@@ -111,15 +114,17 @@ struct lxg_wind {
   struct lxg_wind_site photosphere;
   double
       escape_radius; /* where the flow passes the local escape speed [cm]; NaN if it does not within 1000 R_ph */
-  double luminosity_infinity;   /* what reaches infinity as light [erg s^-1] */
-  double lifting_rate;          /* Mdot G M/R_0 [erg s^-1] */
-  double kinetic_rate;          /* Mdot v_inf^2/2 [erg s^-1] */
-  double flow_time;             /* from r_c to R_ph [s] */
-  double diffusion_time;        /* radiation energy between r_c and R_ph over L_ph [s] */
-  double tiring_number;         /* Mdot G M/(R_0 L(R_0)) */
-  double wind_performance;      /* Mdot v_inf c/L_ph */
-  double gamma_max;             /* largest kappa L/(4 pi G M c) along the wind */
-  double gamma_max_radius;      /* where [cm] */
+  double luminosity_infinity; /* what reaches infinity as light [erg s^-1] */
+  double lifting_rate;        /* Mdot G M/R_0 [erg s^-1] */
+  double kinetic_rate;        /* Mdot v_inf^2/2 [erg s^-1] */
+  double
+      nuclear_luminosity;  /* heat of burning between R_0 and r_c, int eps dm [erg s^-1]; 0 without burning */
+  double flow_time;        /* from r_c to R_ph [s] */
+  double diffusion_time;   /* radiation energy between r_c and R_ph over L_ph [s] */
+  double tiring_number;    /* Mdot G M/R_0 over L(R_0) and the heat of burning */
+  double wind_performance; /* Mdot v_inf c/L_ph */
+  double gamma_max;        /* largest kappa L/(4 pi G M c) along the wind */
+  double gamma_max_radius; /* where [cm] */
   double gamma_max_temperature; /* gas temperature there [K] */
   double mach_min, mach_max;    /* v/c_T between R_0 and 1000 R_ph */
   double beta_min, beta_max;    /* gas pressure over total pressure between R_0 and R_ph */
@@ -154,6 +159,9 @@ const struct lxg_wind_model *lxg_wind_solver_model(const struct lxg_wind_solver 
  * need it, and a super-Eddington porous wind may have no static inside at all. Base quantities and the envelope mass are
  * then NaN. Off at first. */
 void lxg_wind_solver_outer_only(struct lxg_wind_solver *solver, bool outer_only);
+
+/* True if the launch radius is held and nothing inside it: then the winds need no inside. */
+bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count);
 
 /* LXG_INPUT when two held quantities are out of range or are the same one ("hold-value", "hold-dependent", ...). */
 enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],

@@ -77,6 +77,30 @@ static void lu_solve(const double a[], const int pivot[], size_t size, double b[
   }
 }
 
+/* The same for a single right-hand side. */
+static void lu_solve_one(const double a[], const int pivot[], size_t size, double b[]) {
+  for (size_t j = 0; j < size; j++) {
+    const size_t best = (size_t)pivot[j];
+    const double value = b[best];
+    b[best] = b[j];
+    b[j] = value;
+  }
+  for (size_t j = 1; j < size; j++) {
+    double sum = b[j];
+    for (size_t i = 0; i < j; i++) {
+      sum -= a[j * size + i] * b[i];
+    }
+    b[j] = sum;
+  }
+  for (size_t j = size; j-- > 0;) {
+    double sum = b[j];
+    for (size_t i = j + 1; i < size; i++) {
+      sum -= a[j * size + i] * b[i];
+    }
+    b[j] = sum / a[j * size + j];
+  }
+}
+
 /* Stage values of one interval and the state of a sweep. */
 struct sweep {
   struct lxg_bvp *bvp;
@@ -167,7 +191,11 @@ static enum lxg_status condense(struct sweep *s, size_t piece, size_t i) {
   if (s->factor && !lu_factor(interval->lu, interval->pivot, ns)) {
     return LXG_SINGULAR;
   }
-  lu_solve(interval->lu, interval->pivot, ns, right, columns);
+  if (columns == 1) {
+    lu_solve_one(interval->lu, interval->pivot, ns, right);
+  } else {
+    lu_solve(interval->lu, interval->pivot, ns, right, columns);
+  }
   for (size_t a = 0; a < ns; a++) {
     interval->g0[a] = right[a * columns];
     if (s->factor) {
@@ -387,7 +415,7 @@ static enum lxg_status finish(struct sweep *s, double last[]) {
   if (s->factor && !lu_factor(b->final_matrix, b->final_pivot, size)) {
     return LXG_SINGULAR;
   }
-  lu_solve(b->final_matrix, b->final_pivot, size, last, 1);
+  lu_solve_one(b->final_matrix, b->final_pivot, size, last);
   return LXG_OK;
 }
 

@@ -22,13 +22,27 @@ enum cli_option_id {
   CLI_BRANCH,
   CLI_THREADS,
   CLI_SEED,
+  CLI_POINTS,
+  CLI_LOG_T,
+  CLI_LOG_R,
+  CLI_HYDROGEN,
+  CLI_HELIUM,
+  CLI_CNO,
+  CLI_METALS,
+  CLI_SOURCE,
+  CLI_DATE,
   CLI_QUIET,
   CLI_VERBOSE,
   CLI_HELP,
   CLI_VERSION,
   CLI_OPTIONS
 };
-#define CLI_BIT(option) (1u << (unsigned)(option))
+#define CLI_BIT(option) (1ull << (unsigned)(option))
+
+/* Not options: what is special about a command. */
+#define CLI_TAKES_FILE (1ull << 63) /* its operand is a file of its own kind, not a case */
+#define CLI_TAKES_FOLDER                                                                                     \
+  (1ull << 62) /* --output is a folder for what it makes; the report goes to standard output */
 
 /* Options that every command takes. */
 #define CLI_COMMON                                                                                           \
@@ -43,10 +57,10 @@ struct cli_option {
 };
 
 struct cli_command {
-  const char *name;
+  const char *name; /* one word, or two: a group and what it does */
   const char *sentence;
-  const char *needs; /* what the case must hold */
-  unsigned options;  /* bits, common ones included */
+  const char *needs;          /* what the case must hold */
+  unsigned long long options; /* bits, common ones included */
   enum lxg_status (*run)(const struct lxg_case *input, const struct lxg_run_options *options,
                          struct lxg_results *results, struct lxg_error *error);
   const char *example;
@@ -55,6 +69,9 @@ struct cli_command {
 /* Rows: NULL beyond the end. */
 const struct cli_command *cli_command_row(size_t index);
 const struct cli_command *cli_command_find(const char *name);
+
+/* The command of one or two words; `*words` is how many it has. NULL if there is none. */
+const struct cli_command *cli_command_match(const char *first, const char *second, int *words);
 const struct cli_option *cli_option_row(size_t index);
 
 /* A command line, understood. Texts are borrowed from argv. */
@@ -74,9 +91,9 @@ struct cli_request {
 /* Understands argv[1...]. LXG_USAGE with a sentence. */
 enum lxg_status cli_request_read(struct cli_request *request, int argc, char **argv, struct lxg_error *error);
 
-/* Prints the general help, or that of a topic: a command, case, units, settings, reasons, or the path of a key. LXG_USAGE for
- * an unknown one. */
-enum lxg_status cli_help(const char *topic, struct lxg_error *error);
+/* Prints the general help, or that of a topic: a command, case, units, settings, reasons, or the path of a key;
+ * `second` is the second word of a command, or NULL. LXG_USAGE for an unknown one. */
+enum lxg_status cli_help(const char *topic, const char *second, struct lxg_error *error);
 enum lxg_status cli_version(struct lxg_error *error);
 
 /* Prints "luxgale: FILE:LINE:COL: error: text [code]" and its contexts. */

@@ -41,7 +41,7 @@ static void print_general(struct lxg_buffer *out) {
   for (size_t i = 0; cli_command_row(i) != NULL; i++) {
     const size_t from = out->size;
     lxg_buffer_format(out, "  %s", cli_command_row(i)->name);
-    pad(out, from, 12);
+    pad(out, from, 20);
     lxg_buffer_format(out, "%s\n", cli_command_row(i)->sentence);
   }
   lxg_buffer_text(out, "\nOptions of every command:\n");
@@ -57,8 +57,10 @@ static void print_general(struct lxg_buffer *out) {
 }
 
 static void print_command(struct lxg_buffer *out, const struct cli_command *command) {
-  lxg_buffer_format(out, "Usage: luxgale %s [OPTIONS] CASE\n\n%s: %s.\nThe case needs %s.\n\nOptions:\n",
-                    command->name, command->name, command->sentence, command->needs);
+  const bool file = (command->options & CLI_TAKES_FILE) != 0;
+  lxg_buffer_format(out, "Usage: luxgale %s [OPTIONS] %s\n\n%s: %s.\nThe %s %s.\n\nOptions:\n", command->name,
+                    file ? "FILE" : "CASE", command->name, command->sentence,
+                    file ? "file holds" : "case needs", command->needs);
   for (size_t i = 0; i < CLI_OPTIONS; i++) {
     if (command->options & CLI_BIT(i)) {
       print_option(out, cli_option_row(i));
@@ -220,7 +222,33 @@ static bool print_setting_at(struct lxg_buffer *out, const char *topic) {
   return false;
 }
 
-static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, struct lxg_error *error) {
+/* The command of that name, of one word or two, or all of a group. */
+static bool print_commands(struct lxg_buffer *out, const char *topic, const char *second) {
+  int words = 0;
+  const struct cli_command *command = cli_command_match(topic, second, &words);
+  if (command != NULL) {
+    print_command(out, command);
+    return true;
+  }
+  bool found = false;
+  const size_t length = strlen(topic);
+  for (size_t i = 0; cli_command_row(i) != NULL && second == NULL; i++) {
+    const char *name = cli_command_row(i)->name;
+    if (strncmp(name, topic, length) == 0 && name[length] == ' ') {
+      lxg_buffer_text(out, found ? "\n" : "");
+      print_command(out, cli_command_row(i));
+      found = true;
+    }
+  }
+  if (found) {
+    lxg_buffer_text(out, "\nKeys of the case:\n\n");
+    print_keys_at(out, topic);
+  }
+  return found;
+}
+
+static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, const char *second,
+                                   struct lxg_error *error) {
   static const struct {
     const char *name;
     void (*print)(struct lxg_buffer *out);
@@ -235,8 +263,7 @@ static enum lxg_status print_topic(struct lxg_buffer *out, const char *topic, st
       return LXG_OK;
     }
   }
-  if (cli_command_find(topic) != NULL) {
-    print_command(out, cli_command_find(topic));
+  if (print_commands(out, topic, second)) {
     return LXG_OK;
   }
   if (print_keys_at(out, topic) || print_setting_at(out, topic)) {
@@ -258,13 +285,13 @@ static enum lxg_status show(struct lxg_buffer *out, enum lxg_status status, stru
   return status;
 }
 
-enum lxg_status cli_help(const char *topic, struct lxg_error *error) {
+enum lxg_status cli_help(const char *topic, const char *second, struct lxg_error *error) {
   struct lxg_buffer out = {0};
   enum lxg_status status = LXG_OK;
   if (topic == NULL) {
     print_general(&out);
   } else {
-    status = print_topic(&out, topic, error);
+    status = print_topic(&out, topic, second, error);
   }
   return show(&out, status, error);
 }

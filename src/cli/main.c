@@ -32,9 +32,12 @@ static void tell_files(const struct cli_request *request, const struct lxg_case 
 
 /* 0, or 1 when the physics gave no full answer; else the exit status of the failure. */
 static int run(struct cli_request *request, struct lxg_error *error) {
-  struct lxg_case input;
+  struct lxg_case input = {0};
   struct lxg_results results = {0};
-  enum lxg_status status = lxg_case_read(&input, request->case_path, request->set, request->set_count, error);
+  enum lxg_status status = LXG_OK;
+  if (!(request->command->options & CLI_TAKES_FILE)) {
+    status = lxg_case_read(&input, request->case_path, request->set, request->set_count, error);
+  }
   if (status != LXG_OK) {
     return lxg_status_exit(status);
   }
@@ -53,13 +56,13 @@ static int run(struct cli_request *request, struct lxg_error *error) {
 
 static int dispatch(int argc, char **argv, struct lxg_error *error) {
   if (argc > 1 && strcmp(argv[1], "help") == 0) {
-    return lxg_status_exit(cli_help(argc > 2 ? argv[2] : NULL, error));
+    return lxg_status_exit(cli_help(argc > 2 ? argv[2] : NULL, argc > 3 ? argv[3] : NULL, error));
   }
   struct cli_request request;
   enum lxg_status status = cli_request_read(&request, argc, argv, error);
   int answer = lxg_status_exit(status);
   if (status == LXG_OK && request.help) {
-    answer = lxg_status_exit(cli_help(request.command != NULL ? request.command->name : NULL, error));
+    answer = lxg_status_exit(cli_help(request.command != NULL ? request.command->name : NULL, NULL, error));
   } else if (status == LXG_OK && request.version) {
     answer = lxg_status_exit(cli_version(error));
   } else if (status == LXG_OK) {

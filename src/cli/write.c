@@ -51,15 +51,17 @@ static enum lxg_status write_report(const struct cli_request *request, const str
                                     struct lxg_error *error) {
   struct lxg_buffer bytes = {0};
   struct lxg_node *root = lxg_document_root((struct lxg_document *)report);
+  const bool folder = (request->command->options & CLI_TAKES_FOLDER) != 0;
+  const char *place = folder ? "-" : request->output;
   const bool json = request->format == LXG_DOCUMENT_JSON ||
-                    (request->format == LXG_DOCUMENT_AUTO && has_suffix(request->output, ".json"));
+                    (request->format == LXG_DOCUMENT_AUTO && has_suffix(place, ".json"));
   const enum lxg_status status = json ? lxg_document_write_json(root, &bytes, error)
                                       : lxg_document_write_yaml(root, false, &bytes, error);
-  return put(request, request->output, &bytes, status, error);
+  return put(request, place, &bytes, status, error);
 }
 
 static void tell_warnings(struct lxg_document *report) {
-  struct lxg_node *list = lxg_node_find(lxg_document_root(report), "warnings");
+  struct lxg_node *list = report != NULL ? lxg_node_find(lxg_document_root(report), "warnings") : NULL;
   for (struct lxg_node *warning = lxg_node_first(list); warning != NULL; warning = lxg_node_next(warning)) {
     fprintf(stderr, "luxgale: warning: %s [%s]\n", lxg_node_text(lxg_node_find(warning, "message")),
             lxg_node_text(lxg_node_find(warning, "code")));
@@ -76,7 +78,7 @@ enum lxg_status cli_write(const struct cli_request *request, struct lxg_results 
     status = write_table(request, request->structure, results->structure, error);
   }
   if (status == LXG_OK) {
-    const bool as_table = has_suffix(request->output, ".ecsv");
+    const bool as_table = has_suffix(request->output, ".ecsv") || results->report == NULL;
     if (as_table && results->epochs != NULL) {
       status = write_table(request, request->output, results->epochs, error);
     } else if (!as_table) {

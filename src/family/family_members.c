@@ -32,6 +32,7 @@ static enum lxg_status search(struct lxg_wind_solver *solver, const struct lxg_w
                               struct lxg_error *error) {
   struct lxg_family_options options = lxg_family_options_default();
   options.tolerance = coarse;
+  options.energy_most = lxg_family_energy_most(solver, &hold[1 - first]);
   struct lxg_family family;
   const enum lxg_status status =
       lxg_family_trace_catching(solver, &hold[first], &options, found, &family, error);
@@ -50,17 +51,6 @@ static enum lxg_status search(struct lxg_wind_solver *solver, const struct lxg_w
   return LXG_OK;
 }
 
-/* A pair of quantities that live at or outside the critical point, one of them its radius. */
-static bool needs_no_inside(const struct lxg_wind_hold hold[2]) {
-  bool radius = false, inner = false;
-  for (size_t i = 0; i < 2; i++) {
-    radius = radius || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS;
-    inner = inner || hold[i].quantity == LXG_HELD_BASE_TEMPERATURE ||
-            hold[i].quantity == LXG_HELD_BASE_LUMINOSITY || hold[i].quantity == LXG_HELD_ENVELOPE_MASS;
-  }
-  return radius && !inner;
-}
-
 enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                    enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
                                    size_t *count, struct lxg_error *error) {
@@ -73,7 +63,7 @@ enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct 
   struct family_catch found = {
       .target = &hold[1 - first], .wind = winds, .capacity = capacity, .thick = branch == LXG_BRANCH_THICK};
   status = search(solver, hold, first, &found, winds, error);
-  if (status == LXG_NO_SOLUTION && needs_no_inside(hold)) {
+  if (status == LXG_NO_SOLUTION && lxg_wind_holds_outer(hold, 2)) {
     lxg_wind_solver_outer_only(solver, true);
     status = search(solver, hold, first, &found, winds, error);
     lxg_wind_solver_outer_only(solver, false);

@@ -20,6 +20,7 @@ static const double shortest_step = 1e-7; /* below it the family has ended */
 static const double step_growth = 1.8, step_shrink = 0.4, step_safety = 0.7;
 static const double slow_share =
     0.1; /* terminal speeds below this share of the photospheric one are judged as if at it */
+static const double energy_reserve = 100.0; /* energy rate over a luminosity to be reached */
 enum { GROW = 64 };
 
 struct lxg_family_options lxg_family_options_default(void) {
@@ -30,6 +31,15 @@ struct lxg_family_options lxg_family_options_default(void) {
                                              .envelope_most = 0.1,
                                              .count_most = 4000};
   return options;
+}
+
+double lxg_family_energy_most(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *target) {
+  const struct lxg_wind_model *model = lxg_wind_solver_model(solver);
+  const double usual = lxg_family_options_default().energy_most;
+  const bool power = target->quantity == LXG_HELD_PHOTOSPHERE_LUMINOSITY ||
+                     target->quantity == LXG_HELD_BASE_LUMINOSITY || target->quantity == LXG_HELD_ENERGY_RATE;
+  const double share = target->value / lxg_star_eddington_luminosity(&model->star, &model->composition);
+  return power ? fmax(usual, energy_reserve * share) : usual;
 }
 
 /* One direction's harvest. */

@@ -13,8 +13,8 @@
 
 #include "history/history_reading.h"
 
-static const char *const kinds[] = {"base", "photosphere", "magnitude", "formula"};
-enum { KIND_MAGNITUDE = 2, KIND_FORMULA = 3, KINDS = 4 };
+static const char *const kinds[] = {"base", "photosphere", "magnitude", "formula", "decline"};
+enum { KIND_MAGNITUDE = 2, KIND_FORMULA = 3, KIND_DECLINE = 4, KINDS = 5 };
 
 /* Names and units of the columns, as the case gives them. */
 struct columns {
@@ -192,7 +192,7 @@ enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_hist
   if (status != LXG_OK) {
     return status;
   }
-  if (kind == KIND_MAGNITUDE) {
+  if (kind == KIND_MAGNITUDE || kind == KIND_DECLINE) { /* an eruption is the business of a whole case */
     return lxg_keys_refuse(node, error);
   }
   if (kind == KIND_FORMULA) {

@@ -8,6 +8,7 @@
 #include "history/history_reading.h"
 
 #include <math.h>
+#include <string.h>
 
 static const double catalyst_share =
     0.7; /* C, N, O among scaled-solar metals: X_CNO = cno + 0.7 Z (docs/physics.md) */
@@ -50,6 +51,47 @@ static enum lxg_status check_uses(struct lxg_node *node, enum lxg_formula_law la
   return LXG_OK;
 }
 
+/* An isotope that the user describes, under a name of his own. */
+static enum lxg_status read_own_isotope(struct lxg_node *node, struct lxg_formula_isotope *place,
+                                        struct lxg_error *error) {
+  struct lxg_isotope *isotope = &place->isotope;
+  *isotope = (struct lxg_isotope){0};
+  enum lxg_status status = lxg_keys_check(node, "luminosity.terms[].isotopes[]", error);
+  const struct {
+    const char *key;
+    double *value;
+    bool required;
+  } numbers[] = {{"mass_fraction", &place->mass_fraction, true},
+                 {"mass_number", &isotope->mass_number, true},
+                 {"positrons", &isotope->positrons, false},
+                 {"positron_mev", &isotope->positron_mev, false},
+                 {"gamma_mev", &isotope->gamma_mev, false}};
+  struct lxg_node *child = NULL;
+  for (size_t i = 0; i < sizeof numbers / sizeof numbers[0] && status == LXG_OK; i++) {
+    status = numbers[i].required ? lxg_node_require(node, numbers[i].key, &child, error) : LXG_OK;
+    if (status == LXG_OK) {
+      status = lxg_node_get_number(node, numbers[i].key, numbers[i].value, error);
+    }
+  }
+  if (status == LXG_OK) {
+    status = lxg_node_require(node, "half_life", &child, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_node_as_quantity(child, LXG_DIMENSION_TIME, NULL, NULL, &isotope->half_life, error);
+  }
+  const char *name = lxg_node_key(node);
+  const size_t length = strlen(name);
+  if (status == LXG_OK && length >= sizeof isotope->name) {
+    return lxg_node_error(node, error, "isotope-name", "a name has at most %d characters",
+                          (int)sizeof isotope->name - 1);
+  }
+  if (status == LXG_OK) {
+    memcpy(isotope->name, name, length + 1);
+    status = lxg_decay_check(isotope, error) == LXG_OK ? LXG_OK : lxg_keys_locate(node, error);
+  }
+  return status;
+}
+
 static enum lxg_status read_isotopes(struct lxg_node *mapping, struct lxg_formula_term *term,
                                      struct lxg_error *error) {
   if (lxg_node_is_none(mapping)) {
@@ -59,16 +101,21 @@ static enum lxg_status read_isotopes(struct lxg_node *mapping, struct lxg_formul
   for (struct lxg_node *node = status == LXG_OK ? lxg_node_first(mapping) : NULL;
        node != NULL && status == LXG_OK; node = lxg_node_next(node)) {
     const struct lxg_isotope *isotope = lxg_decay_find(lxg_node_key(node));
-    if (isotope == NULL) {
+    const bool own = lxg_node_kind(node) == LXG_NODE_MAPPING;
+    if (isotope == NULL && !own) {
       return lxg_node_error(node, error, "isotope-unknown",
-                            "there are 13N, 14O, 15O, 17F, 18F, 22Na and 7Be");
+                            "there are 13N, 14O, 15O, 17F, 18F, 22Na and 7Be; describe others by a mapping");
     }
     if (term->isotope_count == LXG_FORMULA_ISOTOPES) {
       return lxg_node_error(node, error, "isotope-many", "at most %d isotopes", (int)LXG_FORMULA_ISOTOPES);
     }
     struct lxg_formula_isotope *place = &term->isotope[term->isotope_count++];
-    place->isotope = *isotope;
-    status = lxg_node_as_number(node, &place->mass_fraction, error);
+    if (own) {
+      status = read_own_isotope(node, place, error);
+    } else {
+      place->isotope = *isotope;
+      status = lxg_node_as_number(node, &place->mass_fraction, error);
+    }
   }
   return status;
 }

@@ -68,18 +68,29 @@ static enum lxg_status fill_table(const struct lxg_opacity_grid *grid, struct lx
   return status;
 }
 
+enum lxg_status lxg_opacity_grid_table(const struct lxg_opacity_grid *grid, const char *name,
+                                       struct lxg_table **table, struct lxg_error *error) {
+  *table = NULL;
+  enum lxg_status status = lxg_opacity_grid_validate(grid, error);
+  if (status == LXG_OK) {
+    status = lxg_table_create(name, table, error);
+  }
+  if (status == LXG_OK) {
+    write_meta(grid, *table);
+    status = fill_table(grid, *table, error);
+  }
+  if (status != LXG_OK) {
+    lxg_table_destroy(*table);
+    *table = NULL;
+  }
+  return status;
+}
+
 enum lxg_status lxg_opacity_grid_write(const struct lxg_opacity_grid *grid, const char *path,
                                        struct lxg_error *error) {
   struct lxg_table *table = NULL;
   struct lxg_buffer buffer = {0};
-  enum lxg_status status = lxg_opacity_grid_validate(grid, error);
-  if (status == LXG_OK) {
-    status = lxg_table_create(path, &table, error);
-  }
-  if (status == LXG_OK) {
-    write_meta(grid, table);
-    status = fill_table(grid, table, error);
-  }
+  enum lxg_status status = lxg_opacity_grid_table(grid, path, &table, error);
   if (status == LXG_OK) {
     status = lxg_table_write_ecsv(table, &buffer, error);
   }

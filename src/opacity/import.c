@@ -155,7 +155,7 @@ static enum lxg_status take_composition(const struct importer *in, struct lxg_co
     *composition = (struct lxg_composition){in->x, 1.0 - in->x - in->z - in->cno, in->cno, in->z};
     if (in->has_y && fabs(in->y - composition->helium) > 2e-4) {
       return lxg_error_set(in->error, LXG_INPUT, "opacity-import-composition",
-                           "%s:%zu: error: X + Y + Z + dXc + dXo = %.6g: mass fractions sum to 1", in->name,
+                           "%s:%zu:1: error: X + Y + Z + dXc + dXo = %.6g: mass fractions sum to 1", in->name,
                            in->composition_line, in->x + in->y + in->z + in->cno);
     }
     if (composition->helium < 0.0 && composition->helium > -1e-9) {
@@ -165,7 +165,7 @@ static enum lxg_status take_composition(const struct importer *in, struct lxg_co
     *composition = *in->options->composition;
   } else {
     return lxg_error_set(in->error, LXG_INPUT, "opacity-import-composition",
-                         "%s:%zu: error: the text above this block does not say X=... and Z=...: give the "
+                         "%s:%zu:1: error: the text above this block does not say X=... and Z=...: give the "
                          "composition",
                          in->name, in->block_line);
   }

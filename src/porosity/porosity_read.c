@@ -19,6 +19,20 @@ static enum lxg_status read_number(struct lxg_node *section, const char *key, bo
   return status != LXG_OK ? status : lxg_node_as_number(node, value, error);
 }
 
+static enum lxg_status read_when(struct lxg_node *section, struct lxg_porosity *porosity,
+                                 struct lxg_error *error) {
+  static const char *const words[] = {"always", "super-eddington"}; /* in the order of the enum */
+  size_t when = LXG_POROSITY_ALWAYS;
+  const enum lxg_status status = lxg_node_get_word(section, "when", words, 2, &when, error);
+  porosity->when = (enum lxg_porosity_when)when;
+  if (status == LXG_OK && porosity->law == LXG_POROSITY_NONE &&
+      !lxg_node_is_none(lxg_node_find(section, "when"))) {
+    return lxg_node_error(lxg_node_find(section, "when"), error, "porosity-unused",
+                          "there is no porosity to apply");
+  }
+  return status;
+}
+
 enum lxg_status lxg_porosity_read(struct lxg_node *section, struct lxg_porosity *porosity,
                                   struct lxg_error *error) {
   static const char *const laws[] = {"none", "reduction", "length"}; /* in the order of the enum */
@@ -39,6 +53,9 @@ enum lxg_status lxg_porosity_read(struct lxg_node *section, struct lxg_porosity 
   }
   if (status == LXG_OK) {
     status = read_number(section, "power", length, false, &porosity->alpha, error);
+  }
+  if (status == LXG_OK) {
+    status = read_when(section, porosity, error);
   }
   if (status != LXG_OK) {
     return status;

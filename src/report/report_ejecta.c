@@ -8,18 +8,6 @@
 
 #include <math.h>
 
-void lxg_report_super_eddington(struct lxg_node *root, const struct lxg_history_excess *excess) {
-  struct lxg_node *section = lxg_node_add_mapping(root, "super_eddington");
-  lxg_node_add_number(section, "duration_d", excess->duration / LXG_DAY);
-  lxg_node_add_number(section, "first_d", excess->first / LXG_DAY);
-  lxg_node_add_number(section, "last_d", excess->last / LXG_DAY);
-  lxg_node_add_number(section, "peak_ratio", excess->peak_ratio);
-  lxg_node_add_number(section, "peak_d", excess->peak_time / LXG_DAY);
-  lxg_node_add_number(section, "mean_ratio", excess->mean_ratio);
-  lxg_node_add_number(section, "radiated_erg", excess->radiated);
-  lxg_node_add_number(section, "energy_above_erg", excess->energy_above);
-}
-
 static void add_ejecta(struct lxg_node *root, const struct lxg_ejecta *ejecta) {
   struct lxg_node *section = lxg_node_add_mapping(root, "ejecta");
   const bool any = ejecta->solved > 0;

@@ -99,6 +99,9 @@ static const struct {
      "light that reaches infinity"},
     {LXG_FAMILY_GAMMA_MAX, {"eddington_ratio_max", "", 1.0}, "largest kappa L/(4 pi G M c)"},
     {LXG_FAMILY_FLOW_TIME, {"flow_time_s", "s", 1.0}, "from critical point to photosphere"},
+    {LXG_FAMILY_NUCLEAR_LUMINOSITY,
+     {"nuclear_luminosity_erg_s", "erg/s", 1.0},
+     "heat of burning below the critical point"},
     {LXG_FAMILY_DIFFUSION_TIME, {"diffusion_time_s", "s", 1.0}, "radiation energy there over luminosity"},
 };
 enum { MORE = sizeof more / sizeof more[0], FAMILY_COLUMNS = LXG_HELD_COUNT + MORE };
@@ -148,6 +151,21 @@ static void add_end(struct lxg_node *section, const char *key, enum lxg_wind_rea
   lxg_node_add_text(end, "reason", lxg_wind_reason_text(reason));
 }
 
+/* The worst of all members. */
+static void add_family_checks(struct lxg_node *section, const struct lxg_family *family) {
+  double residual = 0.0, share = INFINITY;
+  size_t mesh = 0;
+  for (size_t i = 0; i < family->count; i++) {
+    residual = fmax(residual, family->wind[i].residual);
+    share = fmin(share, family->wind[i].table_share);
+    mesh = family->wind[i].mesh_points > mesh ? family->wind[i].mesh_points : mesh;
+  }
+  struct lxg_node *checks = lxg_node_add_mapping(section, "checks");
+  lxg_node_add_number(checks, "residual_max", residual);
+  lxg_node_add_integer(checks, "mesh_points_max", (long long)mesh);
+  lxg_node_add_number(checks, "opacity_table_share_min", share);
+}
+
 void lxg_report_family(struct lxg_node *root, const struct lxg_family *family) {
   struct lxg_node *section = lxg_node_add_mapping(root, "family");
   lxg_node_add_text(section, "verdict", "solved");
@@ -156,6 +174,7 @@ void lxg_report_family(struct lxg_node *root, const struct lxg_family *family) {
   lxg_node_add_integer(section, "newton_steps", family->newton_steps);
   add_end(section, "thin_end", family->thin_end);
   add_end(section, "thick_end", family->thick_end);
+  add_family_checks(section, family);
   struct lxg_node *range = lxg_node_add_mapping(section, "range");
   for (size_t c = 0; c < FAMILY_COLUMNS; c++) {
     double least = INFINITY, most = -INFINITY;

@@ -74,6 +74,7 @@ static void add_energy(struct lxg_node *section, const struct lxg_wind *wind) {
   lxg_node_add_number(energy, "light_erg_s", wind->luminosity_infinity);
   lxg_node_add_number(energy, "lifting_erg_s", wind->lifting_rate);
   lxg_node_add_number(energy, "kinetic_erg_s", wind->kinetic_rate);
+  lxg_node_add_number(energy, "nuclear_erg_s", wind->nuclear_luminosity);
   lxg_node_add_number(energy, "light_share", wind->luminosity_infinity / total);
   lxg_node_add_number(energy, "lifting_share", wind->lifting_rate / total);
   lxg_node_add_number(energy, "kinetic_share", wind->kinetic_rate / total);
@@ -103,6 +104,12 @@ void lxg_report_wind_warnings(struct lxg_node *warnings, const struct lxg_wind *
         "the critical point is not deep enough for radiative diffusion to be a good description");
     lxg_node_add_number(warning, "optical_depth", wind->critical.optical_depth);
     lxg_node_add_number(warning, "limit", LXG_REPORT_THIN_DEPTH);
+  }
+  if (wind->table_share > 0.0 && wind->table_share < 1.0) {
+    struct lxg_node *warning =
+        lxg_report_warn(warnings, "table-share",
+                        "part of the wind lies outside the opacity table, where other opacities hold");
+    lxg_node_add_number(warning, "opacity_table_share", wind->table_share);
   }
   if (wind->diffusion_time > wind->flow_time) {
     struct lxg_node *warning =

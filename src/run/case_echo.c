@@ -6,6 +6,8 @@
 #include "luxgale/report.h"
 #include "luxgale/run.h"
 
+#include <math.h>
+
 static void echo_opacity(const struct lxg_case *input, struct lxg_node *section) {
   struct lxg_node *opacity = lxg_node_add_mapping(section, "opacity");
   lxg_node_add_text(opacity, "formula", lxg_opacity_formula_name(input->opacity_choice.formula));
@@ -35,10 +37,38 @@ static void echo_porosity(const struct lxg_case *input, struct lxg_node *section
   if (law == LXG_POROSITY_POWER) {
     lxg_node_add_number(porosity, "power", input->porosity.alpha);
   }
+  if (law != LXG_POROSITY_NONE) {
+    lxg_node_add_text(porosity, "when",
+                      input->porosity.when == LXG_POROSITY_ALWAYS ? "always" : "super-eddington");
+  }
+}
+
+static void echo_decline(const struct lxg_case *input, struct lxg_node *section) {
+  static const char *const starts[] = {"ignition", "mass", "temperature"};
+  if (input->burning.law == LXG_BURNING_NONE) {
+    return;
+  }
+  const struct lxg_decline_options *o = &input->decline;
+  struct lxg_node *decline = lxg_node_add_mapping(section, "decline");
+  lxg_node_add_text(decline, "start", starts[o->start]);
+  lxg_node_add_number(decline, "start_mass_msun",
+                      o->start == LXG_DECLINE_START_MASS ? o->start_value / LXG_SOLAR_MASS : (double)NAN);
+  lxg_node_add_number(decline, "start_temperature_k",
+                      o->start == LXG_DECLINE_START_TEMPERATURE ? o->start_value : (double)NAN);
+  lxg_node_add_number(decline, "accretion_rate_msun_yr", o->accretion_rate * LXG_YEAR / LXG_SOLAR_MASS);
+  lxg_node_add_text(decline, "stop", o->wind_only ? "wind-end" : "turn-off");
+  lxg_node_add_number(decline, "stop_time_d", o->time_most / LXG_DAY);
+  lxg_node_add_number(decline, "stop_mass_msun",
+                      o->mass_least > 0.0 ? o->mass_least / LXG_SOLAR_MASS : (double)NAN);
+  lxg_node_add_number(decline, "gas_temperature_k", o->gas_temperature);
+  lxg_node_add_number(decline, "rise_time_d", o->rise / LXG_DAY);
 }
 
 static void echo_history(const struct lxg_case *input, struct lxg_node *section) {
   const struct lxg_history *history = input->history;
+  if (input->history_from_decline) {
+    lxg_node_add_text(lxg_node_add_mapping(section, "luminosity"), "kind", "decline");
+  }
   if (history == NULL) {
     return;
   }
@@ -48,6 +78,17 @@ static void echo_history(const struct lxg_case *input, struct lxg_node *section)
   lxg_node_add_integer(luminosity, "rows", (long long)history->count);
   lxg_node_add_number(luminosity, "first_d", history->time[0] / LXG_DAY);
   lxg_node_add_number(luminosity, "last_d", history->time[history->count - 1] / LXG_DAY);
+}
+
+static void echo_driving(const struct lxg_case *input, struct lxg_node *section) {
+  if (input->claimed) {
+    const struct lxg_driving_claim *claim = &input->claim;
+    struct lxg_node *driving = lxg_node_add_mapping(section, "driving");
+    lxg_node_add_number(driving, "mass_msun", claim->mass / LXG_SOLAR_MASS);
+    lxg_node_add_number(driving, "mass_error_msun", (claim->mass_high - claim->mass) / LXG_SOLAR_MASS);
+    lxg_node_add_number(driving, "speed_km_s", claim->speed / LXG_KM);
+    lxg_node_add_number(driving, "speed_error_km_s", (claim->speed_high - claim->speed) / LXG_KM);
+  }
 }
 
 static void echo_settings(const struct lxg_case *input, struct lxg_node *section) {
@@ -90,11 +131,15 @@ void lxg_case_echo(const struct lxg_case *input, struct lxg_node *root) {
   lxg_node_add_number(composition, "metals", input->composition.metals);
   echo_opacity(input, section);
   echo_porosity(input, section);
+  lxg_node_add_text(lxg_node_add_mapping(section, "burning"), "law",
+                    input->burning.law == LXG_BURNING_CNO ? "cno" : "none");
+  echo_decline(input, section);
   struct lxg_node *hold = lxg_node_add_mapping(section, "hold");
   for (size_t i = 0; i < input->holds; i++) {
     lxg_report_held(hold, input->hold[i].quantity, input->hold[i].value);
   }
   echo_history(input, section);
+  echo_driving(input, section);
   echo_settings(input, section);
   echo_files(input, section);
 }

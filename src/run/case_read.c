@@ -32,17 +32,52 @@ static enum lxg_status refuse_later(struct lxg_node *root, struct lxg_error *err
       return lxg_keys_refuse(node, error);
     }
   }
-  static const char *const laws[] = {"none", "cno"};
-  struct lxg_node *burning = lxg_node_find(root, "burning");
-  size_t law = 0;
-  enum lxg_status status = lxg_keys_check(burning, "burning", error);
-  if (status == LXG_OK) {
-    status = lxg_node_get_word(burning, "law", laws, 2, &law, error);
+  return LXG_OK;
+}
+
+/* With burning the luminosity at R_0 is held at zero, unless the case gives the star's own. */
+static enum lxg_status hold_dark_base(struct lxg_case *input, struct lxg_node *section,
+                                      struct lxg_error *error) {
+  if (input->burning.law == LXG_BURNING_NONE) {
+    return LXG_OK;
   }
-  if (status == LXG_OK && law != 0) {
-    return lxg_keys_refuse(lxg_node_find(burning, "law"), error);
+  for (size_t i = 0; i < input->holds; i++) {
+    if (input->hold[i].quantity == LXG_HELD_BASE_LUMINOSITY) {
+      return LXG_OK;
+    }
   }
-  return status;
+  if (input->holds == 2) {
+    return lxg_node_error(section, error, "hold-burning",
+                          "with burning the luminosity at R_0 is zero already: hold one quantity at most");
+  }
+  input->hold[1] = input->hold[0];
+  input->hold[0] = (struct lxg_wind_hold){LXG_HELD_BASE_LUMINOSITY, 0.0};
+  input->holds++;
+  return LXG_OK;
+}
+
+/* `luminosity: {kind: decline}` needs no more than that; every other kind is a history of its own. */
+static enum lxg_status read_luminosity(struct lxg_case *input, struct lxg_node *section,
+                                       struct lxg_error *error) {
+  struct lxg_node *kind = lxg_node_find(section, "kind");
+  input->history_from_decline =
+      !lxg_node_is_none(kind) && lxg_node_text(kind) != NULL && strcmp(lxg_node_text(kind), "decline") == 0;
+  if (!input->history_from_decline) {
+    const struct lxg_history_reading reading = {.files = &input->files,
+                                                .l_edd = input->l_edd,
+                                                .composition = &input->composition,
+                                                .gap_fraction = input->settings.gap_fraction};
+    return lxg_history_read(section, &reading, &input->history, error);
+  }
+  for (struct lxg_node *node = lxg_node_first(section); node != NULL; node = lxg_node_next(node)) {
+    if (node != kind && !lxg_node_is_none(node)) {
+      const enum lxg_status status = lxg_keys_check(section, "luminosity", error);
+      return status != LXG_OK
+                 ? status
+                 : lxg_node_error(node, error, "luminosity-unused", "kind decline has no use for it");
+    }
+  }
+  return LXG_OK;
 }
 
 static enum lxg_status read_body(struct lxg_case *input, struct lxg_node *root, struct lxg_error *error) {
@@ -64,6 +99,13 @@ static enum lxg_status read_body(struct lxg_case *input, struct lxg_node *root, 
   }
   if (status == LXG_OK) {
     status = lxg_porosity_read(lxg_node_find(root, "porosity"), &input->porosity, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_burning_read(lxg_node_find(root, "burning"), &input->composition, &input->burning, error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_decline_read(lxg_node_find(root, "decline"), input->settings.ignition_pressure,
+                              &input->decline, error);
   }
   return status;
 }
@@ -91,11 +133,13 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
                                 &input->holds, error);
   }
   if (status == LXG_OK) {
-    const struct lxg_history_reading reading = {.files = &input->files,
-                                                .l_edd = input->l_edd,
-                                                .composition = &input->composition,
-                                                .gap_fraction = input->settings.gap_fraction};
-    status = lxg_history_read(lxg_node_find(root, "luminosity"), &reading, &input->history, error);
+    status = hold_dark_base(input, lxg_node_find(root, "hold"), error);
+  }
+  if (status == LXG_OK) {
+    status = read_luminosity(input, lxg_node_find(root, "luminosity"), error);
+  }
+  if (status == LXG_OK) {
+    status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
   }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
 }
@@ -104,6 +148,8 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
                               size_t count, struct lxg_error *error) {
   memset(input, 0, sizeof *input);
   lxg_settings_init(&input->settings);
+  input->limits = lxg_family_options_default();
+
   enum lxg_status status = lxg_files_init(&input->files, path, error);
   if (status == LXG_OK) {
     status = lxg_document_read(path, LXG_DOCUMENT_AUTO, &input->document, error);

@@ -51,7 +51,8 @@ struct lxg_wind_model lxg_run_model(const struct lxg_case *input) {
   return (struct lxg_wind_model){.star = input->star,
                                  .composition = input->composition,
                                  .opacity = input->opacity,
-                                 .porosity = input->porosity};
+                                 .porosity = input->porosity,
+                                 .burning = input->burning};
 }
 
 enum lxg_status lxg_run_star(const struct lxg_case *input, const struct lxg_run_options *options,

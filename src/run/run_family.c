@@ -19,7 +19,7 @@ enum lxg_status lxg_run_family(const struct lxg_case *input, const struct lxg_ru
     status = lxg_wind_solver_create(&model, NULL, &solver, error);
   }
   if (status == LXG_OK) {
-    status = lxg_family_trace(solver, &input->hold[0], NULL, &family, error);
+    status = lxg_run_trace(input, solver, 0.0, &family, error);
   }
   struct lxg_node *root = results->report != NULL ? lxg_document_root(results->report) : NULL;
   if (status == LXG_OK) {

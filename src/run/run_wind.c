@@ -46,6 +46,11 @@ static enum lxg_status search(const struct lxg_case *input, const struct lxg_run
   }
   const enum lxg_wind_reason reason = branches->wind[0].reason;
   lxg_wind_none(&branches->wind[0], reason == LXG_WIND_SOLVED ? apart.reason : reason);
+  if (lxg_run_tired(input)) {
+    branches->wind[0].reason = LXG_WIND_ENERGY_LIMITED;
+    return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(LXG_WIND_ENERGY_LIMITED), "%s",
+                         lxg_wind_reason_text(LXG_WIND_ENERGY_LIMITED));
+  }
   return status;
 }
 
@@ -95,6 +100,7 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
     struct lxg_node *root = lxg_document_root(results->report);
     struct lxg_node *section = lxg_report_wind(root, &branches.wind[0], input->l_edd);
     report_branches(section, &branches);
+    status = lxg_run_wind_limits(input, &branches.wind[0], section, error);
     struct lxg_node *warnings = lxg_report_warnings(root);
     lxg_report_wind_warnings(warnings, &branches.wind[0]);
     if (results->answered && !branches.traced) {
@@ -102,7 +108,7 @@ enum lxg_status lxg_run_wind(const struct lxg_case *input, const struct lxg_run_
           warnings, "branches-unknown",
           "the family of the first held quantity could not be searched for other winds with the held values");
     }
-    status = lxg_document_status(results->report, error);
+    status = status == LXG_OK ? lxg_document_status(results->report, error) : status;
   }
   if (status == LXG_OK && results->answered && options->structure) {
     status = add_structure(input, solver, results, error);

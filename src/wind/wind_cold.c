@@ -175,6 +175,10 @@ static enum lxg_status settle(struct lxg_wind_solver *solver, double ln_rc, doub
   return lxg_wind_newton(solver, row, 1e-4, true);
 }
 
+enum lxg_status lxg_wind_cold_at(struct lxg_wind_solver *solver, double ln_rc, double ln_tc) {
+  return settle(solver, ln_rc, ln_tc, NAN);
+}
+
 /* Approximate wind at a critical temperature; `ln_mdot` hints at its rate. */
 static struct candidate probe(struct lxg_wind_solver *solver, double ln_rc, double ln_tc, double ln_mdot,
                               const struct wind_row *row) {

@@ -70,6 +70,8 @@ struct wind_problem {
   struct wind_coast *coast;
   struct wind_row row[2];
   struct lxg_bvp_problem bvp;
+  struct lxg_bvp_problem plain; /* burning: the two equations and conditions without it */
+  double burning_share; /* of the heat of burning that counts: 1 but on the way to a first burning wind */
 };
 
 /* Sets the two held rows and the sizes that follow from them. LXG_NO_SOLUTION when a row lives in the inner piece and that
@@ -156,6 +158,24 @@ struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const stru
 /* A first wind at launch radius exp(ln_rc) with one held row, by the scan of wind_cold.c; it is kept. Of several the one nearest
  * to the iron bump is preferred, then the one with the smallest rate. LXG_NO_SOLUTION if the scan sees none. */
 enum lxg_status lxg_wind_cold(struct lxg_wind_solver *solver, double ln_rc, const struct wind_row *row);
+
+/* Unknowns of a model: ln v, ln T, and lambda where it varies. */
+static inline size_t wind_unknowns(const struct wind_constants *constants) {
+  return constants->model.burning.law == LXG_BURNING_NONE ? 2 : 3;
+}
+
+/* Turns the problem just set into the one with a burning base (wind_burning.c). */
+void lxg_wind_burning_extend(struct wind_problem *problem);
+
+/* Heat of burning per ln r, 4 pi r^3 rho eps/L_Edd, and (unless NULL) its partials; 0 without burning. */
+enum lxg_status lxg_wind_burning_rate(const struct wind_constants *constants, const struct wind_place *at,
+                                      double *rate, double partial[WIND_ARGUMENTS]);
+
+/* A first burning wind with luminosity `base` (in L_Edd) at R_0; it is kept. */
+enum lxg_status lxg_wind_burning_first(struct lxg_wind_solver *solver, double base);
+
+/* The wind at that launch radius and critical temperature, without a scan; it is kept. */
+enum lxg_status lxg_wind_cold_at(struct lxg_wind_solver *solver, double ln_rc, double ln_tc);
 
 /* Any wind at that launch radius, the one whose critical temperature is nearest to the iron bump first; it is kept. */
 enum lxg_status lxg_wind_cold_any(struct lxg_wind_solver *solver, double ln_rc);

@@ -283,5 +283,8 @@ enum lxg_status lxg_wind_problem_set(struct wind_problem *problem, const struct 
     problem->row[i] = row[i];
     problem->bvp.conditions[lxg_wind_row_site(row[i].kind)]++;
   }
+  if (wind_unknowns(&problem->constants) == 3) {
+    lxg_wind_burning_extend(problem);
+  }
   return outer_only && (mass || problem->bvp.conditions[0] > 0) ? LXG_NO_SOLUTION : LXG_OK;
 }

@@ -23,6 +23,7 @@ void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason) {
                             .luminosity_infinity = NAN,
                             .lifting_rate = NAN,
                             .kinetic_rate = NAN,
+                            .nuclear_luminosity = NAN,
                             .flow_time = NAN,
                             .diffusion_time = NAN,
                             .tiring_number = NAN,
@@ -44,12 +45,13 @@ void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason) {
 static struct wind_place place_of(const struct lxg_wind_solver *solver, double x, const double y[]) {
   const double *p = lxg_bvp_parameters_const(solver->kept);
   const struct wind_place place = {lxg_wind_ln_r(&solver->problem.constants, x, p), y[0], y[1],
-                                   p[WIND_P_LNMDOT], p[WIND_P_LAMBDA]};
+                                   p[WIND_P_LNMDOT],
+                                   wind_unknowns(&solver->problem.constants) == 3 ? y[2] : p[WIND_P_LAMBDA]};
   return place;
 }
 
 static struct wind_place place_at(const struct lxg_wind_solver *solver, double x) {
-  double y[2];
+  double y[LXG_BVP_MAX_UNKNOWNS];
   lxg_bvp_at(solver->kept, x, y, NULL);
   return place_of(solver, x, y);
 }
@@ -60,6 +62,7 @@ struct gather {
   struct lxg_wind *wind;
   double length[2]; /* of the pieces, in ln r */
   double mass;      /* [g] */
+  double burning;   /* heat [L_Edd] */
   double depth;     /* integral of kappa rho dr over the outer piece */
   double flow_time; /* over the outer piece [s] */
   double radiation; /* energy of radiation in the outer piece [erg] */
@@ -77,12 +80,15 @@ static void visit(void *context, size_t piece, double x, double weight, const do
   struct gather *g = context;
   const struct wind_place at = place_of(g->solver, x, y);
   struct wind_local l;
-  if (lxg_wind_local(&g->solver->problem.constants, &at, &l) != LXG_OK) {
+  double burning = 0.0;
+  if (lxg_wind_local(&g->solver->problem.constants, &at, &l) != LXG_OK ||
+      (piece == 0 && lxg_wind_burning_rate(&g->solver->problem.constants, &at, &burning, NULL) != LXG_OK)) {
     g->failed = true;
     return;
   }
   const double r = exp(at.ln_r), t = exp(at.ln_t), rho = exp(l.ln_rho), dlnr = weight * g->length[piece];
   g->mass += 4.0 * LXG_PI * r * r * r * rho * dlnr;
+  g->burning += burning * dlnr;
   g->table_share += weight * l.table_weight;
   g->weights += weight;
   if (piece == 1) {
@@ -165,7 +171,8 @@ static void derived(const struct lxg_wind_solver *solver, const struct gather *g
   wind->kinetic_rate = 0.5 * rate * v * v;
   wind->flow_time = g->flow_time;
   wind->diffusion_time = g->radiation / wind->photosphere.luminosity;
-  wind->tiring_number = wind->lifting_rate / wind->base.luminosity;
+  wind->nuclear_luminosity = g->burning * constants->l_edd;
+  wind->tiring_number = wind->lifting_rate / (wind->base.luminosity + wind->nuclear_luminosity);
   wind->wind_performance = rate * v * LXG_SPEED_OF_LIGHT / wind->photosphere.luminosity;
   wind->table_share = g->table_share / g->weights;
   wind->residual = solver->residual;

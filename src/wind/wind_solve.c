@@ -20,7 +20,7 @@ static const double aim_share = 0.1; /* of the residual tolerance, what a new me
 
 struct lxg_wind_options lxg_wind_options_default(void) {
   const struct lxg_wind_options options = {
-      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-9, .residual_tolerance = 8e-7};
+      .stages = 5, .capacity = 3000, .newton_tolerance = 1e-8, .residual_tolerance = 8e-7};
   return options;
 }
 
@@ -34,12 +34,14 @@ enum lxg_status lxg_wind_solver_create(const struct lxg_wind_model *model,
   }
   made->options = options != NULL ? *options : lxg_wind_options_default();
   lxg_wind_constants_init(&made->problem.constants, model);
+  made->problem.burning_share = 1.0;
+  const size_t unknowns = wind_unknowns(&made->problem.constants);
   made->problem.coast = lxg_wind_coast_create(&made->problem.constants);
-  made->now = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
-  made->kept = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  made->now = lxg_bvp_create(unknowns, WIND_P_COUNT, made->options.stages, made->options.capacity);
+  made->kept = lxg_bvp_create(unknowns, WIND_P_COUNT, made->options.stages, made->options.capacity);
   bool complete = true;
   for (size_t i = 0; i < LXG_WIND_SLOTS; i++) {
-    made->slot[i] = lxg_bvp_create(2, WIND_P_COUNT, made->options.stages, made->options.capacity);
+    made->slot[i] = lxg_bvp_create(unknowns, WIND_P_COUNT, made->options.stages, made->options.capacity);
     complete = complete && made->slot[i] != NULL;
   }
   made->ivp = lxg_ivp_create(2, LXG_IVP_ORDER_5, 1e-5);
@@ -158,6 +160,16 @@ struct wind_row lxg_wind_row_of(const struct lxg_wind_solver *solver, const stru
   return row;
 }
 
+bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count) {
+  bool radius = false, inner = false;
+  for (size_t i = 0; i < count; i++) {
+    radius = radius || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS;
+    inner = inner || hold[i].quantity == LXG_HELD_BASE_TEMPERATURE ||
+            hold[i].quantity == LXG_HELD_BASE_LUMINOSITY || hold[i].quantity == LXG_HELD_ENVELOPE_MASS;
+  }
+  return radius && !inner;
+}
+
 static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                   struct lxg_error *error) {
   const char *name = lxg_held_name(hold->quantity);
@@ -265,6 +277,26 @@ static enum lxg_status first_wind(struct lxg_wind_solver *solver, const struct w
   return status;
 }
 
+/* Any burning wind, dark at R_0 unless a base luminosity is among the `count` held rows. */
+static enum lxg_status burning_wind(struct lxg_wind_solver *solver, const struct wind_row row[],
+                                    size_t count) {
+  double base = 0.0;
+  for (size_t i = 0; i < count; i++) {
+    base = row[i].kind == LXG_HELD_BASE_LUMINOSITY ? row[i].target : base;
+  }
+  return lxg_wind_burning_first(solver, base);
+}
+
+/* The same with one held row of any kind, dark at R_0. */
+static enum lxg_status burning_first(struct lxg_wind_solver *solver, const struct wind_row *row) {
+  enum lxg_status status = burning_wind(solver, row, 1);
+  if (status == LXG_OK && row->kind != LXG_HELD_BASE_LUMINOSITY) {
+    const struct wind_row pair[2] = {{.kind = LXG_HELD_BASE_LUMINOSITY}, *row};
+    status = lxg_wind_walk(solver, pair);
+  }
+  return status;
+}
+
 enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                struct lxg_wind *wind, struct lxg_error *error) {
   lxg_wind_none(wind, LXG_WIND_NOT_FOUND);
@@ -276,6 +308,9 @@ enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_
   solver->probed_below = solver->probed_above = false;
   solver->newton_steps = 0;
   const struct wind_row row = lxg_wind_row_of(solver, hold);
+  if (wind_unknowns(&solver->problem.constants) == 3) {
+    return finish(solver, burning_first(solver, &row), wind, error);
+  }
   return finish(solver, first_wind(solver, &row), wind, error);
 }
 
@@ -290,9 +325,19 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
   solver->probed_below = solver->probed_above = false;
   solver->newton_steps = 0;
   const struct wind_row row[2] = {lxg_wind_row_of(solver, &hold[0]), lxg_wind_row_of(solver, &hold[1])};
+  if (wind_unknowns(&solver->problem.constants) == 3) {
+    status = burning_wind(solver, row, 2);
+    return finish(solver, status == LXG_OK ? lxg_wind_walk(solver, row) : status, wind, error);
+  }
   const size_t radius = row[0].kind == LXG_HELD_LAUNCH_RADIUS ? 0 : 1;
   if (row[radius].kind == LXG_HELD_LAUNCH_RADIUS) {
     status = first_at(solver, row[radius].target, &row[1 - radius]);
+    const bool shown_none = status == LXG_NO_SOLUTION && solver->probed_below != solver->probed_above;
+    if (status != LXG_OK && status != LXG_BUG && status != LXG_MEMORY && !shown_none && !solver->outer_only) {
+      status = first_wind(solver, &row[1 - radius]); /* at another radius, and from there */
+      status = status == LXG_OK ? lxg_wind_walk(solver, row) : status;
+    }
+
   } else {
     status = first_wind(solver, &row[scannable(row[0].kind) ? 0 : 1]);
     if (status == LXG_OK) {

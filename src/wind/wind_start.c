@@ -16,8 +16,9 @@
 #include <math.h>
 #include <string.h>
 
-static const double start_offset = 1e-3;     /* first step off the critical point, in ln r */
-static const double start_reach = 14.0;      /* farthest march outward, in ln r */
+static const double start_offset = 1e-3; /* first step off the critical point, in ln r */
+static const double start_reach = 14.0;  /* farthest march outward, in ln r */
+static const double start_change = 0.05; /* of ln v over that step at most: cold gas accelerates abruptly */
 static const double start_first_step = 1e-2; /* in ln r */
 static const double start_coarse = 1e-3;     /* of ln Mdot, before the ends of the marches are compared */
 static const double start_close = 1e-3;      /* of ln T: two marches that still are one */
@@ -172,14 +173,14 @@ static enum march_end march_from(struct march *march, struct lxg_ivp *ivp, doubl
   }
   const double critical[2] = {ln_vc, ln_tc};
   record(march->track, ln_rc, critical, at);
-  const double offset = direction * start_offset;
+  const double offset = direction * fmin(start_offset, start_change / fabs(at[0]));
   double ln_r = ln_rc + offset;
   y[0] = ln_vc + at[0] * offset;
   y[1] = ln_tc + at[1] * offset;
   int stopped = MARCH_ON;
-  const enum lxg_status status =
-      lxg_ivp_march(ivp, slope, march, direction > 0 ? watch_outward : watch_inward, march, &ln_r,
-                    march->ln_end, start_first_step, direction > 0 ? START_STEPS : INNER_STEPS, y, &stopped);
+  const enum lxg_status status = lxg_ivp_march(
+      ivp, slope, march, direction > 0 ? watch_outward : watch_inward, march, &ln_r, march->ln_end,
+      fmin(start_first_step, 10.0 * fabs(offset)), direction > 0 ? START_STEPS : INNER_STEPS, y, &stopped);
   march->ended = ln_r;
   return status == LXG_OK ? (enum march_end)stopped : MARCH_FAILED;
 }

@@ -76,6 +76,7 @@ static enum lxg_status fill(const struct lxg_wind_solver *solver, struct lxg_win
                             size_t *critical, size_t *photosphere) {
   const double *nodes = lxg_bvp_nodes(solver->kept), *p = lxg_bvp_parameters_const(solver->kept);
   const size_t intervals = lxg_bvp_intervals(solver->kept);
+  const bool burning = wind_unknowns(&solver->problem.constants) == 3;
   size_t n = 0;
   struct wind_place at = {0};
   for (size_t i = 0; i <= intervals; i++) {
@@ -83,10 +84,10 @@ static enum lxg_status fill(const struct lxg_wind_solver *solver, struct lxg_win
     for (size_t j = 0; j < parts; j++) {
       const double h = i < intervals ? nodes[i + 1] - nodes[i] : 0.0;
       const double x = nodes[i] + h * (double)j / (double)parts;
-      double y[2];
+      double y[LXG_BVP_MAX_UNKNOWNS];
       lxg_bvp_at(solver->kept, x, y, NULL);
       at = (struct wind_place){lxg_wind_ln_r(&solver->problem.constants, x, p), y[0], y[1], p[WIND_P_LNMDOT],
-                               p[WIND_P_LAMBDA]};
+                               burning ? y[2] : p[WIND_P_LAMBDA]};
       if (x == 1.0) {
         *critical = n;
       }

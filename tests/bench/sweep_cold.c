@@ -46,16 +46,17 @@ static void draw(const double u[6], bool dwarf, struct lxg_wind_model *model, do
   *base_t = dwarf ? between(3e7, 3e8, u[4]) : between(2e5, 2e6, u[4]);
 }
 
-/* The same held values on a mesh with another number of collocation points, from the same wind. */
+/* The wind with that rate and launch radius on a mesh with another number of collocation points has the same base temperature. */
 static bool confirmed(const struct lxg_wind_model *model, const struct lxg_wind_hold hold[2], double rate) {
   struct lxg_wind_options options = lxg_wind_options_default();
   options.stages = 4;
   struct lxg_wind_solver *solver = NULL;
+  const struct lxg_wind_hold other[2] = {{LXG_HELD_MASS_LOSS_RATE, rate}, hold[1]};
   struct lxg_wind wind;
   bool good = false;
   if (lxg_wind_solver_create(model, &options, &solver, NULL) == LXG_OK) {
-    good = lxg_wind_solve(solver, hold, &wind, NULL) == LXG_OK &&
-           fabs(wind.value[LXG_HELD_MASS_LOSS_RATE] / rate - 1.0) < 1e-4;
+    good = lxg_wind_solve(solver, other, &wind, NULL) == LXG_OK &&
+           fabs(wind.base.temperature / hold[0].value - 1.0) < 1e-4;
   }
   lxg_wind_solver_destroy(solver);
   return good;
