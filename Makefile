@@ -102,6 +102,7 @@ check:
 	@.ci/need check
 	@$(MAKE) --no-print-directory -s -j$(JOBS) all tests
 	@$(MAKE) --no-print-directory format-check check-layers check-symbols check-clang check-sanitizers check-cli check-python
+	@$(MAKE) --no-print-directory scorecard-quick
 	@$(MAKE) --no-print-directory check-units
 
 demo:
@@ -114,7 +115,7 @@ docs: $(BUILD)/luxgale
 	$(BUILD)/luxgale help case.md > docs/inputs.md
 
 clean:
-	rm -rf $(BUILD) build-clang build-sanitize demo-output
+	rm -rf $(BUILD) build-clang build-sanitize build-fuzz build-thread build-coverage build-mutation demo-output
 
 include tests/reliability/reliability.mk
 

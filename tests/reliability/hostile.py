@@ -10,7 +10,7 @@ file: 1 s, 64 MiB. Numbers: the keys come from `luxgale help case.md`, so new ke
 invalid operations and division by zero; it must end with a defined error or with finite numbers. Ends with
 one JSON line.
 """
-import json, os, re, resource, subprocess, sys, tempfile, time
+import json, os, re, resource, signal, subprocess, sys, tempfile, time
 
 SECONDS, BYTES = 1.0, 64 << 20
 STAR = "star: {mass: 1.0 Msun}\ncomposition: {hydrogen: 0.35, helium: 0.63}\n"
@@ -19,16 +19,22 @@ SYNTAX, REFUSED, LIMIT = "document-syntax", "document-refused", "document-limit"
 
 
 def run(command, stdin=b"", seconds=10.0, folder=None):
-    """Exit status (negative: signal; None: too long), text of stderr, seconds, bytes of memory."""
-    start = time.time()
-    process = subprocess.Popen(command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE, cwd=folder)
+    """Exit status (negative: signal; None: too long), text of stdout, of stderr, seconds. Seconds are of processor time, which does
+    not depend on what else runs; the clock stops a program that waits."""
+    before = resource.getrusage(resource.RUSAGE_CHILDREN)
+    limit = int(seconds) + 1
+    process = subprocess.Popen(command, stdin=subprocess.PIPE, stdout=subprocess.PIPE, stderr=subprocess.PIPE, cwd=folder,
+                               preexec_fn=lambda: resource.setrlimit(resource.RLIMIT_CPU, (limit, limit)))
     try:
-        out, err = process.communicate(stdin, timeout=seconds)
+        out, err = process.communicate(stdin, timeout=30 * seconds)
     except subprocess.TimeoutExpired:
         process.kill()
         process.communicate()
-        return None, "", "", time.time() - start
-    return process.returncode, out.decode(errors="replace"), err.decode(errors="replace"), time.time() - start
+        return None, "", "", 30 * seconds
+    after = resource.getrusage(resource.RUSAGE_CHILDREN)
+    used = after.ru_utime + after.ru_stime - before.ru_utime - before.ru_stime
+    status = None if process.returncode in (-signal.SIGXCPU, -signal.SIGKILL) else process.returncode
+    return status, out.decode(errors="replace"), err.decode(errors="replace"), used
 
 
 def documents():

@@ -19,8 +19,8 @@ BAR = 0.80
 GROUPS = [
     ("units", 0.25, ["src/units.c"], ["units"]),
     ("interpolation", 0.25, ["src/numerics/steffen.c", "src/history/history.c"], ["numerics", "history"]),
-    ("integrals", 0.25, ["src/numerics/quadrature.c", "src/ejecta.c", "src/history/history_excess.c"], ["numerics", "history", "family"]),
-    ("equations", 0.25, ["src/wind/wind_local.c", "src/wind/wind_problem.c", "src/porosity/porosity.c"], ["porosity", "wind"]),
+    ("integrals", 0.2, ["src/numerics/quadrature.c", "src/history/history_excess.c"], ["numerics", "history"]),
+    ("equations", 0.3, ["src/wind/wind_local.c", "src/wind/wind_problem.c", "src/porosity/porosity.c"], ["porosity", "wind:wind-quick"]),
 ]
 EXCHANGE = [(r"<=", "<"), (r">=", ">"), (r"(?<![<\-])<(?![<=])", "<="), (r"(?<![>\-])>(?![>=])", ">="), (r"==", "!="), (r"!=", "=="),
             (r"&&", "||"), (r"\|\|", "&&"), (r"(?<=[\w)\]] )\+(?= )", "-"), (r"(?<=[\w)\]] )-(?= )", "+"), (r"(?<=[\w)\]] )\*(?= )", "/"), (r"(?<=[\w)\]] )/(?= )", "*")]
@@ -63,16 +63,39 @@ def mutants(path):
             yield number, line, re.match(r"\s+", line).group(0) + ";"
 
 
-def build(target):
-    return subprocess.run(["make", "-s", "-C", COPY, "OPT=-O1", "BUILD=build", "WARN=-w", target], stdout=subprocess.DEVNULL,
-                          stderr=subprocess.DEVNULL).returncode == 0
+def run(command):
+    return subprocess.run(command, cwd=COPY, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL).returncode == 0
+
+
+def packages(what):
+    return subprocess.run(["pkg-config", what, "gsl", "yaml-0.1", "libcjson", "check"], capture_output=True, text=True).stdout.split()
+
+
+def compile_one(source):
+    """The object of one source, without debugging data, put into the library."""
+    target = "build/" + source[:-2] + ".o"
+    return run(["gcc", "-std=c11", "-D_POSIX_C_SOURCE=200809L", "-O1", "-fPIC", "-ffp-contract=off", "-w", "-Iinclude", "-Isrc", '-DLXG_VERSION="0"',
+                *packages("--cflags"), "-c", "-o", target, source])
+
+
+def link():
+    tests = [os.path.join(folder, name) for folder, _, names in os.walk(os.path.join(COPY, "build/tests")) for name in names if name.endswith(".o")]
+    library = [os.path.join(folder, name) for folder, _, names in os.walk(os.path.join(COPY, "build/src")) for name in names if name.endswith(".o") and not folder.endswith("cli")]
+    return run(["gcc", "-pthread", "-o", "build/run-tests", *[t for t in tests if "/reliability/" not in t and "/bench/" not in t and "/calibration/" not in t], *library, *packages("--libs"), "-lm"])
+
+
+def contents(source):
+    code = subprocess.run(["objdump", "-d", "-s", "-j", ".text", "-j", ".rodata", "-j", ".rodata.cst8", "build/" + source[:-2] + ".o"], cwd=COPY, capture_output=True).stdout
+    return hashlib.sha256(code).digest()
 
 
 def suites_fail(suites, times):
     for suite in suites:
         try:
-            if subprocess.run([os.path.join(COPY, "build/run-tests"), suite], cwd=COPY, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL,
-                              timeout=10 + 4 * times[suite], env={**os.environ, "CK_DEFAULT_TIMEOUT": "300"}).returncode != 0:
+            name, _, part = suite.partition(":")
+            case = {"CK_RUN_CASE": part} if part else {}
+            if subprocess.run([os.path.join(COPY, "build/run-tests"), name], cwd=COPY, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL,
+                              timeout=10 + 4 * times[suite], env={**os.environ, **case, "CK_DEFAULT_TIMEOUT": "300"}).returncode != 0:
                 return suite
         except subprocess.TimeoutExpired:
             return suite + " (time)"
@@ -86,8 +109,8 @@ def main():
     parser.add_argument("--log", default=os.path.join(ROOT, "build-mutation.log"))
     given = parser.parse_args()
     shutil.rmtree(COPY, ignore_errors=True)
-    shutil.copytree(ROOT, COPY, ignore=shutil.ignore_patterns("build*", ".git", "demo-output"))
-    if not build("tests"):
+    shutil.copytree(ROOT, COPY, ignore=shutil.ignore_patterns("build*", "demo-output", ".git"))
+    if not run(["make", "-s", "-j2", "OPT=-O1 -g0", "BUILD=build", "WARN=-w", "tests"]) or not link():
         sys.exit("the source does not build")
     times = {}
     for suite in sorted({s for group in GROUPS for s in group[3]}):
@@ -97,6 +120,7 @@ def main():
         times[suite] = time.time() - start
         print(f"{suite}: {times[suite]:.1f} s", flush=True)
     chance, killed, tried, table, began = random.Random(given.seed), 0, 0, {}, time.time()
+    before = {}
     log = open(given.log, "w")
     for group, share, files, suites in GROUPS:
         places = [(path, *mutant) for path in files for mutant in mutants(path)]
@@ -105,18 +129,17 @@ def main():
         for path, number, old, new in places:
             if done == wanted:
                 break
-            source, target = os.path.join(COPY, path), "build/" + path[:-2] + ".o"
+            source = os.path.join(COPY, path)
             with open(source) as file:
                 original = file.read()
+            if path not in before:
+                compile_one(path)
+                before[path] = contents(path)
             lines = original.splitlines()
             lines[number] = new
-            obj = os.path.join(COPY, target)
-            before = hashlib.sha256(subprocess.run(["objdump", "-d", "-s", "-j", ".text", "-j", ".rodata", "--no-show-raw-insn", obj], capture_output=True).stdout).digest()
             with open(source, "w") as file:
                 file.write("\n".join(lines) + "\n")
-            built = build(target)
-            after = hashlib.sha256(subprocess.run(["objdump", "-d", "-s", "-j", ".text", "-j", ".rodata", "--no-show-raw-insn", obj], capture_output=True).stdout).digest()
-            if built and before != after and build("tests"):
+            if compile_one(path) and contents(path) != before[path] and link():
                 by = suites_fail(suites, times)
                 done += 1
                 dead += by is not None
@@ -124,7 +147,7 @@ def main():
                 log.flush()
             with open(source, "w") as file:
                 file.write(original)
-            build(target)
+            compile_one(path)
         table[group] = f"{dead}/{done}"
         killed, tried = killed + dead, tried + done
     score = killed / tried if tried else 0.0

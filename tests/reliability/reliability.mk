@@ -2,7 +2,7 @@
 # Reliability: fuzz targets, fault injection, hostile input, stress, and the scorecard that runs them all.
 
 REL       := tests/reliability
-FUZZ_CC   ?= clang-14
+FUZZ_CC   ?= clang
 FUZZ_SAN  := address,undefined
 # target, source, definitions
 FUZZ_TARGETS := units number yaml json set table opacity case lines grid
