@@ -64,7 +64,10 @@ def mutants(path):
 
 
 def run(command):
-    return subprocess.run(command, cwd=COPY, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL).returncode == 0
+    done = subprocess.run(command, cwd=COPY, capture_output=True, text=True, errors="replace")
+    if done.returncode != 0 and "tests" in command:
+        print(done.stdout[-2000:], done.stderr[-2000:], flush=True)
+    return done.returncode == 0
 
 
 def packages(what):
@@ -79,9 +82,13 @@ def compile_one(source):
 
 
 def link():
-    tests = [os.path.join(folder, name) for folder, _, names in os.walk(os.path.join(COPY, "build/tests")) for name in names if name.endswith(".o")]
-    library = [os.path.join(folder, name) for folder, _, names in os.walk(os.path.join(COPY, "build/src")) for name in names if name.endswith(".o") and not folder.endswith("cli")]
-    return run(["gcc", "-pthread", "-o", "build/run-tests", *[t for t in tests if "/reliability/" not in t and "/bench/" not in t and "/calibration/" not in t], *library, *packages("--libs"), "-lm"])
+    def objects(start, without):
+        for folder, _, names in os.walk(os.path.join(COPY, "build", start)):
+            if os.path.basename(folder) not in without:
+                yield from (os.path.join(folder, name) for name in names if name.endswith(".o"))
+
+    return run(["gcc", "-pthread", "-o", "build/run-tests", *objects("tests", ("reliability", "bench", "calibration")), *objects("src", ("cli",)),
+                *packages("--libs"), "-lm"])
 
 
 def contents(source):
@@ -108,8 +115,7 @@ def main():
     parser.add_argument("--seed", type=int, default=1)
     parser.add_argument("--log", default=os.path.join(ROOT, "build-mutation.log"))
     given = parser.parse_args()
-    shutil.rmtree(COPY, ignore_errors=True)
-    shutil.copytree(ROOT, COPY, ignore=shutil.ignore_patterns("build*", "demo-output", ".git"))
+    shutil.copytree(ROOT, COPY, dirs_exist_ok=True, ignore=shutil.ignore_patterns("build*", "demo-output", ".git"))
     if not run(["make", "-s", "-j2", "OPT=-O1 -g0", "BUILD=build", "WARN=-w", "tests"]) or not link():
         sys.exit("the source does not build")
     times = {}

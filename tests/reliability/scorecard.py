@@ -78,7 +78,7 @@ def hostile(job, quick_words, words):
 def stress(quick):
     program = os.path.join(BUILD, "stress")
     halves = [(0, 75), (75, 75)] if quick else [(0, 2500), (2500, 2500)]
-    running = [subprocess.Popen([program, "--cases", str(count), "--first", str(first), "--second", "4", "--again", "4"], stdout=subprocess.PIPE, text=True) for first, count in halves]
+    running = [subprocess.Popen([program, "--cases", str(count), "--first", str(first), "--second", "4", *([] if quick else ["--again", "2"])], stdout=subprocess.PIPE, text=True) for first, count in halves]
     texts = [process.communicate()[0] for process in running]
     results = [json.loads(text.strip().splitlines()[-1]) for text in texts]
     total = {key: sum(r[key] for r in results) for key in ("cases", "solved", "none", "contradictions", "false_proofs")}
