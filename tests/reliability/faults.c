@@ -26,6 +26,7 @@
 #include <stdlib.h>
 #include <string.h>
 #include <sys/mman.h>
+#include <sys/resource.h>
 #include <sys/stat.h>
 #include <sys/syscall.h>
 #include <sys/wait.h>
@@ -33,7 +34,7 @@
 
 int luxgale_main(int argc, char **argv);
 
-enum { MOST_OUTPUTS = 4, MOST_BYTES = 1 << 21, CHILD_SECONDS = 60, LEAKED = 99, NOT_HIT = 98 };
+enum { MOST_OUTPUTS = 4, MOST_BYTES = 1 << 21, CHILD_SECONDS = 120, LEAKED = 99, NOT_HIT = 98 };
 enum job { MEMORY, IO, KILL };
 enum fault {
   FAIL_ONCE,
@@ -213,7 +214,8 @@ static bool one_child(enum fault fault, long countdown, int *state) {
   if (child == 0) {
     all.child = true;
     all.countdown = countdown;
-    alarm(CHILD_SECONDS);
+    const struct rlimit limit = {CHILD_SECONDS, CHILD_SECONDS}; /* processor time: a hang ends by SIGXCPU */
+    setrlimit(RLIMIT_CPU, &limit);
     dup2(all.messages, STDERR_FILENO);
     lseek(STDERR_FILENO, 0, SEEK_SET);
     return true;
