@@ -66,6 +66,14 @@ programs: $(PROGRAMS)
 $(PROGRAMS): %: %.o $(LIB)
 	$(CC) $(OPT) -g -pthread $(LDFLAGS) -o $@ $^ $(PKG_LIBS) -lm
 
+# Speed: medians, ratios against SciPy in the same run, instruction counts (the figures of docs/performance.md).
+bench: $(BUILD)/luxgale programs
+	$(PYTHON) tests/bench/twin_scipy.py $(BUILD)/luxgale $(BUILD)/tests/bench/bench_wind
+	@for what in cold follow family; do printf 'instructions, %s: ' $$what; \
+	  valgrind --tool=callgrind --callgrind-out-file=/dev/null $(BUILD)/tests/bench/bench_wind count $$what 2>&1 | \
+	  sed -n 's/.*Collected : //p'; done
+	$(BUILD)/tests/bench/bench_opacity
+
 format:
 	clang-format -i $(shell git ls-files '*.c' '*.h')
 

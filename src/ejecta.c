@@ -29,6 +29,7 @@ struct engine {
   double total[RATES];
   double scale[RATES]; /* running size of each integral, for the error control */
   double wind_time, first, last, largest_jump;
+  bool failed; /* memory ran out on the way */
 };
 
 /* State at one time. */
@@ -45,15 +46,34 @@ struct lxg_ejecta_options lxg_ejecta_options_default(void) {
   return options;
 }
 
-static struct moment moment_at(const struct engine *engine, double time) {
+/* The family of a time. */
+static const struct lxg_family *family_at(const struct engine *engine, double time, bool porous) {
+  const struct lxg_ejecta_options *options = engine->options;
+  if (options->blend == NULL || (options->above != NULL && !porous)) {
+    return porous ? options->above : engine->family;
+  }
+  struct lxg_history_value parameter = {.luminosity = 1.0};
+  lxg_history_at(options->parameter, LXG_HISTORY_VALUE, time, &parameter);
+  return lxg_family_blend_at(options->blend, log(parameter.luminosity));
+}
+
+static struct moment moment_at(struct engine *engine, double time) {
   struct moment m = {.time = time};
   struct lxg_history_value value = {0};
   lxg_history_at(engine->history, LXG_HISTORY_VALUE, time, &value);
   m.luminosity = value.luminosity;
   m.time_scale = value.time_scale;
-  m.porous = engine->above != NULL && value.luminosity > engine->options->limit;
-  m.members = lxg_family_index_branch(m.porous ? engine->above : engine->index, value.luminosity,
-                                      engine->options->branch, &m.place);
+  m.porous = engine->options->above != NULL && value.luminosity > engine->options->limit;
+  const bool changing = engine->options->blend != NULL && (m.porous || engine->options->above == NULL);
+  struct lxg_family_index *own = NULL;
+  if (changing &&
+      lxg_family_index_create(family_at(engine, time, m.porous), engine->key, &own, NULL) != LXG_OK) {
+    engine->failed = true; /* out of memory */
+  }
+  const struct lxg_family_index *index = changing ? own : m.porous ? engine->above : engine->index;
+  m.members =
+      index == NULL ? 0 : lxg_family_index_branch(index, value.luminosity, engine->options->branch, &m.place);
+  lxg_family_index_destroy(own);
   m.rate[RATE_RADIATED] = value.luminosity;
   if (m.members > 0) {
     const double rate = m.place.value[LXG_FAMILY_MASS_LOSS_RATE],
@@ -116,7 +136,7 @@ static int regime(const struct moment *m) {
 }
 
 /* Narrows an edge between two regimes in time; `high` is the first moment of the other side. */
-static void find_edge(const struct engine *engine, const struct moment *a, const struct moment *b,
+static void find_edge(struct engine *engine, const struct moment *a, const struct moment *b,
                       struct moment *low, struct moment *high) {
   *low = *a;
   *high = *b;
@@ -266,6 +286,10 @@ enum lxg_status lxg_ejecta_compute(const struct lxg_family *family, const struct
   conclude(&engine, ejecta);
   lxg_family_index_destroy(above);
   lxg_family_index_destroy(index);
+  if (engine.failed) {
+    lxg_ejecta_free(ejecta);
+    return lxg_error_set(error, LXG_MEMORY, "memory", "ejecta: out of memory");
+  }
   return LXG_OK;
 }
 

@@ -55,8 +55,11 @@ struct lxg_ejecta_options {
   enum lxg_branch branch;
   const struct lxg_family *above; /* winds of epochs brighter than `limit`; NULL: one family for all */
   double limit;                   /* [erg s^-1] */
-  double tolerance;               /* relative error of the integrals over one interval between epochs */
-  int depth;                      /* halvings of such an interval at most */
+  struct lxg_family_blend *
+      blend; /* winds whose model changes with time; NULL: it does not. Replaces the (first) family, or `above` */
+  const struct lxg_history *parameter; /* of the blend: ln of its value at a time is the blend's x */
+  double tolerance;                    /* relative error of the integrals over one interval between epochs */
+  int depth;                           /* halvings of such an interval at most */
 };
 struct lxg_ejecta_options lxg_ejecta_options_default(void);
 

@@ -127,6 +127,19 @@ enum lxg_wind_reason lxg_family_missing(const struct lxg_family *family, enum lx
 /* Numbers at an arc length (clipped to the family). */
 void lxg_family_at(const struct lxg_family *family, double arc, struct lxg_family_place *place);
 
+/* Families at any value of a model's parameter, interpolated between families traced at `count` distinct values x (Chebyshev points are best; a
+ * logarithm where the parameter spans much). The families may be freed afterwards. LXG_MEMORY; LXG_NO_SOLUTION "family-blend" when mass-loss rates turn round
+ * along a family or are not shared by all. */
+enum { LXG_FAMILY_SHARES = 400 }; /* places of an interpolated family */
+struct lxg_family_blend;
+enum lxg_status lxg_family_blend_create(const struct lxg_family family[], const double x[], size_t count,
+                                        struct lxg_family_blend **blend, struct lxg_error *error);
+void lxg_family_blend_destroy(struct lxg_family_blend *blend);
+
+/* The family at x within the values: it has no winds, only what lxg_family_at, lxg_family_missing and an index read. Owned by the blend and
+ * overwritten by the next call. */
+const struct lxg_family *lxg_family_blend_at(struct lxg_family_blend *blend, double x);
+
 /* Every wind with two held quantities that one family connects: winds[0] is the one of the wanted branch, which the solver
  * keeps; the others follow in no order (at most `capacity` in all; *count may be larger). LXG_NO_SOLUTION: none, and
  * winds[0].reason says why. LXG_INPUT: the two are not independent or out of range. */

@@ -154,4 +154,10 @@ struct lxg_history_reading {
 enum lxg_status lxg_history_read(struct lxg_node *section, const struct lxg_history_reading *reading,
                                  struct lxg_history **history, struct lxg_error *error);
 
+/* Reads the table of `porosity.file`, the factor of the law `reduction` against time: a history whose "luminosity" is the factor [1]. No file:
+ * `*factor` is NULL. It must cover `history` (unless NULL): "porosity-span"; "porosity-factor" for one below 1; others as above. */
+enum lxg_status lxg_history_read_factor(struct lxg_node *section, struct lxg_files *files,
+                                        const struct lxg_history *history, struct lxg_history **factor,
+                                        struct lxg_error *error);
+
 #endif

@@ -29,6 +29,9 @@
 
 /* Critical optical depth below which diffusion is a doubtful description of the light (warning `thin-wind`). */
 #define LXG_REPORT_THIN_DEPTH 10.0
+#define LXG_REPORT_FLUX_LIMIT                                                                                \
+  (1.0 / 3.0) /* share of c a T^4 above which a diffusive flux is doubtful (common practice, no source) */
+#define LXG_REPORT_SPEED_LIMIT 0.03 /* of the speed of light (common practice, no source) */
 
 /* Version of the program, e.g. "0.1.0". */
 const char *lxg_report_version(void);
@@ -87,6 +90,10 @@ void lxg_report_handover(struct lxg_node *root, const struct lxg_report_handover
 void lxg_report_handover_warnings(struct lxg_node *warnings, const struct lxg_report_handover *handover,
                                   double tolerance);
 
+/* `reduction:` winds between families of several factors, and the warning blend-error. */
+void lxg_report_blend(struct lxg_node *root, size_t families, double deviation);
+void lxg_report_blend_warning(struct lxg_node *warnings, double deviation);
+
 /* `driving:` can the light have thrown out what is claimed? */
 void lxg_report_driving(struct lxg_node *root, const struct lxg_driving_verdict *verdict);
 
@@ -105,7 +112,7 @@ void lxg_report_ejecta_warnings(struct lxg_node *warnings, const struct lxg_ejec
 void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline);
 void lxg_report_no_decline(struct lxg_node *root, const struct lxg_error *error);
 
-/* Warnings about it: start-clipped, thin-wind, decline-lost. */
+/* Warnings about it: start-clipped, no-wind, thin-wind, decline-lost. */
 void lxg_report_decline_warnings(struct lxg_node *warnings, const struct lxg_decline *decline);
 
 /* One row a state; the columns that scripts rely on come first. `l_edd` [erg s^-1]. */

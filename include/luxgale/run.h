@@ -45,6 +45,7 @@ struct lxg_case {
   struct lxg_wind_hold hold[2]; /* in the order of the case; with burning the dark base comes first */
   size_t holds;
   struct lxg_history *history;
+  struct lxg_history *reduction; /* factor of the law `reduction` against time; NULL: constant */
   bool history_from_decline; /* the history is the wind phase of the eruption, computed when it is needed */
   struct lxg_decline_options decline;
   struct lxg_family_options limits; /* of the families that are traced */

@@ -128,10 +128,12 @@ struct lxg_wind {
   double gamma_max_temperature; /* gas temperature there [K] */
   double mach_min, mach_max;    /* v/c_T between R_0 and 1000 R_ph */
   double beta_min, beta_max;    /* gas pressure over total pressure between R_0 and R_ph */
-  double table_share;           /* share of the mesh whose opacity came from a table */
-  double residual;              /* largest relative residual of (W1)-(W4) off the mesh */
-  size_t mesh_points;           /* mesh intervals */
-  int newton_steps;             /* Newton steps of the whole search */
+  double
+      flux_ratio_max; /* largest L/(4 pi r^2 c a T^4) inside R_ph: 1 would be light that streams freely, 1/4 is the photosphere */
+  double table_share; /* share of the mesh whose opacity came from a table */
+  double residual;    /* largest relative residual of (W1)-(W4) off the mesh */
+  size_t mesh_points; /* mesh intervals */
+  int newton_steps;   /* Newton steps of the whole search */
 };
 
 /* A result without a wind: all numbers NaN, the reason as given. */

@@ -4,6 +4,7 @@
  */
 #include "cli.h"
 
+#include "luxgale/decline.h"
 #include "luxgale/keys.h"
 #include "luxgale/output.h"
 #include "luxgale/report.h"
@@ -189,6 +190,13 @@ static void print_reasons(struct lxg_buffer *out) {
     lxg_buffer_format(out, "  %s", lxg_wind_reason_code((enum lxg_wind_reason)reason));
     pad(out, from, KEY_WIDTH);
     lxg_buffer_format(out, "  %s\n", lxg_wind_reason_text((enum lxg_wind_reason)reason));
+  }
+  lxg_buffer_text(out, "\nWhere a whole eruption ends (`decline`):\n\n");
+  for (int end = 0; end < LXG_DECLINE_END_COUNT; end++) {
+    const size_t from = out->size;
+    lxg_buffer_format(out, "  %s", lxg_decline_end_code((enum lxg_decline_end)end));
+    pad(out, from, KEY_WIDTH);
+    lxg_buffer_format(out, "  %s\n", lxg_decline_end_text((enum lxg_decline_end)end));
   }
 }
 

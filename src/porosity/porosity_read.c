@@ -45,8 +45,14 @@ enum lxg_status lxg_porosity_read(struct lxg_node *section, struct lxg_porosity 
   porosity->law = (enum lxg_porosity_law)law;
   const bool reduction = porosity->law == LXG_POROSITY_REDUCTION,
              length = porosity->law == LXG_POROSITY_LENGTH;
+  struct lxg_node *table = lxg_node_find(section, "file");
+  const bool file = !lxg_node_is_none(table); /* then the factor follows the history (history.h) */
+  if (status == LXG_OK && file && !reduction) {
+    return lxg_node_error(table, error, "porosity-unused", "the chosen law of porosity has no use for it");
+  }
   if (status == LXG_OK) {
-    status = read_number(section, "factor", reduction, reduction, &porosity->factor, error);
+    porosity->factor = 1.0;
+    status = read_number(section, "factor", reduction && !file, reduction && !file, &porosity->factor, error);
   }
   if (status == LXG_OK) {
     status = read_number(section, "scale", length, length, &porosity->scale, error);

@@ -106,7 +106,8 @@ void lxg_report_decline(struct lxg_node *root, const struct lxg_decline *decline
   add_curve(section, "thin_free_free_light", &decline->freefree);
   add_join(section, &decline->join);
   add_end(section, decline);
-  lxg_node_add_text(section, "thick_end_code", lxg_wind_reason_code(decline->thick_end));
+  lxg_node_add_text(section, "thick_end_code",
+                    decline->join.wind ? lxg_wind_reason_code(decline->thick_end) : NULL);
   lxg_node_add_integer(section, "states", (long long)decline->count);
   lxg_node_add_integer(section, "newton_steps", decline->newton_steps);
 }
@@ -124,6 +125,11 @@ void lxg_report_decline_warnings(struct lxg_node *warnings, const struct lxg_dec
         warnings, "start-clipped",
         "the steady states end below the wanted start mass: the eruption starts from the largest one, and "
         "the mass above it is not accounted for");
+  }
+  if (decline->wind_states == 0) {
+    lxg_report_warn(warnings, "no-wind",
+                    "the eruption has no wind: the star has none over a burning base, or the start lies "
+                    "beyond its end");
   }
   if (decline->wind_duration > decline->thick_duration && decline->wind_states > 0) {
     lxg_report_warn(

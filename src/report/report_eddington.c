@@ -140,6 +140,19 @@ void lxg_report_handover_warnings(struct lxg_node *warnings, const struct lxg_re
   }
 }
 
+void lxg_report_blend(struct lxg_node *root, size_t families, double deviation) {
+  struct lxg_node *section = lxg_node_add_mapping(root, "reduction");
+  lxg_node_add_integer(section, "families", (long long)families);
+  lxg_node_add_number(section, "rate_error", deviation);
+}
+
+void lxg_report_blend_warning(struct lxg_node *warnings, double deviation) {
+  struct lxg_node *warning =
+      lxg_report_warn(warnings, "blend-error",
+                      "winds between the families of several reduction factors are interpolated coarsely");
+  lxg_node_add_number(warning, "rate_error", deviation);
+}
+
 /* ---- the verdict on a claim -------------------------------------------------------------------------------------- */
 
 static void add_check(struct lxg_node *list, const struct lxg_driving_verdict *verdict, int criterion) {

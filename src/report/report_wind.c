@@ -61,6 +61,7 @@ static void add_checks(struct lxg_node *section, const struct lxg_wind *wind) {
   lxg_node_add_number(checks, "mach_max", wind->mach_max);
   lxg_node_add_number(checks, "gas_pressure_share_min", wind->beta_min);
   lxg_node_add_number(checks, "gas_pressure_share_max", wind->beta_max);
+  lxg_node_add_number(checks, "radiation_flux_share_max", wind->flux_ratio_max);
   lxg_node_add_number(checks, "opacity_table_share", wind->table_share);
   struct lxg_node *peak = lxg_node_add_mapping(section, "eddington_ratio_peak");
   lxg_node_add_number(peak, "value", wind->gamma_max);
@@ -104,6 +105,19 @@ void lxg_report_wind_warnings(struct lxg_node *warnings, const struct lxg_wind *
         "the critical point is not deep enough for radiative diffusion to be a good description");
     lxg_node_add_number(warning, "optical_depth", wind->critical.optical_depth);
     lxg_node_add_number(warning, "limit", LXG_REPORT_THIN_DEPTH);
+  }
+  if (wind->flux_ratio_max > LXG_REPORT_FLUX_LIMIT) {
+    struct lxg_node *warning = lxg_report_warn(
+        warnings, "streaming-light",
+        "somewhere inside the photosphere light comes close to streaming freely: diffusion overstates it");
+    lxg_node_add_number(warning, "radiation_flux_share_max", wind->flux_ratio_max);
+    lxg_node_add_number(warning, "limit", LXG_REPORT_FLUX_LIMIT);
+  }
+  if (wind->value[LXG_HELD_TERMINAL_SPEED] > LXG_REPORT_SPEED_LIMIT * LXG_SPEED_OF_LIGHT) {
+    struct lxg_node *warning =
+        lxg_report_warn(warnings, "fast-flow",
+                        "terms of first order in v/c, which the equations leave out, are no longer small");
+    lxg_node_add_number(warning, "terminal_speed_km_s", wind->value[LXG_HELD_TERMINAL_SPEED] / LXG_KM);
   }
   if (wind->table_share > 0.0 && wind->table_share < 1.0) {
     struct lxg_node *warning =

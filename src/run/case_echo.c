@@ -28,7 +28,7 @@ static void echo_porosity(const struct lxg_case *input, struct lxg_node *section
   const enum lxg_porosity_law law = input->porosity.law;
   lxg_node_add_text(porosity, "law",
                     lxg_porosity_law_name(law == LXG_POROSITY_POWER ? LXG_POROSITY_LENGTH : law));
-  if (law == LXG_POROSITY_REDUCTION) {
+  if (law == LXG_POROSITY_REDUCTION && input->reduction == NULL) {
     lxg_node_add_number(porosity, "factor", input->porosity.factor);
   }
   if (law == LXG_POROSITY_LENGTH || law == LXG_POROSITY_POWER) {

@@ -2,12 +2,14 @@
  *
  * case_read.c - a case document into the structs of the stages; each module reads its own section (see run.h).
  */
+#include "luxgale/constants.h"
 #include "luxgale/keys.h"
 #include "luxgale/run.h"
 
 #include <string.h>
 
 static const long long case_version = 1;
+static const double ignition_margin = 1.1; /* over a burning base larger envelopes would have burnt before */
 
 static enum lxg_status read_version(struct lxg_node *root, struct lxg_error *error) {
   struct lxg_node *node = NULL;
@@ -35,7 +37,8 @@ static enum lxg_status refuse_later(struct lxg_node *root, struct lxg_error *err
   return LXG_OK;
 }
 
-/* With burning the luminosity at R_0 is held at zero, unless the case gives the star's own. */
+/* With burning the luminosity at R_0 is held at zero, unless the case gives the star's own, and families end at the ignition
+ * mass. */
 static enum lxg_status hold_dark_base(struct lxg_case *input, struct lxg_node *section,
                                       struct lxg_error *error) {
   if (input->burning.law == LXG_BURNING_NONE) {
@@ -50,6 +53,8 @@ static enum lxg_status hold_dark_base(struct lxg_case *input, struct lxg_node *s
     return lxg_node_error(section, error, "hold-burning",
                           "with burning the luminosity at R_0 is zero already: hold one quantity at most");
   }
+  const double ignition = lxg_star_envelope_mass(&input->star, input->settings.ignition_pressure);
+  input->limits.envelope_most = ignition_margin * ignition * LXG_GRAVITATION / input->star.gm;
   input->hold[1] = input->hold[0];
   input->hold[0] = (struct lxg_wind_hold){LXG_HELD_BASE_LUMINOSITY, 0.0};
   input->holds++;
@@ -139,6 +144,10 @@ static enum lxg_status read_sections(struct lxg_case *input, struct lxg_error *e
     status = read_luminosity(input, lxg_node_find(root, "luminosity"), error);
   }
   if (status == LXG_OK) {
+    status = lxg_history_read_factor(lxg_node_find(root, "porosity"), &input->files, input->history,
+                                     &input->reduction, error);
+  }
+  if (status == LXG_OK) {
     status = lxg_driving_read(lxg_node_find(root, "driving"), &input->claimed, &input->claim, error);
   }
   return status == LXG_OK ? lxg_document_check_unused(input->document, error) : status;
@@ -169,6 +178,7 @@ enum lxg_status lxg_case_read(struct lxg_case *input, const char *path, const ch
 void lxg_case_free(struct lxg_case *input) {
   if (input != NULL) {
     lxg_history_destroy(input->history);
+    lxg_history_destroy(input->reduction);
     lxg_opacity_destroy(input->opacity);
     lxg_files_free(&input->files);
     lxg_document_destroy(input->document);

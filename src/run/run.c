@@ -7,6 +7,8 @@
 #include "luxgale/report.h"
 #include "run/run_internal.h"
 
+#include <string.h>
+
 void lxg_results_free(struct lxg_results *results) {
   if (results != NULL) {
     lxg_document_destroy(results->report);
@@ -39,6 +41,11 @@ void lxg_run_unanswered(struct lxg_results *results, struct lxg_error *error) {
 
 enum lxg_status lxg_run_require_holds(const struct lxg_case *input, const char *command, size_t count,
                                       struct lxg_error *error) {
+  if (input->reduction != NULL && strcmp(command, "outburst") != 0) {
+    return lxg_error_set(error, LXG_INPUT, "porosity-history",
+                         "%s: error: porosity.file: `%s` follows no history; give porosity.factor",
+                         lxg_document_name(input->document), command);
+  }
   if (input->holds == count) {
     return LXG_OK;
   }

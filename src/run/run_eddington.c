@@ -107,7 +107,7 @@ enum lxg_status lxg_run_driving(const struct lxg_case *input, const struct lxg_e
                                 struct lxg_node *root, struct lxg_error *error) {
   struct lxg_driving_light light;
   struct lxg_driving_verdict verdict;
-  if (!input->claimed) {
+  if (!input->claimed || input->history == NULL) {
     return LXG_OK;
   }
   enum lxg_status status = lxg_driving_light_of(input->history, &light, error);

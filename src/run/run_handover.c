@@ -89,7 +89,23 @@ enum lxg_status lxg_run_winds(const struct lxg_case *input, enum lxg_branch bran
       input->porosity.law != LXG_POROSITY_NONE && input->porosity.when == LXG_POROSITY_SUPER_EDDINGTON;
   winds->limit = INFINITY;
   if (!winds->two) {
-    return trace(input, &input->porosity, brightest, &winds->family, error);
+    return input->reduction != NULL ? lxg_run_blend(input, key, winds, &winds->family, error)
+                                    : trace(input, &input->porosity, brightest, &winds->family, error);
+  }
+  if (input->reduction !=
+      NULL) { /* at the limit the factor is whatever it is at that time: no common rate to seek */
+    winds->porous_rate = NAN;
+    enum lxg_status traced = trace(input, &plain, 0.0, &winds->family, error);
+    if (traced == LXG_OK) {
+      traced = lxg_run_blend(input, key, winds, &winds->above, error);
+    }
+    if (traced == LXG_OK) {
+      const double top = brightest_of(&winds->family, key);
+      winds->homogeneous_limit = photosphere ? fmin(top, input->l_edd) : top;
+      winds->limit = winds->homogeneous_limit;
+      winds->plain_rate = NAN;
+    }
+    return traced;
   }
   enum lxg_status status = trace(input, &plain, 0.0, &winds->family, error);
   if (status == LXG_OK) {
@@ -118,4 +134,5 @@ enum lxg_status lxg_run_winds(const struct lxg_case *input, enum lxg_branch bran
 void lxg_run_winds_free(struct lxg_run_winds *winds) {
   lxg_family_free(&winds->family);
   lxg_family_free(&winds->above);
+  lxg_family_blend_destroy(winds->blend);
 }

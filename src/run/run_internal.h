@@ -33,12 +33,20 @@ struct lxg_run_winds {
   struct lxg_family family; /* of all epochs, or of those up to the limit */
   struct lxg_family above;  /* porous winds of brighter epochs; empty unless `two` */
   bool two;
-  double homogeneous_limit;       /* [erg s^-1] */
-  double limit;                   /* where plain hands over to porous [erg s^-1]; infinite unless `two` */
+  struct lxg_family_blend
+      *blend;               /* porous winds at any factor of `reduction`; NULL: the factor is constant */
+  size_t blended;           /* families behind it */
+  double blend_error;       /* measured: largest deviation of the rate at equal luminosity */
+  double homogeneous_limit; /* [erg s^-1] */
+  double limit;             /* where plain hands over to porous [erg s^-1]; infinite unless `two` */
   double plain_rate, porous_rate; /* of both families at the limit [g s^-1]; NaN where there is no wind */
 };
 enum lxg_status lxg_run_winds(const struct lxg_case *input, enum lxg_branch branch,
                               struct lxg_run_winds *winds, struct lxg_error *error);
+/* Families for a changing factor of `reduction`; `middle` is the one traced as a check. */
+enum lxg_status lxg_run_blend(const struct lxg_case *input, enum lxg_held key, struct lxg_run_winds *winds,
+                              struct lxg_family *middle, struct lxg_error *error);
+
 void lxg_run_winds_free(struct lxg_run_winds *winds);
 
 /* `super_eddington:` by kappa_e, with bounds, and by the opacities of the winds (`ejecta` NULL: there are none). */

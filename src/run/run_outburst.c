@@ -52,6 +52,8 @@ static enum lxg_status compute(const struct lxg_case *input, const struct lxg_ru
     return status;
   }
   ejecting.limit = outburst->winds.limit;
+  ejecting.blend = outburst->winds.blend;
+  ejecting.parameter = input->reduction;
   ejecting.above = outburst->winds.two ? &outburst->winds.above : NULL;
   return lxg_ejecta_compute(&outburst->winds.family, input->history, input->star.gm / input->star.radius,
                             &ejecting, &outburst->ejecta, error);
@@ -84,10 +86,16 @@ static enum lxg_status report(const struct lxg_case *input, struct outburst *out
     if (outburst->winds.two) {
       lxg_report_handover(root, &handover);
     }
+    if (outburst->winds.blend != NULL) {
+      lxg_report_blend(root, outburst->winds.blended, outburst->winds.blend_error);
+    }
     lxg_report_family(root, &outburst->winds.family);
     struct lxg_node *warnings = lxg_report_warnings(root);
     if (outburst->winds.two) {
       lxg_report_handover_warnings(warnings, &handover, input->settings.handover_jump);
+    }
+    if (outburst->winds.blend != NULL && outburst->winds.blend_error > input->settings.blend_error) {
+      lxg_report_blend_warning(warnings, outburst->winds.blend_error);
     }
     lxg_report_ejecta_warnings(warnings, &outburst->ejecta, input->history, &outburst->excess);
   }

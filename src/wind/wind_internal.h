@@ -134,11 +134,11 @@ struct lxg_wind_solver {
   struct lxg_bvp *slot[LXG_WIND_SLOTS]; /* set aside by lxg_wind_mark */
   struct lxg_ivp *ivp;
   struct wind_track outer, inner, scratch;
-  bool have;        /* `kept` holds a wind */
-  bool outer_only; /* new winds are solved outside the critical point only */
+  bool have;                       /* `kept` holds a wind */
+  bool outer_only;                 /* new winds are solved outside the critical point only */
   bool probed_below, probed_above; /* scans since the search began met winds below and above the held value */
-  int newton_steps; /* since the search began */
-  double residual;  /* of the kept wind */
+  int newton_steps;                /* since the search began */
+  double residual;                 /* of the kept wind */
 };
 
 /* Present value of a held kind in the units of a row's target, from the kept wind; NaN if it has none. */

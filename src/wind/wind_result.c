@@ -35,6 +35,7 @@ void lxg_wind_none(struct lxg_wind *wind, enum lxg_wind_reason reason) {
                             .mach_max = NAN,
                             .beta_min = NAN,
                             .beta_max = NAN,
+                            .flux_ratio_max = NAN,
                             .table_share = NAN,
                             .residual = NAN};
   for (size_t i = 0; i < LXG_HELD_COUNT; i++) {
@@ -100,6 +101,9 @@ static void visit(void *context, size_t piece, double x, double weight, const do
   const double c_t2 = l.c * l.g;
   extremes(sqrt(l.w / l.c), &wind->mach_min, &wind->mach_max);
   extremes(lxg_eos_beta(c_t2, t, rho), &wind->beta_min, &wind->beta_max);
+  const double flux_ratio = l.lhat * g->solver->problem.constants.l_edd /
+                            (4.0 * LXG_PI * r * r * LXG_SPEED_OF_LIGHT * LXG_RADIATION * pow(t, 4.0));
+  wind->flux_ratio_max = isnan(wind->flux_ratio_max) ? flux_ratio : fmax(wind->flux_ratio_max, flux_ratio);
   if (!(wind->gamma_max >= l.gamma)) {
     wind->gamma_max = l.gamma;
     wind->gamma_max_radius = r;

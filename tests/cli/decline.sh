@@ -32,6 +32,7 @@ expect "no fuel" 2 'burning-fuel' "" "$LUXGALE" decline --set composition.hydrog
 expect "something held" 2 'hold-count' "" "$LUXGALE" decline --set hold.envelope_mass=1e-6 case.yaml
 expect "two held over a burning base" 2 'hold-burning' "" "$LUXGALE" wind --set hold.envelope_mass=1e-6 --set hold.launch_radius='1 Rsun' case.yaml
 expect "one burning wind" 0 '*' 'envelope_mass_msun: 2\.(1999|2)' "$LUXGALE" wind -q --set hold.envelope_mass=2.2e-6 case.yaml
+expect "a light dwarf has no wind" 0 "no-wind" "ejected_mass_msun: 0.0" "$LUXGALE" decline --set star.mass=0.62 --set composition.hydrogen=0.7 --set composition.cno=0 --set decline.start_temperature=null case.yaml
 expect "history of an eruption" 0 '*' 'none: 0' "$LUXGALE" outburst -q --set luminosity.kind=decline case.yaml
 expect "history with a stray key" 2 'luminosity-unused' "" "$LUXGALE" outburst --set luminosity.kind=decline --set luminosity.file=a.ecsv case.yaml
 finish

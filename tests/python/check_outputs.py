@@ -74,6 +74,34 @@ def outburst(folder, example):
     return report
 
 
+DECLINE = [("time_d", "d"), ("phase", None), ("envelope_mass_msun", "Msun"), ("mass_loss_rate_msun_yr", "Msun/yr"),
+           ("burning_rate_msun_yr", "Msun/yr"), ("luminosity_erg_s", "erg/s"), ("luminosity_ledd", None),
+           ("nuclear_luminosity_erg_s", "erg/s"), ("photosphere_radius_rsun", "Rsun"), ("photosphere_temperature_k", "K"),
+           ("photosphere_speed_km_s", "km/s"), ("terminal_speed_km_s", "km/s")]
+
+
+def decline(folder):
+    """Table of an eruption against its report: integrals by the trapezoidal rule, the photosphere's law, phases in order."""
+    path = os.path.join(folder, "decline.ecsv")
+    report = yaml.safe_load(run("decline", "decline.yaml", "--epochs", path))["decline"]
+    states = table(path)
+    for place, (name, unit) in enumerate(DECLINE):
+        check(f"decline: column {place}", states.colnames[place] == name)
+        if unit:
+            check(f"decline: unit of {name}", states[name].unit == u.Unit(unit))
+    time = number(states["time_d"])
+    for rate, total in ("mass_loss_rate_msun_yr", "ejected_mass_msun"), ("burning_rate_msun_yr", "burnt_mass_msun"):
+        mass = np.trapz(np.nan_to_num(number(states[rate])), time) / 365.25
+        check(f"decline: {total}", np.isclose(mass, report[total], rtol=0.01), f"{mass} {report[total]}")
+    radius, temperature = number(states["photosphere_radius_rsun"]) * 6.957e10, number(states["photosphere_temperature_k"])
+    light = 4 * np.pi * radius**2 * 5.670374419e-5 * temperature**4
+    check("decline: photosphere", np.allclose(light, number(states["luminosity_erg_s"]), rtol=1e-3))
+    phases = [str(p) for p in states["phase"]]
+    check("decline: wind, then static", phases == sorted(phases, reverse=True) and len(set(phases)) == 2)
+    check("decline: shares", np.isclose(report["light_share"] + report["lifting_share"] + report["kinetic_share"], 1))
+    check("decline: ends", report["wind_duration_d"] < report["turnoff_d"] == time[-1])
+
+
 def forms():
     """The same tree as YAML and as JSON, for strict readers."""
     first = yaml.safe_load(run("wind", "wind.yaml"))
@@ -96,6 +124,7 @@ def main():
         golden("supergiant", outburst(folder, "supergiant.yaml"))
         golden("no-wind", yaml.safe_load(run("outburst", "no-wind.yaml", status=1)))
         outburst(folder, "reference.yaml")
+        decline(folder)
         # what an astronomer expects of a nova: Mass and speeds of the literature (see docs/physics.md)
         check("nova mass", 1e-6 < nova["ejecta"]["mass_msun"] < 1e-4, nova["ejecta"]["mass_msun"])
         check("nova speed", 300 < nova["ejecta"]["mean_speed_km_s"] < 2000, nova["ejecta"]["mean_speed_km_s"])

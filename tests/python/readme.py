@@ -1,5 +1,5 @@
 # SPDX-License-Identifier: GPL-3.0-or-later
-"""readme.py PROGRAM [--write]: the outputs shown in README.md against what its commands print now, within 1 %; --write renews them."""
+"""readme.py PROGRAM [--write]: the outputs shown in README.md and docs/super-eddington.md against what its commands print now, within 1 %; --write renews them."""
 import math
 import os
 import subprocess
@@ -26,8 +26,8 @@ def same(shown, now):
         return value == found
 
 
-def main():
-    path = os.path.join(ROOT, "README.md")
+def check(name):
+    path = os.path.join(ROOT, name)
     with open(path) as file:
         lines = file.read().split("\n")
     bad, now = 0, None
@@ -42,15 +42,19 @@ def main():
                 place = next((k for k, text in enumerate(now) if text.split(":")[0] == line[4:].split(":")[0]), None)
                 if place is None or not same(line[4:], now[place]):
                     bad += 1
-                    print(f"README.md:{i + 1}: shows {line.strip()!r}, now {None if place is None else now[place].strip()!r}")
+                    print(f"{name}:{i + 1}: shows {line.strip()!r}, now {None if place is None else now[place].strip()!r}")
                 if place is not None:
                     lines[i] = "    " + now[place]
                     now = now[place + 1:]
     if "--write" in sys.argv:
         with open(path, "w") as file:
             file.write("\n".join(lines))
-    print(f"README: {'as shown' if bad == 0 else f'{bad} lines differ'}")
-    return 1 if bad else 0
+    print(f"{name}: {'as shown' if bad == 0 else f'{bad} lines differ'}")
+    return bad
+
+
+def main():
+    return 1 if sum([check(name) for name in ("README.md", "docs/super-eddington.md")]) else 0
 
 
 if __name__ == "__main__":
