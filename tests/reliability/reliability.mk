@@ -69,3 +69,5 @@ coverage:
 
 mutation:
 	@$(PYTHON) $(REL)/mutation.py
+
+-include $(BUILD)/$(REL)/luxgale_main.d
