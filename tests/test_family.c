@@ -151,6 +151,120 @@ START_TEST(missing_members) {
 }
 END_TEST
 
+/* No energy, no wind: what reaches infinity is L + Mdot v^2/2 > 0, summed here from the structure of solved winds, and it never
+ * exceeds the energy rate; so none or a negative one is refused as energy-limited. */
+START_TEST(energy_limited) {
+  struct setup s = setup(1.02, LXG_OPACITY_REFERENCE, 1.0e8);
+  for (size_t i = 0; i < s.family.count; i += s.family.count / 9) {
+    const struct lxg_wind *wind = &s.family.wind[i];
+    const double leaves = wind->luminosity_infinity + 0.5 * wind->value[LXG_HELD_MASS_LOSS_RATE] *
+                                                          pow(wind->value[LXG_HELD_TERMINAL_SPEED], 2.0);
+    ck_assert(leaves > 0.0 && leaves < wind->value[LXG_HELD_ENERGY_RATE]);
+  }
+  const struct lxg_wind_hold hold[2] = {{LXG_HELD_ENERGY_RATE, -0.07 * s.l_edd},
+                                        {LXG_HELD_LAUNCH_RADIUS, 2e10}};
+  struct lxg_wind winds[2];
+  size_t count;
+  ck_assert_int_eq(lxg_wind_solve(s.solver, hold, &winds[0], &s.error), LXG_NO_SOLUTION);
+  ck_assert_str_eq(s.error.code, "energy-limited");
+  ck_assert_int_eq(lxg_family_members(s.solver, hold, LXG_BRANCH_THIN, winds, 2, &count, &s.error),
+                   LXG_NO_SOLUTION);
+  ck_assert_int_eq(winds[0].reason, LXG_WIND_ENERGY_LIMITED);
+  teardown(&s);
+}
+END_TEST
+
+/* Followed beyond the limit of diffusion, a family ends where the photosphere reaches the critical point: kappa rho r = 8/3 at the
+ * sonic point itself, read from the last wind. */
+START_TEST(photosphere_inside) {
+  struct setup s = setup(1.02, LXG_OPACITY_REFERENCE, 1.0e8);
+  lxg_family_free(&s.family);
+  struct lxg_family_options options = lxg_family_options_default();
+  options.thin_depth = 0.0;
+  options.tolerance = 1e-2;
+  const struct lxg_wind_hold hold = {LXG_HELD_BASE_TEMPERATURE, 1.0e8};
+  assert_status(lxg_family_trace(s.solver, &hold, &options, &s.family, &s.error), LXG_OK, &s.error);
+  const struct lxg_wind *last = &s.family.wind[0];
+  ck_assert_str_eq(lxg_wind_reason_code(s.family.thin_end), "photosphere-inside");
+  ck_assert(last->photosphere.radius > last->critical.radius);
+  assert_close(last->critical.opacity * last->critical.density * last->critical.radius, 8.0 / 3.0, 0.3);
+  teardown(&s);
+}
+END_TEST
+
+/* The thick end: an own march of the last member's gas with fixed steps (Runge-Kutta, opacity and luminosity as documented) shows the flow
+ * at a small part of its photospheric speed by 1000 R_ph, and gas only 3 % slower at the photosphere falls back. */
+static double coast_speed(const struct setup *s, const struct lxg_wind *wind, double share) {
+  const double ct2 = LXG_BOLTZMANN / (lxg_composition_mu(&s->model.composition) * LXG_ATOMIC_MASS);
+  const double rate = wind->value[LXG_HELD_MASS_LOSS_RATE], r0 = wind->photosphere.radius;
+  const double t0 = wind->photosphere.temperature, v0 = share * wind->photosphere.speed;
+  const double carried = rate * (0.5 * v0 * v0 + 2.5 * ct2 * t0 - s->model.star.gm / r0);
+  double v = v0;
+  const int steps = 40000;
+  const double h = log(1000.0) / steps;
+  for (int i = 0; i < steps; i++) { /* midpoint rule in ln r */
+    double slope = 0.0, u = v;
+    for (int stage = 0; stage < 2; stage++) {
+      const double r = r0 * exp((i + 0.5 * stage) * h), t = t0 * sqrt(r0 / r);
+      const double rho = rate / (4.0 * LXG_PI * r * r * u), g = s->model.star.gm / r;
+      struct lxg_opacity_value k;
+      ck_assert_int_eq(lxg_opacity_at(s->opacity, log(rho), log(t), &k), LXG_OK);
+      const double l = wind->photosphere.luminosity + carried - rate * (0.5 * u * u + 2.5 * ct2 * t - g);
+      const double drive = 2.5 * ct2 * t + k.kappa * l / (4.0 * LXG_PI * LXG_SPEED_OF_LIGHT * r) - g;
+      if (u * u < 1.02 * ct2 * t) {
+        return 0.0;
+      }
+      slope = drive / (u * u - ct2 * t) * u;
+      u = v + 0.5 * h * slope;
+    }
+    v += h * slope;
+  }
+  return v;
+}
+
+START_TEST(stagnation) {
+  struct setup s = setup(1.02, LXG_OPACITY_REFERENCE, 1.0e8);
+  ck_assert_int_eq(s.family.thick_end, LXG_WIND_STAGNATES);
+  const struct lxg_wind *last = &s.family.wind[s.family.count - 1],
+                        *middle = &s.family.wind[s.family.count / 2];
+  assert_close(coast_speed(&s, middle, 1.0), middle->value[LXG_HELD_TERMINAL_SPEED], 1e-4);
+  ck_assert(last->value[LXG_HELD_TERMINAL_SPEED] < 0.15 * last->photosphere.speed);
+  ck_assert(coast_speed(&s, last, 0.97) == 0.0);
+  teardown(&s);
+}
+END_TEST
+
+/* Beyond a fold: along the winds with one launch radius the photospheric temperature has a largest value; there are two winds just below
+ * it and none above. The largest value is read off the members, not off the search. */
+START_TEST(above_fold) {
+  struct setup s = setup(1.02, LXG_OPACITY_REFERENCE, 1.0e8);
+  lxg_family_free(&s.family);
+  const struct lxg_wind_hold radius = {LXG_HELD_LAUNCH_RADIUS, 2.1e10};
+  assert_status(lxg_family_trace(s.solver, &radius, NULL, &s.family, &s.error), LXG_OK, &s.error);
+  double hottest = 0.0;
+  size_t at = 0;
+  for (size_t i = 0; i < s.family.count; i++) {
+    if (s.family.wind[i].photosphere.temperature > hottest) {
+      hottest = s.family.wind[i].photosphere.temperature;
+      at = i;
+    }
+  }
+  ck_assert(at > 0 && at + 1 < s.family.count);
+  struct lxg_wind winds[4];
+  size_t count;
+  const struct lxg_wind_hold below[2] = {radius, {LXG_HELD_PHOTOSPHERE_TEMPERATURE, 0.97 * hottest}};
+  const struct lxg_wind_hold above[2] = {radius, {LXG_HELD_PHOTOSPHERE_TEMPERATURE, 1.03 * hottest}};
+  assert_status(lxg_family_members(s.solver, below, LXG_BRANCH_THICK, winds, 4, &count, &s.error), LXG_OK,
+                &s.error);
+  ck_assert_uint_eq(count, 2);
+  ck_assert(winds[0].value[LXG_HELD_MASS_LOSS_RATE] > winds[1].value[LXG_HELD_MASS_LOSS_RATE]);
+  ck_assert_int_eq(lxg_family_members(s.solver, above, LXG_BRANCH_THIN, winds, 4, &count, &s.error),
+                   LXG_NO_SOLUTION);
+  ck_assert_str_eq(s.error.code, "above-fold");
+  teardown(&s);
+}
+END_TEST
+
 /* ---- ejecta along a history ---- */
 
 /* A history of base luminosities that a function of time gives. */
@@ -247,6 +361,10 @@ Suite *suite_family(void) {
   tcase_add_test(tests, rate_at_luminosity);
   tcase_add_test(tests, physics_of_a_family);
   tcase_add_test(tests, missing_members);
+  tcase_add_test(tests, energy_limited);
+  tcase_add_test(tests, photosphere_inside);
+  tcase_add_test(tests, stagnation);
+  tcase_add_test(tests, above_fold);
   tcase_add_test(tests, steady_history);
   tcase_add_test(tests, sampling_converges);
   suite_add_tcase(suite, tests);

@@ -169,6 +169,10 @@ bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count);
 enum lxg_status lxg_wind_holds_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                      struct lxg_error *error);
 
+/* Held values that no wind can have for want of energy: what reaches infinity, L + Mdot v^2/2, comes out of the energy rate, so that is
+ * positive. */
+bool lxg_wind_unsupplied(const struct lxg_wind_hold hold[], size_t count);
+
 /* Any wind with one held quantity, from nothing: where a family may start. Returns as lxg_wind_solve. */
 enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                struct lxg_wind *wind, struct lxg_error *error);

@@ -60,6 +60,11 @@ enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct 
   if (status != LXG_OK) {
     return status;
   }
+  if (lxg_wind_unsupplied(hold, 2)) {
+    lxg_wind_none(&winds[0], LXG_WIND_ENERGY_LIMITED);
+    return lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(LXG_WIND_ENERGY_LIMITED), "%s",
+                         lxg_wind_reason_text(LXG_WIND_ENERGY_LIMITED));
+  }
   struct family_catch found = {
       .target = &hold[1 - first], .wind = winds, .capacity = capacity, .thick = branch == LXG_BRANCH_THICK};
   status = search(solver, hold, first, &found, winds, error);

@@ -20,6 +20,8 @@ static const double shortest_step = 1e-7; /* below it the family has ended */
 static const double step_growth = 1.8, step_shrink = 0.4, step_safety = 0.7;
 static const double slow_share =
     0.1; /* terminal speeds below this share of the photospheric one are judged as if at it */
+static const double touching_radii =
+    1.1; /* photospheric over critical radius of a family's end where the two meet */
 static const double energy_reserve = 100.0; /* energy rate over a luminosity to be reached */
 enum { GROW = 64 };
 
@@ -143,6 +145,10 @@ static enum lxg_status accepted(struct tracer *tracer, const struct trail *trail
   double error = 0.0;
   for (;;) {
     if (*step < shortest_step) {
+      const struct lxg_wind *last = &trail->wind[trail->count - 1];
+      if (last->photosphere.radius < touching_radii * last->critical.radius) {
+        *end = LXG_WIND_PHOTOSPHERE_INSIDE;
+      }
       return LXG_NO_SOLUTION;
     }
     const enum lxg_status status = lxg_wind_arc(tracer->solver, tracer->hold, direction, *step, wind, NULL);

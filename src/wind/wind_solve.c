@@ -170,6 +170,15 @@ bool lxg_wind_holds_outer(const struct lxg_wind_hold hold[], size_t count) {
   return radius && !inner;
 }
 
+bool lxg_wind_unsupplied(const struct lxg_wind_hold hold[], size_t count) {
+  for (size_t i = 0; i < count; i++) {
+    if (hold[i].quantity == LXG_HELD_ENERGY_RATE && hold[i].value <= 0.0) {
+      return true;
+    }
+  }
+  return false;
+}
+
 static enum lxg_status hold_check(const struct lxg_wind_solver *solver, const struct lxg_wind_hold *hold,
                                   struct lxg_error *error) {
   const char *name = lxg_held_name(hold->quantity);
@@ -304,6 +313,10 @@ enum lxg_status lxg_wind_first(struct lxg_wind_solver *solver, const struct lxg_
   if (status != LXG_OK) {
     return status;
   }
+  if (lxg_wind_unsupplied(hold, 1)) {
+    lxg_wind_none(wind, LXG_WIND_ENERGY_LIMITED);
+    return finish(solver, LXG_NO_SOLUTION, wind, error);
+  }
   solver->have = false;
   solver->probed_below = solver->probed_above = false;
   solver->newton_steps = 0;
@@ -320,6 +333,10 @@ enum lxg_status lxg_wind_solve(struct lxg_wind_solver *solver, const struct lxg_
   enum lxg_status status = lxg_wind_holds_check(solver, hold, error);
   if (status != LXG_OK) {
     return status;
+  }
+  if (lxg_wind_unsupplied(hold, 2)) {
+    lxg_wind_none(wind, LXG_WIND_ENERGY_LIMITED);
+    return finish(solver, LXG_NO_SOLUTION, wind, error);
   }
   solver->have = false;
   solver->probed_below = solver->probed_above = false;

@@ -188,7 +188,7 @@ static enum march_end march_from(struct march *march, struct lxg_ivp *ivp, doubl
 /* Cuts a track where it parts from the other one that brackets the separatrix. */
 static void keep_common(struct wind_track *track, const struct wind_track *other) {
   static const double parted = 0.1; /* in ln T */
-  const double end = other->ln_r[other->count - 1];
+  const double end = other->count > 0 ? other->ln_r[other->count - 1] : -INFINITY;
   size_t keep = track->count;
   for (size_t i = 1; i < track->count && other->count > 1; i++) {
     double y[2], dydr[2];
