@@ -123,6 +123,7 @@ check:
 	@.ci/need check
 	@$(MAKE) --no-print-directory -s -j$(JOBS) all tests
 	@$(MAKE) --no-print-directory format-check check-layers check-symbols check-clang check-sanitizers check-cli check-python check-install
+	@$(MAKE) --no-print-directory scorecard-quick
 	@$(MAKE) --no-print-directory check-units
 
 # ---- installation: everything made from the same tables as the help; `make uninstall` removes what `make install` put ----
@@ -191,6 +192,8 @@ docs: $(BUILD)/luxgale
 	$(BUILD)/luxgale help report.md > docs/report.md
 
 clean:
-	rm -rf $(BUILD) build-clang build-sanitize demo-output
+	rm -rf $(BUILD) build-clang build-sanitize build-fuzz build-thread build-coverage build-mutation demo-output
+
+include tests/reliability/reliability.mk
 
 -include $(LIB_OBJ:.o=.d) $(CLI_OBJ:.o=.d) $(TEST_OBJ:.o=.d) $(PROGRAMS:=.d)

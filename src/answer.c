@@ -10,7 +10,7 @@
 
 #include <string.h>
 
-enum { TABLES = 4 };
+enum { TABLES = 7 };
 
 struct lxg_answer {
   struct lxg_results results;
@@ -24,10 +24,8 @@ static const struct {
   const char *name;
   enum lxg_status (*run)(const struct lxg_case *input, const struct lxg_run_options *options,
                          struct lxg_results *results, struct lxg_error *error);
-} commands[] = {{"outburst", lxg_run_outburst},
-                {"wind", lxg_run_wind},
-                {"family", lxg_run_family},
-                {"decline", lxg_run_decline},
+} commands[] = {{"outburst", lxg_run_outburst}, {"wind", lxg_run_wind},   {"family", lxg_run_family},
+                {"decline", lxg_run_decline},   {"lines", lxg_run_lines}, {"mass", lxg_run_mass},
                 {"star", lxg_run_star}};
 enum { COMMANDS = sizeof commands / sizeof commands[0] };
 
@@ -54,6 +52,9 @@ static enum lxg_status fill(struct lxg_answer *answer, size_t command, const str
   add_table(answer, "family", results->family);
   add_table(answer, "structure", results->structure);
   add_table(answer, "opacity-map", results->map);
+  add_table(answer, "profiles", results->profiles);
+  add_table(answer, "shell", results->shell);
+  add_table(answer, "velocities", results->velocities);
   return status;
 }
 

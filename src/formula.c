@@ -124,7 +124,12 @@ static double plateau(const struct lxg_formula_term *term, double s, double *slo
   return value;
 }
 
+/* At its origin a power law is infinite, zero or, with index 0, its constant. */
 static double power(const struct lxg_formula_term *term, double s, double *slope) {
+  if (s == 0.0) {
+    *slope = 0.0;
+    return term->index > 0.0 ? (double)INFINITY : term->index < 0.0 ? 0.0 : term->luminosity;
+  }
   const double value = term->luminosity * pow(s / term->time_scale, -term->index);
   *slope = -term->index * value / s;
   return value;

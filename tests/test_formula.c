@@ -152,6 +152,20 @@ START_TEST(values) {
 }
 END_TEST
 
+/* Limits of L (s/t)^-n for s -> 0: infinite for n > 0, L for n = 0 (with slope 0), zero for n < 0 (analysis). */
+START_TEST(power_at_its_origin) {
+  struct lxg_formula formula = {
+      .count = 1, .term = {{.law = LXG_FORMULA_POWER, .luminosity = 4e37, .time_scale = 1.9e4}}};
+  double slope = NAN;
+  ck_assert_double_eq(lxg_formula_at(&formula, 0.0, &slope), 4e37);
+  ck_assert_double_eq(slope, 0.0);
+  formula.term[0].index = -1.3;
+  ck_assert_double_eq(lxg_formula_at(&formula, 0.0, &slope), 0.0);
+  formula.term[0].index = 1.3;
+  ck_assert_double_eq(lxg_formula_at(&formula, 0.0, &slope), (double)INFINITY);
+}
+END_TEST
+
 START_TEST(breaks) {
   const struct lxg_formula all = every_law();
   double list[LXG_FORMULA_BREAKS];
@@ -232,6 +246,7 @@ Suite *suite_formula(void) {
   tcase_add_test(tests, heating_per_gram);
   tcase_add_test(tests, slopes_match_differences);
   tcase_add_test(tests, values);
+  tcase_add_test(tests, power_at_its_origin);
   tcase_add_test(tests, breaks);
   tcase_add_test(tests, refusals);
   suite_add_tcase(suite, tests);

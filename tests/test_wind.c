@@ -364,17 +364,20 @@ END_TEST
 Suite *suite_wind(void);
 Suite *suite_wind(void) {
   Suite *suite = suite_create("wind");
+  TCase *quick = tcase_create("wind-quick"); /* CK_RUN_CASE=wind-quick: those that take seconds */
   TCase *tests = tcase_create("wind");
+  tcase_set_timeout(quick, 300);
   tcase_set_timeout(tests, 300);
-  tcase_add_loop_test(tests, reference_winds, 0, REFERENCES);
+  tcase_add_loop_test(quick, reference_winds, 0, REFERENCES);
   tcase_add_loop_test(tests, every_pair, 0, 15 * REFERENCES);
   tcase_add_test(tests, porous_reference);
-  tcase_add_loop_test(tests, local_partials, 0, sizeof places / sizeof places[0]);
-  tcase_add_test(tests, isothermal_wind);
-  tcase_add_test(tests, conservation);
+  tcase_add_loop_test(quick, local_partials, 0, sizeof places / sizeof places[0]);
+  tcase_add_test(quick, isothermal_wind);
+  tcase_add_test(quick, conservation);
   tcase_add_test(tests, mesh_independence);
   tcase_add_test(tests, follow_agrees_with_cold);
-  tcase_add_test(tests, bad_holds);
+  tcase_add_test(quick, bad_holds);
+  suite_add_tcase(suite, quick);
   suite_add_tcase(suite, tests);
   return suite;
 }
