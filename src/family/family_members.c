@@ -4,11 +4,13 @@
  *
  * One of the two spans a family, which is walked coarsely from end to end; wherever the other passes its value the wind is
  * solved for both. Folds of the second quantity therefore show up as several winds, and a value that no member reaches
- * is missing for the reason at which the family ends.
+  * is missing for the reason at which the family ends, once the family of the other quantity and a cold search have found no wind either.
+
  */
 #include "family/family_internal.h"
 
 #include <math.h>
+#include <stdbool.h>
 
 static const double coarse = 1e-2; /* linear interpolation error that a walk between crossings may have */
 
@@ -51,6 +53,37 @@ static enum lxg_status search(struct lxg_wind_solver *solver, const struct lxg_w
   return LXG_OK;
 }
 
+/* Winds with one base temperature or one launch radius form few families, which the two walks and the cold search cover (a base temperature
+ * may have a second one beyond the gap where flows stagnate); with other quantities held nothing is known about their number. */
+static bool one_family(const struct lxg_wind_hold hold[2]) {
+  for (size_t i = 0; i < 2; i++) {
+    if (hold[i].quantity == LXG_HELD_BASE_TEMPERATURE || hold[i].quantity == LXG_HELD_LAUNCH_RADIUS) {
+      return true;
+    }
+  }
+  return false;
+}
+
+/* A family that does not pass the other value is no proof while another one may: the family of the other quantity is walked, and a cold
+ * search tried. */
+static enum lxg_status search_otherwise(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
+                                        size_t first, struct family_catch *found, struct lxg_wind *winds) {
+  const enum lxg_wind_reason reason = winds[0].reason;
+  found->target = &hold[first];
+  enum lxg_status status = search(solver, hold, 1 - first, found, winds, NULL);
+  struct lxg_wind apart;
+  if (status != LXG_OK && lxg_wind_solve(solver, hold, &apart, NULL) == LXG_OK) {
+    winds[0] = apart;
+    found->count = 1;
+    found->best_rate = apart.value[LXG_HELD_MASS_LOSS_RATE];
+    status = lxg_wind_mark(solver, SLOT_BEST);
+  }
+  if (status != LXG_OK) {
+    winds[0].reason = reason;
+  }
+  return status;
+}
+
 enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct lxg_wind_hold hold[2],
                                    enum lxg_branch branch, struct lxg_wind winds[], size_t capacity,
                                    size_t *count, struct lxg_error *error) {
@@ -72,6 +105,14 @@ enum lxg_status lxg_family_members(struct lxg_wind_solver *solver, const struct 
     lxg_wind_solver_outer_only(solver, true);
     status = search(solver, hold, first, &found, winds, error);
     lxg_wind_solver_outer_only(solver, false);
+  }
+  if (status == LXG_NO_SOLUTION && search_otherwise(solver, hold, first, &found, winds) == LXG_OK) {
+    lxg_error_clear(error);
+    status = LXG_OK;
+  } else if (status == LXG_NO_SOLUTION && !one_family(hold)) {
+    winds[0].reason = LXG_WIND_NOT_FOUND; /* the family walked may not be the only one: nothing is shown */
+    lxg_error_set(error, LXG_NO_SOLUTION, lxg_wind_reason_code(LXG_WIND_NOT_FOUND), "%s",
+                  lxg_wind_reason_text(LXG_WIND_NOT_FOUND));
   }
   *count = found.count;
   if (status != LXG_OK) {

@@ -11,6 +11,8 @@
 
 #include <stdbool.h>
 
+#define WIND_LN_MOST                                                                                         \
+  150.0 /* largest size of a logarithm that the local equations take; powers up to the fourth are formed */
 #define WIND_LN_4PI 2.53102424696929079309 /* ln(4 pi) */
 
 /* Arguments of the local equations. */

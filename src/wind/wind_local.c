@@ -52,6 +52,10 @@ static enum lxg_status local_opacity(const struct wind_constants *constants, con
 
 enum lxg_status lxg_wind_local(const struct wind_constants *constants, const struct wind_place *at,
                                struct wind_local *l) {
+  if (!(fabs(at->ln_r) < WIND_LN_MOST && fabs(at->ln_v) < WIND_LN_MOST && fabs(at->ln_t) < WIND_LN_MOST &&
+        fabs(at->ln_mdot) < WIND_LN_MOST)) {
+    return LXG_DOMAIN; /* a trial far outside physics: refused before anything overflows */
+  }
   const double r = exp(at->ln_r), v = exp(at->ln_v), t = exp(at->ln_t), mdot_gs = exp(at->ln_mdot);
   l->ln_rho = at->ln_mdot - WIND_LN_4PI - 2.0 * at->ln_r - at->ln_v;
   l->g = constants->gm / r;
