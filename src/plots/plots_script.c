@@ -97,10 +97,10 @@ void lxg_plots_curve(struct plots_sheet *sheet, bool first, const char *x, const
   snprintf(low, sizeof low, "%s_lo", y);
   snprintf(high, sizeof high, "%s_hi", y);
   if (lxg_plots_has(sheet, low) && lxg_plots_has(sheet, high)) {
-    lxg_buffer_format(
-        sheet->script,
-        "%s'%s.ecsv' using '%s':'%s':'%s' with filledcurves fillstyle solid 0.22 noborder ls %d notitle",
-        first ? "" : ", \\\n    ", sheet->data->name, x, low, high, style);
+    lxg_buffer_format(sheet->script,
+                      "%s'%s.ecsv' using '%s':'%s':'%s' with filledcurves fillstyle transparent solid 0.22 "
+                      "noborder ls %d notitle",
+                      first ? "" : ", \\\n    ", sheet->data->name, x, low, high, style);
     first = false;
   }
   lxg_buffer_format(sheet->script, "%s'%s.ecsv' using '%s':'%s' with %s ls %d %s", first ? "" : ", \\\n    ",
