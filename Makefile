@@ -105,6 +105,7 @@ check-cli: $(BUILD)/luxgale
 check-python: $(BUILD)/luxgale
 	@$(PYTHON) tests/python/check_outputs.py $(BUILD)/luxgale
 	@$(PYTHON) tests/python/readme.py $(BUILD)/luxgale
+	@for t in second_method tables tutorial tutorial_lines docs; do $(PYTHON) tests/python/check_$$t.py $(BUILD)/luxgale || exit 1; done
 
 check-clang:
 	@$(MAKE) --no-print-directory -s -j$(JOBS) CC=clang OPT=-O0 BUILD=build-clang all tests

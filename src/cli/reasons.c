@@ -85,6 +85,10 @@ static const struct {
      "one."},
     {"mass-no-wind", "no steady wind has this luminosity and speed",
      "The steady-wind method is left out; the others stand."},
+    {"errors-interpolation",
+     "results interpolated between families of winds differ from a family traced for a test by more than "
+     "they may",
+     "Smaller errors of the model parameters, or fewer of them, make the interpolation better."},
     {"errors-failed", "some draws of the error propagation failed; the intervals are those of the others",
      "The reason of the most frequent failure stands beside the warning."},
     {"errors-windless", "within the errors some epochs lose their wind, which then adds no mass",

@@ -84,7 +84,7 @@ def in_browser(path):
         check("no console message", not console, console[:3])
         if found:
             check("no wider than 360 px", int(found[1]) <= 360, found[1])
-            check("pictures in the browser", int(found[3]) == 6, found[3])
+            check("pictures in the browser", int(found[3]) == 7, found[3])
             seen[scheme] = found[2]
     check("light and dark differ", len(set(seen.values())) == 2, seen)
 
@@ -105,7 +105,7 @@ with tempfile.TemporaryDirectory() as work:
     check("well nested, no script, nothing from elsewhere", not reader.bad and not reader.open, (reader.bad[:5], reader.open))
     check("ids are unique", len(reader.ids) == len(set(reader.ids)), [i for i in reader.ids if reader.ids.count(i) > 1][:5])
     check("no address of anything", not re.search(r"url\((?!#)|@import|https?://(?!www\.w3\.org)", text))
-    check("six pictures", reader.svgs == 6, reader.svgs)
+    check("seven pictures", reader.svgs == 7, reader.svgs)
     check("title as text", title in words, words[:200])
     check("ejected mass to four digits", f"{mass:.3e}" in words, f"{mass:.3e}")
     check("warning", "thin-wind" in words)

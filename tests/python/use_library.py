@@ -27,7 +27,7 @@ with tempfile.TemporaryDirectory() as work:
     table = Table.read(epochs, format="ascii.ecsv")
 assert result.full
 assert result.report["ejecta"] == report["ejecta"]
-assert set(result.tables) == {"epochs", "family"}
+assert {"epochs", "family", "shell", "velocities"} == set(result.tables)
 for name in table.colnames:
     got = result.table("epochs")[name]
     assert isinstance(got, np.ndarray) and len(got) == len(table)
