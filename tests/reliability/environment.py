@@ -41,7 +41,8 @@ def same(luxgale, folder):
     """Report and tables of `wind` and `outburst`, byte by byte."""
     examples = os.path.join(os.path.dirname(os.path.dirname(os.path.dirname(os.path.abspath(__file__)))), "examples")
     for name in os.listdir(examples):
-        shutil.copy(os.path.join(examples, name), folder)
+        if os.path.isfile(os.path.join(examples, name)):
+            shutil.copy(os.path.join(examples, name), folder)
     locales = os.path.join(folder, "locales")
     os.makedirs(locales)
     made = []
@@ -154,7 +155,7 @@ def signals(luxgale, folder):
         done = subprocess.run(["sh", "-c", f"exec {luxgale} star -o new.yaml case.yaml {closed}"], cwd=folder, capture_output=True)
         checks += 1
         check(done.returncode == 0 and read(os.path.join(folder, "new.yaml")).startswith(b"program"), f"{closed}: {done.returncode}")
-    done = subprocess.run(["bash", "-c", f"{luxgale} help case.md | head -1; exit ${{PIPESTATUS[0]}}"], cwd=folder, capture_output=True)
+    done = subprocess.run(["bash", "-c", f"{luxgale} help inputs.md | head -1; exit ${{PIPESTATUS[0]}}"], cwd=folder, capture_output=True)
     check(done.returncode in (0, 3) and done.stderr == b"", f"a reader that leaves: {done.returncode} {done.stderr[:80]}")
     for number in (signal.SIGINT, signal.SIGTERM, signal.SIGHUP):
         write(os.path.join(folder, "wind.yaml"), CASE + HOLD)

@@ -6,7 +6,7 @@
   hostile.py numbers LUXGALE-TRAP [--winds]     --winds: also solve the wind wherever the number was accepted
 
 What is expected follows from the documented formats (headers of document.h and table.h, docs/inputs.md), never from a run. Limits a
-file: 1 s, 64 MiB. Numbers: the keys come from `luxgale help case.md`, so new keys are covered by themselves; the program traps
+file: 1 s, 64 MiB. Numbers: the keys come from `luxgale help inputs.md`, so new keys are covered by themselves; the program traps
 invalid operations and division by zero; it must end with a defined error or with finite numbers. Ends with
 one JSON line.
 """
@@ -252,7 +252,7 @@ BASES = {
 def keys(luxgale):
     """Numeric keys of a case: (section, name, kind)."""
     section = ""
-    for line in run([luxgale, "help", "case.md"])[1].splitlines():
+    for line in run([luxgale, "help", "inputs.md"])[1].splitlines():
         if line.startswith("## "):
             section = "" if line.startswith("## Top") else line[3:].strip().strip("`")
         row = re.match(r"\| `([a-z_]+)` \| (quantity|number|integer)\b", line)
