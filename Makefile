@@ -124,7 +124,6 @@ check:
 	@.ci/need check
 	@$(MAKE) --no-print-directory -s -j$(JOBS) all tests
 	@$(MAKE) --no-print-directory format-check check-layers check-symbols check-clang check-sanitizers check-cli check-python check-install
-	@$(MAKE) --no-print-directory scorecard-quick
 	@$(MAKE) --no-print-directory check-units
 
 # ---- installation: everything made from the same tables as the help; `make uninstall` removes what `make install` put ----
